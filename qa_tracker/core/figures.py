@@ -1,0 +1,432 @@
+"""Geometry of the allowance line and of the verdict marks, for a page and for paper alike.
+
+Everything is a tuple of :class:`Shape`: a path of move, line, curve and close steps with a fill and a
+stroke. A page writes it with :func:`svg_path`, a PDF replays the steps, so the two can't differ. Colours
+are presentation values (``fill="#007A5E"``), never a style attribute.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+from decimal import ROUND_CEILING, ROUND_FLOOR, Decimal
+
+INK = "#10212B"
+PAPER = "#F7F5F0"
+RULE = "#C9D2D3"
+BORDER = "#5A666B"
+TEAL = "#0E6E6E"
+VERDICT_COLOURS = {
+    "conforming": "#007A5E",
+    "remedial": "#9A5B00",
+    "suspension": "#A3123A",
+    "indeterminate": "#5B4B9A",
+    "not_assessable": "#5A666B",
+}
+
+# The outermost level stands at 80 % of its side of the scale, so a reading just beyond it is still on it.
+OUTERMOST_LEVEL_AT = Decimal("0.8")
+# A one-sided scale keeps this much of its width for readings on the better side.
+BETTER_SIDE = Decimal("0.15")
+# Four cubic curves with this handle draw a circle to 0.03 % of its radius.
+CIRCLE_HANDLE = 0.5522847498
+
+Step = tuple[str, tuple[float, ...]]
+
+
+@dataclass(frozen=True)
+class Shape:
+    """One path with its colours.
+
+    Parameters
+    ----------
+    steps
+        ``("M", (x, y))``, ``("L", (x, y))``, ``("C", (x1, y1, x2, y2, x, y))`` and ``("Z", ())``; y grows
+        downwards, as in SVG.
+    role
+        What it stands for: ``scale``, ``origin``, ``remedial``, ``suspension``, ``plumb``, ``bound``,
+        ``off_scale`` or ``mark``.
+    fill, stroke
+        ``"#rrggbb"`` or ``"none"``. Fill follows the non-zero winding rule.
+    stroke_width
+        In the units of the steps.
+    """
+
+    steps: tuple[Step, ...]
+    role: str
+    fill: str = "none"
+    stroke: str = "none"
+    stroke_width: float = 0.0
+
+
+@dataclass(frozen=True)
+class Judged:
+    """What the allowance line needs to know of a judged reading; all in the reading's unit.
+
+    Parameters
+    ----------
+    origin
+        Baseline or nominal; zero for an absolute upper level; None for an absolute lower level, whose
+        ``remedial`` and ``suspension`` are then positions and not distances.
+    value
+        The reading, None where there is none.
+    remedial, suspension
+        Allowance: how far from the origin the level lies (never negative), None where there is no level.
+    direction
+        Which departures count: ``"either"``, ``"above"`` or ``"below"``.
+    strict
+        True where exactly the level still conforms ("> x").
+    qualifier
+        ``"="``, ``">"``, ``"<"`` or ``"not_seen"``.
+    """
+
+    origin: Decimal | None
+    value: Decimal | None
+    remedial: Decimal | None = None
+    suspension: Decimal | None = None
+    direction: str = "either"
+    strict: bool = True
+    qualifier: str = "="
+
+
+@dataclass(frozen=True)
+class AllowanceLine:
+    """Positions along a scale from 0 (left, smaller values) to 1 (right, larger values).
+
+    ``origin`` is None where nothing is measured from; ``plumb`` is None without a reading. ``off_scale``
+    says the plumb was moved to the nearer end. ``share_percent`` is whole per cent of the first level's
+    allowance used up: rounded down inside the allowance and up beyond it, so that 100 is never shown for
+    a reading on the other side of the level. ``bound`` is ``"<="`` or ``">="`` where the reading is only
+    known to one side. ``reached`` is the worst level the reading itself is beyond, or ``""``.
+    """
+
+    origin: float | None
+    remedial: tuple[float, ...] = ()
+    suspension: tuple[float, ...] = ()
+    plumb: float | None = None
+    off_scale: bool = False
+    share_percent: int | None = None
+    bound: str = ""
+    reached: str = ""
+    better: bool = False
+    open_towards: int = 0
+
+
+def departure(judged: Judged) -> Decimal | None:
+    r"""Give how far the reading lies from its origin in the direction that counts.
+
+    .. math:: d = |v - o|, \quad v - o, \quad o - v
+
+    for either, above and below. Negative means the better side of a one-sided criterion. None without a
+    reading or an origin.
+
+    Examples
+    --------
+    >>> departure(Judged(Decimal("152"), Decimal("145.4"), Decimal("6"), direction="below"))
+    Decimal('6.6')
+    """
+    if judged.value is None or judged.origin is None or judged.qualifier == "not_seen":
+        return None
+    difference = judged.value - judged.origin
+    if judged.direction == "either":
+        return abs(difference)
+    return difference if judged.direction == "above" else -difference
+
+
+def allowance_line(judged: Judged) -> AllowanceLine:
+    """Place origin, levels and reading on a scale of unit length.
+
+    The scale keeps the order of numbers, smaller on the left. A criterion in either direction has its
+    origin in the middle; a one-sided one has it near the better end. The outermost level stands at 80 %
+    of the way out; a reading beyond the end is placed at the end with ``off_scale`` set.
+
+    Degenerate cases: no reading, or "not seen", gives no plumb; no level gives a bare scale with the
+    origin alone; a level of zero gives no share.
+
+    Examples
+    --------
+    >>> line = allowance_line(Judged(Decimal("100"), Decimal("101"), Decimal("2"), Decimal("4")))
+    >>> line.origin, line.remedial, line.suspension, line.plumb, line.share_percent
+    (0.5, (0.3, 0.7), (0.1, 0.9), 0.6, 50)
+    """
+    if judged.origin is None:
+        return _lower_limit_line(judged)
+    levels = [level for level in (judged.remedial, judged.suspension) if level is not None]
+    if not levels:
+        return AllowanceLine(origin=float(_origin_at(judged.direction)))
+    reach = max(levels) / OUTERMOST_LEVEL_AT or Decimal(1)
+    line = AllowanceLine(
+        origin=float(_origin_at(judged.direction)),
+        remedial=_level_positions(judged, judged.remedial, reach),
+        suspension=_level_positions(judged, judged.suspension, reach),
+    )
+    away = departure(judged)
+    if away is None or judged.value is None:
+        return line
+    position, off_scale = _clamped(_position(judged, judged.value - judged.origin, reach))
+    return replace(
+        line,
+        plumb=position,
+        off_scale=off_scale,
+        share_percent=_share(away, levels[0], judged.strict),
+        bound=_bound(judged, judged.value - judged.origin),
+        reached=_reached(judged, away),
+        better=away < 0,
+        open_towards={">": 1, "<": -1}.get(judged.qualifier, 0),
+    )
+
+
+def _lower_limit_line(judged: Judged) -> AllowanceLine:
+    """Draw an absolute lower level: zero on the left end, the levels in the middle, no origin mark."""
+    levels = [level for level in (judged.remedial, judged.suspension) if level is not None]
+    if not levels or max(levels) <= 0:
+        return AllowanceLine(origin=None)
+    reach = 2 * max(levels)
+    line = AllowanceLine(
+        origin=None,
+        remedial=() if judged.remedial is None else (float(judged.remedial / reach),),
+        suspension=() if judged.suspension is None else (float(judged.suspension / reach),),
+    )
+    if judged.value is None or judged.qualifier == "not_seen":
+        return line
+    position, off_scale = _clamped(judged.value / reach)
+    below = replace(judged, origin=Decimal(0), direction="below")
+    share = _share(levels[0], judged.value, judged.strict) if judged.value > 0 else None
+    return replace(
+        line,
+        plumb=position,
+        off_scale=off_scale,
+        share_percent=share,
+        bound=_bound(below, judged.value),
+        reached=_reached_lower(judged),
+        open_towards={">": 1, "<": -1}.get(judged.qualifier, 0),
+    )
+
+
+def _origin_at(direction: str) -> Decimal:
+    return {"above": BETTER_SIDE, "below": 1 - BETTER_SIDE}.get(direction, Decimal("0.5"))
+
+
+def _position(judged: Judged, difference: Decimal, reach: Decimal) -> Decimal:
+    room = Decimal("0.5") if judged.direction == "either" else 1 - BETTER_SIDE
+    return _origin_at(judged.direction) + difference / reach * room
+
+
+def _level_positions(judged: Judged, allowance: Decimal | None, reach: Decimal) -> tuple[float, ...]:
+    if allowance is None:
+        return ()
+    signs = {"above": (1,), "below": (-1,)}.get(judged.direction, (-1, 1))
+    return tuple(float(_position(judged, sign * allowance, reach)) for sign in signs)
+
+
+def _clamped(position: Decimal) -> tuple[float, bool]:
+    inside = min(max(position, Decimal(0)), Decimal(1))
+    return float(inside), inside != position
+
+
+def _share(away: Decimal, allowance: Decimal, strict: bool) -> int | None:
+    """Round towards the side of the level the reading is on; the better side counts as nothing used."""
+    if allowance <= 0:
+        return None
+    beyond = away > allowance or (away == allowance and not strict)
+    share = max(away, Decimal(0)) * 100 / allowance
+    return int(share.to_integral_value(ROUND_CEILING if beyond else ROUND_FLOOR))
+
+
+def _bound(judged: Judged, difference: Decimal) -> str:
+    """Say on which side of the share the truth lies, where the reading is only a bound."""
+    if judged.qualifier not in ("<", ">"):
+        return ""
+    outwards = {"above": 1, "below": -1}.get(judged.direction, 1 if difference >= 0 else -1)
+    open_towards = 1 if judged.qualifier == ">" else -1
+    return ">=" if outwards == open_towards else "<="
+
+
+def _reached(judged: Judged, away: Decimal) -> str:
+    for name, level in (("suspension", judged.suspension), ("remedial", judged.remedial)):
+        if level is not None and (away > level or (away == level and not judged.strict)):
+            return name
+    return ""
+
+
+def _reached_lower(judged: Judged) -> str:
+    mirrored = replace(
+        judged,
+        remedial=None if judged.remedial is None else -judged.remedial,
+        suspension=None if judged.suspension is None else -judged.suspension,
+    )
+    return _reached(mirrored, -judged.value) if judged.value is not None else ""
+
+
+def share_text(line: AllowanceLine) -> str:
+    """Write the share as a figure, the same in every language.
+
+    Examples
+    --------
+    >>> share_text(AllowanceLine(origin=0.5, plumb=0.6, share_percent=50))
+    '50 %'
+    >>> share_text(AllowanceLine(origin=0.5, plumb=0.6, share_percent=33, bound="<="))
+    '≤ 33 %'
+    """
+    if line.share_percent is None:
+        return ""
+    sign = {"<=": "≤ ", ">=": "≥ "}.get(line.bound, "")
+    return f"{sign}{line.share_percent} %"
+
+
+def allowance_shapes(line: AllowanceLine, width: float, height: float) -> tuple[Shape, ...]:
+    """Draw the line into a box: scale, origin, ticks, then the plumb mark on top.
+
+    Parameters
+    ----------
+    line
+        From :func:`allowance_line`.
+    width, height
+        Of the box, in the caller's unit (px or points). Half the bob's width is kept free at each end so
+        that nothing leaves the box.
+    """
+    pen = Pen(width, height)
+    level_y = height * 0.62
+    shapes = [pen.stroke("scale", (0.0, level_y), (1.0, level_y), BORDER, 0.045)]
+    if line.origin is not None:
+        shapes.append(
+            pen.stroke("origin", (line.origin, height * 0.34), (line.origin, height * 0.9), INK, 0.08)
+        )
+    for at in line.remedial:
+        colour = VERDICT_COLOURS["remedial"]
+        shapes.append(pen.stroke("remedial", (at, height * 0.42), (at, height * 0.82), colour, 0.08))
+    for at in line.suspension:
+        colour = VERDICT_COLOURS["suspension"]
+        for side in (-0.06, 0.06):
+            shapes.append(
+                pen.stroke("suspension", (at, height * 0.34), (at, height * 0.9), colour, 0.06, side)
+            )
+    if line.plumb is not None:
+        shapes.extend(_plumb(line, line.plumb, pen, level_y))
+    return tuple(shapes)
+
+
+@dataclass(frozen=True)
+class Pen:
+    """A box with its bob margin: positions of 0..1 along it, thickness in parts of its height."""
+
+    width: float
+    height: float
+
+    def x(self, position: float) -> float:
+        """Give the abscissa of a position on the scale."""
+        margin = self.height * 0.2
+        return margin + position * (self.width - 2 * margin)
+
+    def stroke(
+        self,
+        role: str,
+        start: tuple[float, float],
+        end: tuple[float, float],
+        colour: str,
+        weight: float,
+        aside: float = 0.0,
+    ) -> Shape:
+        """Draw one straight stroke; ``aside`` shifts it sideways in parts of the height."""
+        shift = aside * self.height
+        steps = (("M", (self.x(start[0]) + shift, start[1])), ("L", (self.x(end[0]) + shift, end[1])))
+        return Shape(steps, role, stroke=colour, stroke_width=weight * self.height)
+
+
+def _plumb(line: AllowanceLine, at: float, pen: Pen, level_y: float) -> tuple[Shape, ...]:
+    """Draw a thread hanging to the scale with a pointed bob, and what is open or cut off beside it."""
+    x, h = pen.x(at), pen.height
+    thread = Shape(
+        (("M", (x, 0.0)), ("L", (x, level_y))), role="plumb", stroke=INK, stroke_width=max(0.055 * h, 0.5)
+    )
+    bob = polygon(
+        (
+            (x - 0.13 * h, 0.04 * h),
+            (x + 0.13 * h, 0.04 * h),
+            (x + 0.13 * h, 0.2 * h),
+            (x, 0.46 * h),
+            (x - 0.13 * h, 0.2 * h),
+        ),
+        role="plumb",
+        fill=INK,
+    )
+    extra: list[Shape] = []
+    if line.open_towards:
+        end = min(max(x + line.open_towards * 0.7 * h, 0.0), pen.width)
+        steps: tuple[Step, ...] = (("M", (x, 0.12 * h)), ("L", (end, 0.12 * h)))
+        extra.append(Shape(steps, role="bound", stroke=INK, stroke_width=0.055 * h))
+    if line.off_scale:
+        inwards = 1 if at < 0.5 else -1
+        extra.extend(_break(x + inwards * gap * h, level_y, h) for gap in (0.32, 0.5))
+    return (thread, bob, *extra)
+
+
+def _break(x: float, y: float, height: float) -> Shape:
+    """Draw one of the two slanted strokes that say the scale is cut here."""
+    steps = (("M", (x - 0.06 * height, y + 0.16 * height)), ("L", (x + 0.06 * height, y - 0.16 * height)))
+    return Shape(steps, role="off_scale", stroke=INK, stroke_width=0.055 * height)
+
+
+def polygon(points: Sequence[tuple[float, float]], role: str, fill: str) -> Shape:
+    """Give a filled, closed outline through the points."""
+    first, *others = points
+    return Shape((("M", first), *(("L", point) for point in others), ("Z", ())), role=role, fill=fill)
+
+
+def circle_steps(x: float, y: float, radius: float) -> tuple[Step, ...]:
+    """Give a closed circle as four cubic curves, starting at its top and going right."""
+    r, k = radius, radius * CIRCLE_HANDLE
+    return (
+        ("M", (x, y - r)),
+        ("C", (x + k, y - r, x + r, y - k, x + r, y)),
+        ("C", (x + r, y + k, x + k, y + r, x, y + r)),
+        ("C", (x - k, y + r, x - r, y + k, x - r, y)),
+        ("C", (x - r, y - k, x - k, y - r, x, y - r)),
+        ("Z", ()),
+    )
+
+
+def verdict_mark(verdict: str) -> tuple[Shape, ...]:
+    """Give the mark of a verdict in a unit square.
+
+    Conforming is a filled disc, remedial a lozenge, suspension a square with a bar cut through it,
+    indeterminate a ring with its left half filled, not assessable an open ring. They differ in outline,
+    so they can be told apart without colour. An unknown verdict raises KeyError.
+
+    Examples
+    --------
+    >>> [shape.fill for shape in verdict_mark("conforming")]
+    ['#007A5E']
+    """
+    colour = VERDICT_COLOURS[verdict]
+    if verdict == "conforming":
+        return (Shape(circle_steps(0.5, 0.5, 0.42), "mark", fill=colour),)
+    if verdict == "remedial":
+        return (polygon(((0.5, 0.02), (0.94, 0.5), (0.5, 0.98), (0.06, 0.5)), "mark", colour),)
+    if verdict == "suspension":
+        return (_barred_square(colour),)
+    ring = Shape(circle_steps(0.5, 0.5, 0.37), "mark", stroke=colour, stroke_width=0.11)
+    if verdict == "not_assessable":
+        return (ring,)
+    left = (*circle_steps(0.5, 0.5, 0.37)[3:5], ("Z", ()))
+    return (ring, Shape((("M", (0.5, 0.87)), *left), "mark", fill=colour))
+
+
+def _barred_square(colour: str) -> Shape:
+    """Cut the bar by winding it against the square, so that no background colour is needed."""
+    outer = polygon(((0.08, 0.08), (0.92, 0.08), (0.92, 0.92), (0.08, 0.92)), "mark", colour)
+    bar = polygon(((0.22, 0.4), (0.22, 0.6), (0.78, 0.6), (0.78, 0.4)), "mark", colour)
+    return replace(outer, steps=outer.steps + bar.steps)
+
+
+def svg_path(steps: Sequence[Step], scale: float = 1.0) -> str:
+    """Write steps as the ``d`` attribute of an SVG path, to three decimals.
+
+    Examples
+    --------
+    >>> svg_path((("M", (0.0, 0.5)), ("L", (1.0, 0.5)), ("Z", ())), scale=10)
+    'M0 5L10 5Z'
+    """
+    return "".join(
+        letter + " ".join(f"{round(n * scale, 3):g}" for n in numbers) for letter, numbers in steps
+    )
