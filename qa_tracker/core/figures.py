@@ -270,7 +270,7 @@ def share_text(line: AllowanceLine) -> str:
     """
     if line.share_percent is None:
         return ""
-    sign = {"<=": "≤ ", ">=": "≥ "}.get(line.bound, "")
+    sign = {"<=": "≤ ", ">=": "≥ "}.get(line.bound, "") if line.share_percent else ""
     return f"{sign}{line.share_percent} %"
 
 

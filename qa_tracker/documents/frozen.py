@@ -1,0 +1,71 @@
+"""Frozen content to canonical bytes and back; the SHA-256 of these bytes names the content."""
+
+from __future__ import annotations
+
+import json
+from dataclasses import asdict, fields, is_dataclass
+from functools import cache
+from types import UnionType
+from typing import Any, get_args, get_origin, get_type_hints
+
+from qa_tracker.core.errors import Invalid
+from qa_tracker.core.figures import VERDICT_COLOURS
+from qa_tracker.documents.content import SCHEMA, DeviceDossier
+from qa_tracker.documents.labels import ENGLISH
+
+
+def content_bytes(content: DeviceDossier) -> bytes:
+    """Write the content: sorted keys, no spaces, UTF-8, text and yes/no only."""
+    require_complete(content)
+    return json.dumps(asdict(content), sort_keys=True, ensure_ascii=False, separators=(",", ":")).encode()
+
+
+def from_bytes(data: bytes) -> DeviceDossier:
+    """Read what :func:`content_bytes` wrote; anything else is refused, never guessed at."""
+    try:
+        plain = json.loads(data)
+        if plain.get("schema") != SCHEMA:
+            raise Invalid("dossier.schema_unknown", schema=str(plain.get("schema", "")), known=SCHEMA)
+        content: DeviceDossier = _built(DeviceDossier, plain)
+    except (ValueError, TypeError, AttributeError, KeyError) as error:
+        raise Invalid("dossier.content_unreadable", problem=str(error)) from error
+    require_complete(content)
+    return content
+
+
+def require_complete(content: DeviceDossier) -> None:
+    """Refuse a missing label or a verdict without a mark, before any page is drawn."""
+    missing = sorted(ENGLISH.keys() - content.labels.keys())
+    if missing:
+        raise Invalid("dossier.label_missing", labels=", ".join(missing))
+    verdicts = {check.verdict for check in content.checks if check.verdict}
+    verdicts |= {reading.verdict for check in content.checks for reading in check.readings}
+    unknown = sorted(verdicts - VERDICT_COLOURS.keys())
+    if unknown:
+        raise Invalid("dossier.verdict_unknown", verdicts=", ".join(unknown))
+
+
+@cache
+def _hints(kind: type) -> dict[str, Any]:
+    return get_type_hints(kind)
+
+
+def _built(kind: Any, plain: Any) -> Any:
+    """Build a value of a declared kind: a dataclass, tuples of one, an optional one, or a plain value."""
+    if get_origin(kind) is tuple:
+        return tuple(_built(get_args(kind)[0], item) for item in plain)
+    if isinstance(kind, UnionType):
+        return None if plain is None else _built(get_args(kind)[0], plain)
+    if is_dataclass(kind):
+        return _built_dataclass(kind, plain)
+    if kind in (str, bool) and type(plain) is not kind:
+        raise TypeError(f"{plain!r} where {kind.__name__} is expected")
+    return plain
+
+
+def _built_dataclass(kind: Any, plain: dict[str, Any]) -> Any:
+    unknown = sorted(plain.keys() - {field.name for field in fields(kind)})
+    if unknown:
+        raise KeyError(f"{kind.__name__} has no {', '.join(unknown)}")
+    hints = _hints(kind)
+    return kind(**{name: _built(hints[name], value) for name, value in plain.items()})
