@@ -1,0 +1,43 @@
+"""Every table, by noun. The ledger's table is imported as a module, never re-exported: its door is records/ledger.py."""
+
+from qa_tracker.records.models import ledger
+from qa_tracker.records.models.baselines import Baseline
+from qa_tracker.records.models.checks import (
+    Check,
+    CheckPlan,
+    Draft,
+    NotTested,
+    Reading,
+    Submission,
+    Verdict,
+)
+from qa_tracker.records.models.devices import (
+    Aperture,
+    Condition,
+    Device,
+    Placement,
+    ProbeFacts,
+    ScannerFacts,
+)
+from qa_tracker.records.models.evidence import Dossier, Fault, FaultAction, Signature
+from qa_tracker.records.models.library import (
+    Adoption,
+    CriteriaSet,
+    Criterion,
+    Edition,
+    Measurand,
+    Procedure,
+)
+from qa_tracker.records.models.notices import Digest, Heartbeat, Notice, NoticeMail, NoticeSeen
+from qa_tracker.records.models.objects import Instrument, TestObject
+from qa_tracker.records.models.people import ApiToken, Credential, Person, RoleGrant
+from qa_tracker.records.models.sites import Holiday, Location, Pool, PoolMember, Site
+from qa_tracker.records.models.versions import Version
+
+__all__ = [
+    "Adoption", "Aperture", "ApiToken", "Baseline", "Check", "CheckPlan", "Condition", "Credential",
+    "CriteriaSet", "Criterion", "Device", "Digest", "Dossier", "Draft", "Edition", "Fault", "FaultAction",
+    "Heartbeat", "Holiday", "Instrument", "Location", "Measurand", "NotTested", "Notice", "NoticeMail",
+    "NoticeSeen", "Person", "Placement", "Pool", "PoolMember", "ProbeFacts", "Procedure", "Reading",
+    "RoleGrant", "ScannerFacts", "Signature", "Site", "Submission", "TestObject", "Verdict", "Version",
+]  # fmt: skip
