@@ -8,6 +8,7 @@ from functools import cache
 from types import UnionType
 from typing import Any, get_args, get_origin, get_type_hints
 
+from qa_tracker.core.canonical import canonical
 from qa_tracker.core.errors import Invalid
 from qa_tracker.core.figures import VERDICT_COLOURS
 from qa_tracker.documents.content import SCHEMA, DeviceDossier
@@ -15,9 +16,9 @@ from qa_tracker.documents.labels import ENGLISH
 
 
 def content_bytes(content: DeviceDossier) -> bytes:
-    """Write the content: sorted keys, no spaces, UTF-8, text and yes/no only."""
+    """Write the content as the canonical JSON of RFC 8785: text and yes/no only, names in order."""
     require_complete(content)
-    return json.dumps(asdict(content), sort_keys=True, ensure_ascii=False, separators=(",", ":")).encode()
+    return canonical(asdict(content))
 
 
 def from_bytes(data: bytes) -> DeviceDossier:
