@@ -32,8 +32,8 @@ app.conf.update(
     broker_connection_retry_on_startup=True,
     broker_transport_options={
         "visibility_timeout": VISIBILITY_TIMEOUT_S,
-        # Look for held tasks each 10 s; by default only each tenth look is a real one.
-        "unacked_restore_interval": 10,
+        # Look for held tasks at least each 10 s; by default only each tenth look is a real one.
+        "unacked_restore_interval": min(10, VISIBILITY_TIMEOUT_S),
         "unacked_restore_throttle": 1,
     },
     # The same figure in every place that is read: with several, the shortest would win.

@@ -1,0 +1,40 @@
+"""The figures of the Celery application that keep a task from being done twice, or never."""
+
+from __future__ import annotations
+
+import pytest
+
+from config.celery import LEASE_S, app
+
+
+@pytest.mark.parametrize(
+    "place",
+    [
+        pytest.param(lambda conf: conf.visibility_timeout, id="application"),
+        pytest.param(lambda conf: conf.broker_transport_options["visibility_timeout"], id="broker"),
+        pytest.param(lambda conf: conf.result_backend_transport_options["visibility_timeout"], id="results"),
+    ],
+)
+def test_held_task_stays_hidden_longer_than_its_lease_in_every_place(place) -> None:
+    assert place(app.conf) == 300 > LEASE_S
+
+
+def test_task_is_ended_before_its_lease_when_it_hangs() -> None:
+    assert app.conf.task_soft_time_limit < app.conf.task_time_limit < LEASE_S
+
+
+def test_timetable_has_one_line_when_read() -> None:
+    (entry,) = app.conf.beat_schedule.values()
+
+    assert (entry["task"], entry["schedule"]) == ("leadline.sweep", 60.0)
+
+
+@pytest.mark.parametrize("name", ["task_acks_late", "task_reject_on_worker_lost", "enable_utc"])
+def test_task_is_kept_until_done_when_configured(name: str) -> None:
+    assert app.conf[name] is True
+
+
+def test_application_takes_json_only_and_keeps_no_results_when_configured() -> None:
+    assert app.conf.accept_content == ["json"]
+    assert app.conf.task_always_eager is False
+    assert app.conf.result_backend is None
