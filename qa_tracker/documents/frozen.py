@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import json
 from dataclasses import asdict, fields, is_dataclass
+from datetime import date
+from decimal import Decimal, InvalidOperation
 from functools import cache
 from types import UnionType
 from typing import Any, get_args, get_origin, get_type_hints
@@ -35,7 +37,34 @@ def from_bytes(data: bytes) -> DeviceDossier:
 
 
 def require_complete(content: DeviceDossier) -> None:
-    """Refuse a missing label or a verdict without a mark, before any page is drawn."""
+    """Refuse a missing label, a verdict without a mark, a day or amount that can't be read, before drawing."""
+    _require_labels_and_verdicts(content)
+    for check in content.checks:
+        for day in filter(None, (check.due_on, check.measured_at[:10])):
+            _require_day(day)
+        for reading in check.readings:
+            line = reading.line
+            for amount in filter(None, (line.origin, line.value, line.remedial, line.suspension)):
+                _require_amount(amount)
+
+
+def _require_day(text: str) -> None:
+    try:
+        date.fromisoformat(text)
+    except ValueError as error:
+        raise Invalid("dossier.day_unreadable", day=text) from error
+
+
+def _require_amount(text: str) -> None:
+    try:
+        finite = Decimal(text).is_finite()
+    except InvalidOperation:
+        finite = False
+    if not finite:
+        raise Invalid("dossier.amount_unreadable", amount=text)
+
+
+def _require_labels_and_verdicts(content: DeviceDossier) -> None:
     missing = sorted(ENGLISH.keys() - content.labels.keys())
     if missing:
         raise Invalid("dossier.label_missing", labels=", ".join(missing))

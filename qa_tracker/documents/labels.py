@@ -31,6 +31,8 @@ ENGLISH = {
     "not_seen": "not seen",
     "no_reading": "no reading",
     "over_time": "Checks over time",
+    "stroke_explained": "A bare stroke is a check without a verdict: missed, excused, void or not yet submitted.",
+    "continued": "continued",
     "cautions": "Cautions",
     "placements": "Placements",
     "now": "now",
