@@ -175,6 +175,18 @@ def scaled_at(value: Decimal, places: int) -> int:
     return kept
 
 
+def subtract(value: Decimal, other: Decimal) -> Decimal:
+    """Return value - other exactly, at the finer count of places, whatever the decimal context.
+
+    Examples
+    --------
+    >>> subtract(Decimal("20.3"), Decimal("20"))
+    Decimal('0.3')
+    """
+    places = max(places_of(value), places_of(other))
+    return from_scaled(scaled_at(value, places) - scaled_at(other, places), places)
+
+
 def rescale(exact: Exact, places: int) -> int:
     """Return the number as a whole number at another count of places, refusing any loss (``number.loss``).
 

@@ -1,0 +1,105 @@
+"""The closed list of things a verdict's sentence can say, and the parameters each needs.
+
+Parameters are plain words and plain decimals (a point, no exponent); the sentence itself is made at the edge, in
+the reader's language. A comparison carries these, where they apply:
+
+=================== ====================================================================================
+value, unit         the reading as judged; unit code, empty where none was given
+value_qualifier     ``=``, ``>`` or ``<``
+basis, direction    words of the criterion; ``strict`` is ``yes`` or ``no``
+reference           nominal, baseline or other reading; ``reference_qualifier`` as above
+difference          value - reference, signed; ``size`` without sign; ``side`` less, more or equal
+departure           what is compared with the allowance, growing as things get worse (basis none and ratio:
+                    the value); ``departure_qualifier`` tells which way it may be larger or smaller
+ratio               value as percentage of the reference, one decimal (basis ratio)
+level               the level whose allowance is given: the deciding one, or the first when conforming
+allowance           its size; ``governed_by`` absolute or percent
+absolute, percent   the parts of the limit as published; ``percent_of`` and ``percent_value`` turn the percentage
+                    into the unit; ``governs`` larger, smaller or either, where there are both
+used                share of the first level's allowance in percent, one decimal
+banded_by, quantity the banding quantity, its value, and ``band_start`` and ``band_below`` (empty: open)
+rule, uncertainty   decision rule other than simple; expanded uncertainty U (k = 2)
+acceptance          allowance - U; ``probability`` of conformity, four decimals
+=================== ====================================================================================
+"""
+
+from __future__ import annotations
+
+from enum import StrEnum
+
+
+class SentenceCode(StrEnum):
+    """What a verdict's sentence says."""
+
+    WITHIN = "within"
+    WITHIN_OPEN = "within_open"
+    BETTER_THAN_EXPECTED = "better_than_expected"
+    HIDDEN_LOSS = "hidden_loss"
+    OPEN_BASELINE = "open_baseline"
+    BEYOND = "beyond"
+    GUARD_BAND = "guard_band"
+    NOT_SEEN = "not_seen"
+    STRADDLES = "straddles"
+    TOO_CLOSE = "too_close"
+    GRADED = "graded"
+    NO_READING = "no_reading"
+    NOT_FINITE = "not_finite"
+    WRONG_UNIT = "wrong_unit"
+    NO_NOMINAL = "no_nominal"
+    NO_BASELINE = "no_baseline"
+    BASELINE_NOT_SEEN = "baseline_not_seen"
+    NO_REFERENCE = "no_reference"
+    ZERO_REFERENCE = "zero_reference"
+    NO_BAND_QUANTITY = "no_band_quantity"
+    OUTSIDE_BANDS = "outside_bands"
+    NOT_SEEN_UNDECIDED = "not_seen_undecided"
+    UNKNOWN_GRADE = "unknown_grade"
+    KIND_NOT_JUDGED = "kind_not_judged"
+    NO_UNCERTAINTY = "no_uncertainty"
+
+
+_COMPARED = frozenset(
+    [
+        "value",
+        "value_qualifier",
+        "unit",
+        "basis",
+        "direction",
+        "strict",
+        "departure",
+        "departure_qualifier",
+        "level",
+        "allowance",
+        "governed_by",
+    ]
+)
+_CHANGED = _COMPARED | {"reference", "reference_qualifier", "difference", "size", "side"}
+
+REQUIRED: dict[SentenceCode, frozenset[str]] = {
+    SentenceCode.WITHIN: _COMPARED,
+    SentenceCode.WITHIN_OPEN: _COMPARED,
+    SentenceCode.BETTER_THAN_EXPECTED: _CHANGED,
+    SentenceCode.HIDDEN_LOSS: _CHANGED | {"hidden"},
+    SentenceCode.OPEN_BASELINE: _CHANGED,
+    SentenceCode.BEYOND: _COMPARED,
+    SentenceCode.GUARD_BAND: _COMPARED | {"uncertainty", "acceptance"},
+    SentenceCode.NOT_SEEN: frozenset({"direction", "level"}),
+    SentenceCode.STRADDLES: _COMPARED | {"proven"},
+    SentenceCode.TOO_CLOSE: _COMPARED | {"uncertainty", "proven"},
+    SentenceCode.GRADED: frozenset({"grade", "verdict"}),
+    SentenceCode.NO_READING: frozenset(),
+    SentenceCode.NOT_FINITE: frozenset({"what"}),
+    SentenceCode.WRONG_UNIT: frozenset({"unit", "criterion_unit"}),
+    SentenceCode.NO_NOMINAL: frozenset(),
+    SentenceCode.NO_BASELINE: frozenset(),
+    SentenceCode.BASELINE_NOT_SEEN: frozenset(),
+    SentenceCode.NO_REFERENCE: frozenset(),
+    SentenceCode.ZERO_REFERENCE: frozenset({"basis", "reference", "unit"}),
+    SentenceCode.NO_BAND_QUANTITY: frozenset({"banded_by"}),
+    SentenceCode.OUTSIDE_BANDS: frozenset({"banded_by", "quantity"}),
+    SentenceCode.NOT_SEEN_UNDECIDED: frozenset(),
+    SentenceCode.UNKNOWN_GRADE: frozenset({"grade", "known"}),
+    SentenceCode.KIND_NOT_JUDGED: frozenset({"kind"}),
+    SentenceCode.NO_UNCERTAINTY: _COMPARED | {"rule"},
+}
+"""Parameters that are always there; a sentence may rely on no other without asking."""
