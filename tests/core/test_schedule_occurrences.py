@@ -133,6 +133,13 @@ def test_days_follow_the_rule_from_the_anchor(text, anchor, expected):
     assert list(islice(occurrences(parse_rule(text), date.fromisoformat(anchor)), len(wanted))) == wanted
 
 
+@pytest.mark.parametrize("text", ["FREQ=DAILY", "FREQ=WEEKLY", "FREQ=MONTHLY", "FREQ=YEARLY"])
+def test_no_day_comes_before_the_anchor_when_earlier_ones_are_asked_for(text):
+    anchor_on = date(2025, 3, 5)
+    days = occurrences(parse_rule(text), anchor_on, from_on=date(2020, 1, 1))
+    assert next(days) == anchor_on
+
+
 def test_days_cross_a_century_without_leap_day_when_the_anchor_has_one():
     assert next_on(Rule("YEARLY", 4), date(2096, 2, 29), date(2096, 2, 29)) == date(2100, 2, 28)
     named = parse_rule("FREQ=YEARLY;BYMONTH=2;BYMONTHDAY=29")
