@@ -6,6 +6,8 @@ import datetime as dt
 import hashlib
 import uuid
 from collections.abc import Iterable
+from functools import cache
+from typing import Any
 
 from django.db import models
 
@@ -62,9 +64,17 @@ def newest_form(model: type[Fact]) -> int:
     return max(model.LEDGER_FORMS)
 
 
+@cache
+def form_fields(model: type[Fact], form: int) -> tuple[models.Field[Any, Any], ...]:
+    """The fields of a form, which names them by their columns."""
+    by_column = {field.column: field for field in model._meta.concrete_fields}
+    return tuple(by_column[column] for column in model.LEDGER_FORMS[form])
+
+
 def fact_line(row: Fact, form: int) -> bytes:
-    """One fact as a canonical line."""
-    return canonical([cell(getattr(row, column)) for column in row.LEDGER_FORMS[form]]) + b"\n"
+    """One fact as a canonical line, the same before it is written and after it is read back."""
+    fields = form_fields(type(row), form)
+    return canonical([cell(field.to_python(getattr(row, field.attname))) for field in fields]) + b"\n"
 
 
 def digest_of(rows: Iterable[Fact], form: int) -> dict[str, object]:
