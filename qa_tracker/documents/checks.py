@@ -137,7 +137,7 @@ def draw_signatures(flow: Flow, signatures: tuple[Signature, ...]) -> None:
     """Set who signed, as what, when and meaning what, one line each behind a short rule."""
     if not signatures:
         return
-    flow.need(SMALL.leading * len(signatures) + 4)
+    flow.need(min(BODY.leading * len(signatures) + 8, KEPT_TOGETHER))
     flow.rule(RULE, 0.4)
     flow.space(3)
     for signature in signatures:

@@ -1,26 +1,21 @@
 """Text made safe to draw: nothing in it is markup, nothing invisible acts, every letter has a glyph.
 
-Order follows the Unicode bidirectional algorithm, line by line. Arabic letters are put in the right order
-but not joined: the face holds the joined forms only behind a shaping table.
+Arabic letters are put in the right order but not joined: the face holds the joined forms only behind a
+shaping table.
 """
 
 from __future__ import annotations
 
-import re
 import unicodedata
 from collections.abc import Iterable, Iterator
 from functools import lru_cache
 
-from bidi import get_base_level, get_display
-
+from qa_tracker.documents.direction import CLOSE_ISOLATE, OPEN_ISOLATE, visual
 from qa_tracker.documents.fonts import has_glyph, text_width
 
 # Marks that only steer order, joining or hyphenation: dropped, since order comes from the letters.
 SILENT = frozenset("\u200b\u200c\u200d\u200e\u200f\u061c\u2060\ufeff\u00ad")
-OPEN_ISOLATE, CLOSE_ISOLATE = "\u2068", "\u2069"
-ISOLATES = {ord(OPEN_ISOLATE): None, ord(CLOSE_ISOLATE): None}
 SEPARATOR = " · "
-RIGHT_TO_LEFT = re.compile("[\u0590-\u08ff\ufb1d-\ufdff\ufe70-\ufefc]")
 
 
 @lru_cache(maxsize=8192)
@@ -49,11 +44,7 @@ def joined(parts: Iterable[str], separator: str = SEPARATOR) -> str:
 
 def wrapped(text: str, font: str, size: float, width: float) -> tuple[str, ...]:
     """Break printable text into lines in the order they are drawn; a word too long is broken anywhere."""
-    lines = _lines(text, font, size, width)
-    if not RIGHT_TO_LEFT.search(text):
-        return tuple(line.translate(ISOLATES) for line in lines)
-    base = "L" if OPEN_ISOLATE in text or not get_base_level(text) else "R"
-    return tuple(str(get_display(line, base_dir=base)).translate(ISOLATES) for line in lines)
+    return tuple(visual(line) for line in _lines(text, font, size, width))
 
 
 def _lines(text: str, font: str, size: float, width: float) -> Iterator[str]:

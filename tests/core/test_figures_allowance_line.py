@@ -74,6 +74,7 @@ BOUNDS = [
     ("less than, growth judged", ("0", "1", "4", None, "above"), "<", "≤ 25 %"),
     ("more than, above a two-sided nominal", ("100", "101", "2", None, "either"), ">", "≥ 50 %"),
     ("more than, an absolute lower level", (None, "20", "2", None, "below"), ">", "≤ 10 %"),
+    ("more than the baseline, loss judged", ("152", "160", "6", None, "below"), ">", "0 %"),
     ("not seen", ("100", "101", "2", None, "either"), "not_seen", ""),
 ]
 

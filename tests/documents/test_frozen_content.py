@@ -40,6 +40,10 @@ def spoilt(change) -> bytes:
     return json.dumps(plain).encode()
 
 
+def line_of(plain):
+    return plain["checks"][0]["readings"][0]["line"]
+
+
 REFUSED = [
     ("another schema", lambda p: p.update(schema="leadline/device-dossier/9"), "dossier.schema_unknown"),
     ("an unknown field", lambda p: p.update(colour="red"), "dossier.content_unreadable"),
@@ -47,6 +51,9 @@ REFUSED = [
     ("a missing field", lambda p: p.pop("title"), "dossier.content_unreadable"),
     ("a number for text", lambda p: p.update(title=4), "dossier.content_unreadable"),
     ("a missing label", lambda p: p["labels"].pop("checks"), "dossier.label_missing"),
+    ("a day that is none", lambda p: p["checks"][0].update(due_on="soon"), "dossier.day_unreadable"),
+    ("an amount that is none", lambda p: line_of(p).update(value="wide"), "dossier.amount_unreadable"),
+    ("an amount without end", lambda p: line_of(p).update(value="NaN"), "dossier.amount_unreadable"),
     (
         "a verdict without a mark",
         lambda p: p["checks"][0].update(verdict="passed"),

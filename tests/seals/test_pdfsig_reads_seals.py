@@ -12,7 +12,7 @@ def test_pdfsig_when_the_seal_is_whole_says_valid_and_total(sealed_pdf, pdfsig):
 
 
 def test_pdfsig_when_a_signed_byte_is_changed_says_so(sealed_pdf, pdfsig):
-    printed = pdfsig(sealed_pdf.replace(b"1540", b"1541"))
+    printed = pdfsig(sealed_pdf.replace(b"speed 1540", b"speed 1541"))
     assert "Digest Mismatch" in printed
     assert "Signature is Valid" not in printed
 

@@ -53,7 +53,7 @@ def test_finding_when_nothing_was_looked_at_is_no_bottom_line():
 
 
 SPOILT = [
-    ("a byte of the page", lambda pdf: pdf.replace(b"1540", b"1541"), "seal.digest_differs"),
+    ("a byte of the page", lambda pdf: pdf.replace(b"speed 1540", b"speed 1541"), "seal.digest_differs"),
     (
         "a byte of the reason",
         lambda pdf: pdf.replace(b"Device dossier", b"Device d0ssier"),
