@@ -21,6 +21,7 @@ LINE_HEIGHT = 13.0
 FIGURE = Style(9, 12.5, BOLD)
 NOTE = Style(8.2, 11)
 INDENT = 12.0
+MOST_VALUE_LINES = 2
 READING_HEIGHT = BODY.leading + 11 + SMALL.leading + 8
 KEPT_TOGETHER = 86.0
 
@@ -73,7 +74,9 @@ def _circumstances(check: Check, labels: Labels) -> tuple[str, ...]:
 def draw_reading(flow: Flow, reading: Reading, labels: Labels) -> None:
     """Set one reading: name, value, allowance line, share, verdict; below it what that rests on."""
     name = Cell(printable(reading.label), LEFT, LABEL_WIDTH)
-    value = Cell(value_text(reading, labels), VALUE_X, VALUE_WIDTH, FIGURE, to_right=True)
+    text = value_text(reading, labels)
+    value = Cell(text, VALUE_X, VALUE_WIDTH, FIGURE, to_right=True)
+    long = len(value.lines()) > MOST_VALUE_LINES
     flow.need(READING_HEIGHT)
     if not flow.at_top:
         flow.rule(RULE, 0.4)
@@ -81,7 +84,9 @@ def draw_reading(flow: Flow, reading: Reading, labels: Labels) -> None:
     share = draw_line(flow, reading.line)
     share_cell = Cell(share, SHARE_X, SHARE_WIDTH, BODY, to_right=True)
     verdict = verdict_cell(flow, reading.verdict, labels, VERDICT_X, RIGHT - VERDICT_X)
-    flow.row((name, value, share_cell, verdict))
+    flow.row((name, share_cell, verdict) if long else (name, value, share_cell, verdict))
+    if long:
+        flow.write(text, FIGURE)
     flow.write(printable(reading.sentence), NOTE)
     flow.write(_basis(reading, labels), SMALL)
     flow.space(4)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import io
-from functools import cache
+from functools import cache, lru_cache
 
 import pymupdf_fonts
 from reportlab.pdfbase import pdfmetrics
@@ -35,6 +35,7 @@ def advances(name: str) -> dict[str, float]:
     return widths | dict.fromkeys(UNDRAWN, 0.0)
 
 
+@lru_cache(maxsize=16384)
 def text_width(text: str, name: str, size: float) -> float:
     """Measure printable text in points."""
     widths = advances(name)

@@ -20,8 +20,9 @@ ENGLISH = {
     "line_explained": (
         "The allowance line runs from the baseline or nominal outwards, smaller values on the left. "
         "One tick is the remedial level, a double tick the suspension level; the plumb mark is the reading. "
-        "The figure is the share of the first level's allowance used up; two slanting strokes say that the "
-        "reading lies beyond the end of the scale."
+        "The figure is the share of the first level's allowance used up. Two slanting strokes say that the "
+        "reading lies beyond the end of the scale; a short arm on the plumb mark says that the reading is "
+        "a bound and the truth lies on that side."
     ),
     "conforming": "conforming",
     "remedial": "remedial",

@@ -32,7 +32,7 @@ def draw_opening(flow: Flow, content: DeviceDossier) -> None:
     """Set the head of the document down to the facts of the device."""
     _leadline(flow)
     flow.bookmark(printable(content.title), 0)
-    flow.write(printable(content.group), GROUP)
+    flow.write(printable(content.group), GROUP, width=COLUMN - 40)
     flow.space(22)
     flow.write(printable(content.title), Style(11, 15, colour=BORDER))
     flow.space(2)
@@ -106,7 +106,8 @@ def draw_timeline(flow: Flow, checks: Iterable[Check], explained: str) -> None:
     flow.rule(BORDER, 0.6)
     _years(flow, first, last, scale)
     flow.y -= 15
-    flow.write(printable(explained), SMALL)
+    if not all(verdict for _, verdict in dated):
+        flow.write(printable(explained), SMALL)
 
 
 def _days(check: Check) -> tuple[int, ...]:

@@ -11,6 +11,7 @@ import pytest
 from dossier_content import CHECKS, dossier
 
 from qa_tracker.core.errors import Invalid
+from qa_tracker.documents.content import Reading
 from qa_tracker.documents.device_dossier import device_dossier_pdf
 from qa_tracker.documents.labels import ENGLISH
 
@@ -94,7 +95,8 @@ def test_bytes_when_drawn_by_another_process_are_the_same(pdf, tmp_path):
     program = (
         "import sys; sys.path[:0] = sys.argv[2:]\n"
         "from dossier_content import dossier\n"
-        "from qa_tracker.documents.device_dossier import device_dossier_pdf\n"
+        "from qa_tracker.documents.content import Reading
+from qa_tracker.documents.device_dossier import device_dossier_pdf\n"
         "open(sys.argv[1], 'wb').write(device_dossier_pdf(dossier()))\n"
     )
     out = tmp_path / "again.pdf"
@@ -131,6 +133,17 @@ def test_dossier_when_nothing_is_on_record_says_so(poppler):
 def test_unsigned_check_when_drawn_says_so(poppler):
     text = poppler("pdftotext", device_dossier_pdf(dossier(checks=(replace(CHECKS[0], signatures=()),))))
     assert "Not signed." in text
+
+
+def test_remark_when_too_long_for_its_column_is_set_across_the_page(poppler):
+    remark = Reading("Remarks", "scratched near the strain relief, as it was before", "conforming", "")
+    pdf = device_dossier_pdf(dossier(checks=(replace(CHECKS[0], readings=(remark,)),)))
+    assert remark.value in poppler("pdftotext", pdf)
+
+
+def test_time_line_when_every_check_has_a_verdict_explains_no_stroke(poppler):
+    text = poppler("pdftotext", device_dossier_pdf(dossier(checks=CHECKS[:3])))
+    assert ENGLISH["stroke_explained"] not in text
 
 
 def test_continued_check_when_it_runs_over_is_named_again(pdf, poppler):
