@@ -8,6 +8,8 @@ from celery import Celery
 
 from qa_tracker.tasks.hints import BROKER_ERRORS
 
+ASKING_LIMIT_S = 2.0
+
 logger = logging.getLogger(__name__)
 
 
@@ -17,7 +19,13 @@ def asking(broker_url: str) -> Celery:
         broker=broker_url,
         set_as_current=False,
         fixups=(),
-        changes={"broker_transport_options": {"max_retries": 0}},
+        changes={
+            "broker_transport_options": {
+                "max_retries": 0,
+                "socket_timeout": ASKING_LIMIT_S,
+                "socket_connect_timeout": ASKING_LIMIT_S,
+            }
+        },
     )
 
 
