@@ -95,8 +95,7 @@ def test_bytes_when_drawn_by_another_process_are_the_same(pdf, tmp_path):
     program = (
         "import sys; sys.path[:0] = sys.argv[2:]\n"
         "from dossier_content import dossier\n"
-        "from qa_tracker.documents.content import Reading
-from qa_tracker.documents.device_dossier import device_dossier_pdf\n"
+        "from qa_tracker.documents.device_dossier import device_dossier_pdf\n"
         "open(sys.argv[1], 'wb').write(device_dossier_pdf(dossier()))\n"
     )
     out = tmp_path / "again.pdf"
