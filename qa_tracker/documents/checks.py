@@ -86,7 +86,7 @@ def draw_reading(flow: Flow, reading: Reading, labels: Labels) -> None:
     verdict = verdict_cell(flow, reading.verdict, labels, VERDICT_X, RIGHT - VERDICT_X)
     flow.row((name, share_cell, verdict) if long else (name, value, share_cell, verdict))
     if long:
-        flow.write(text, FIGURE)
+        flow.write(text, BODY)
     flow.write(printable(reading.sentence), NOTE)
     flow.write(_basis(reading, labels), SMALL)
     flow.space(4)

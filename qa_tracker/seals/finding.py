@@ -44,11 +44,12 @@ class Certificate:
 
 @dataclass(frozen=True)
 class SealFinding:
-    """What a verification found; ``claimed_at`` is the sealer's word, not proof of the moment."""
+    """What a verification found; ``claimed_at`` is the sealer's word, ``timestamped_at`` an authority's."""
 
     items: tuple[Item, ...]
     certificate: Certificate | None = None
     claimed_at: datetime | None = None
+    timestamped_at: datetime | None = None
     reason: str = ""
     signatures: int = 0
 
@@ -66,7 +67,7 @@ class SealFinding:
 def verify_pdf(data: bytes, trusted_certificates: Sequence[bytes], *, moment: datetime) -> SealFinding:
     """Look at the seal of a file as it stands at a moment.
 
-    ``trusted_certificates`` are DER bytes. Nothing is fetched: certificates are judged by what is given.
+    ``trusted_certificates`` are DER bytes, those of a timestamp authority among them. Nothing is fetched: certificates are judged by what is given.
     A file that bears no or several signatures gets no further than that.
     """
     try:
@@ -102,6 +103,7 @@ def _looked_into(
         (*counted, *items),
         certificate=certificate,
         claimed_at=signature.self_reported_timestamp,
+        timestamped_at=status.timestamp_validity.timestamp if _timestamp_holds(status) else None,
         reason=str(signature.sig_object.get("/Reason", "")),
         signatures=1,
     )
@@ -123,8 +125,21 @@ def _items(
         Item("profile", signature.sig_object.get("/SubFilter") == PADES, "seal.profile_unknown"),
         Item("certificate_in_date", in_date, "seal.certificate_out_of_date"),
         Item("certificate_trusted", certificate.trusted, "seal.certificate_not_trusted"),
+        *_timestamp_item(status),
         Item("bottom_line", bool(status.bottom_line), "seal.refused"),
     )
+
+
+def _timestamp_item(status: PdfSignatureStatus) -> tuple[Item, ...]:
+    """A timestamp is looked at only where there is one: B-B seals have none."""
+    if status.timestamp_validity is None:
+        return ()
+    return (Item("timestamp", _timestamp_holds(status), "seal.timestamp_invalid"),)
+
+
+def _timestamp_holds(status: PdfSignatureStatus) -> bool:
+    stamp = status.timestamp_validity
+    return stamp is not None and bool(stamp.intact and stamp.valid and stamp.trusted)
 
 
 def _covers_whole_file(data: bytes, signature: EmbeddedPdfSignature, status: PdfSignatureStatus) -> bool:

@@ -60,6 +60,8 @@ def sign_pdf(
     try:
         _refuse_signed(pdf)
         sealed = signer.sign_pdf(IncrementalPdfFileWriter(io.BytesIO(pdf)))
+    except OSError as error:
+        raise Conflict("seal.timestamp_unavailable", problem=str(error)) from error
     except (PdfError, SigningError, ValueError) as error:
         raise Invalid("seal.cannot_sign", problem=str(error)) from error
     return bytes(sealed.getbuffer())
