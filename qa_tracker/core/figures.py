@@ -6,7 +6,7 @@ Shapes, colours and verdict marks live in ``core/shapes.py`` and can be imported
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
-from decimal import ROUND_CEILING, ROUND_FLOOR, Decimal
+from decimal import ROUND_HALF_EVEN, Decimal
 
 from qa_tracker.core.shapes import (
     BORDER,
@@ -49,6 +49,7 @@ __all__ = [
 OUTERMOST_LEVEL_AT = Decimal("0.8")
 # A one-sided scale keeps this much of its width for readings on the better side.
 BETTER_SIDE = Decimal("0.15")
+TENTH = Decimal("0.1")
 
 
 @dataclass(frozen=True)
@@ -70,6 +71,9 @@ class Judged:
         True where exactly the level still conforms ("> x").
     qualifier
         ``"="``, ``">"``, ``"<"`` or ``"not_seen"``.
+    ranks
+        True where the numbers are ranks of grades (0 conforming, 1 remedial, 2 suspension): their places
+        mean something, a share does not.
     """
 
     origin: Decimal | None
@@ -79,6 +83,7 @@ class Judged:
     direction: str = "either"
     strict: bool = True
     qualifier: str = "="
+    ranks: bool = False
 
 
 @dataclass(frozen=True)
@@ -86,9 +91,8 @@ class AllowanceLine:
     """Positions along a scale from 0 (left, smaller values) to 1 (right, larger values).
 
     ``origin`` is None where nothing is measured from; ``plumb`` is None without a reading. ``off_scale``
-    says the plumb was moved to the nearer end. ``share_percent`` is whole per cent of the first level's
-    allowance used up: rounded down inside the allowance and up beyond it, so that 100 is never shown for
-    a reading on the other side of the level. ``bound`` is ``"<="`` or ``">="`` where the reading is only
+    says the plumb was moved to the nearer end. ``share_percent`` is how much of the first level's
+    allowance is used up, to a tenth, half-even, but never 100.0 unless it is exactly that. ``bound`` is ``"<="`` or ``">="`` where the reading is only
     known to one side. ``reached`` is the worst level the reading itself is beyond, or ``""``.
     """
 
@@ -97,7 +101,7 @@ class AllowanceLine:
     suspension: tuple[float, ...] = ()
     plumb: float | None = None
     off_scale: bool = False
-    share_percent: int | None = None
+    share_percent: Decimal | None = None
     bound: str = ""
     reached: str = ""
     better: bool = False
@@ -139,7 +143,7 @@ def allowance_line(judged: Judged) -> AllowanceLine:
     --------
     >>> line = allowance_line(Judged(Decimal("100"), Decimal("101"), Decimal("2"), Decimal("4")))
     >>> line.origin, line.remedial, line.suspension, line.plumb, line.share_percent
-    (0.5, (0.3, 0.7), (0.1, 0.9), 0.6, 50)
+    (0.5, (0.3, 0.7), (0.1, 0.9), 0.6, Decimal('50.0'))
     """
     if judged.origin is None:
         return _lower_limit_line(judged)
@@ -160,7 +164,7 @@ def allowance_line(judged: Judged) -> AllowanceLine:
         line,
         plumb=position,
         off_scale=off_scale,
-        share_percent=_share(away, levels[0], judged.strict),
+        share_percent=None if judged.ranks else _share(away, levels[0]),
         bound=_bound(judged, judged.value - judged.origin),
         reached=_reached(judged, away),
         better=away < 0,
@@ -183,7 +187,7 @@ def _lower_limit_line(judged: Judged) -> AllowanceLine:
         return line
     position, off_scale = _clamped(judged.value / reach)
     below = replace(judged, origin=Decimal(0), direction="below")
-    share = _share(levels[0], judged.value, judged.strict) if judged.value > 0 else None
+    share = _share(levels[0], judged.value) if judged.value > 0 else None
     return replace(
         line,
         plumb=position,
@@ -216,13 +220,15 @@ def _clamped(position: Decimal) -> tuple[float, bool]:
     return float(inside), inside != position
 
 
-def _share(away: Decimal, allowance: Decimal, strict: bool) -> int | None:
-    """Round towards the side of the level the reading is on; the better side counts as nothing used."""
+def _share(away: Decimal, allowance: Decimal) -> Decimal | None:
+    """Count the better side as nothing used; a hair beside the level stays beside it after rounding."""
     if allowance <= 0:
         return None
-    beyond = away > allowance or (away == allowance and not strict)
     share = max(away, Decimal(0)) * 100 / allowance
-    return int(share.to_integral_value(ROUND_CEILING if beyond else ROUND_FLOOR))
+    rounded = share.quantize(TENTH, ROUND_HALF_EVEN)
+    if rounded != 100 or share == 100:
+        return rounded
+    return rounded + (TENTH if share > 100 else -TENTH)
 
 
 def _bound(judged: Judged, difference: Decimal) -> str:
@@ -255,15 +261,15 @@ def share_text(line: AllowanceLine) -> str:
 
     Examples
     --------
-    >>> share_text(AllowanceLine(origin=0.5, plumb=0.6, share_percent=50))
+    >>> share_text(AllowanceLine(origin=0.5, plumb=0.6, share_percent=Decimal("50.0")))
     '50 %'
-    >>> share_text(AllowanceLine(origin=0.5, plumb=0.6, share_percent=33, bound="<="))
-    '≤ 33 %'
+    >>> share_text(AllowanceLine(origin=0.5, plumb=0.6, share_percent=Decimal("33.3"), bound="<="))
+    '≤ 33.3 %'
     """
     if line.share_percent is None:
         return ""
     sign = {"<=": "≤ ", ">=": "≥ "}.get(line.bound, "") if line.share_percent else ""
-    return f"{sign}{line.share_percent} %"
+    return f"{sign}{str(line.share_percent).removesuffix('.0')} %"
 
 
 def allowance_shapes(line: AllowanceLine, width: float, height: float) -> tuple[Shape, ...]:

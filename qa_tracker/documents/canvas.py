@@ -141,7 +141,15 @@ def paint(pages: Sequence[Page], *, title: str, author: str, subject: str, langu
     """Write the pages as a PDF; the same pages give the same bytes."""
     face(REGULAR), face(BOLD)
     out = io.BytesIO()
-    canvas = Canvas(out, pagesize=A4, invariant=1, pageCompression=0, initialFontName=REGULAR, lang=language)
+    canvas = Canvas(
+        out,
+        pagesize=A4,
+        invariant=1,
+        pageCompression=0,
+        initialFontName=REGULAR,
+        lang=language,
+        pdfVersion=(1, 7),
+    )
     canvas.setTitle(title)
     canvas.setAuthor(author)
     canvas.setSubject(subject)

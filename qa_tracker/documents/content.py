@@ -73,6 +73,7 @@ class Line:
     direction: str = "either"
     strict: bool = True
     qualifier: str = "="
+    ranks: bool = False
 
     def judged(self) -> Judged:
         """Give the numbers to draw."""
@@ -84,6 +85,7 @@ class Line:
             direction=self.direction,
             strict=self.strict,
             qualifier=self.qualifier,
+            ranks=self.ranks,
         )
 
 

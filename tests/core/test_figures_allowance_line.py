@@ -46,8 +46,12 @@ SHARES = [
     ("half", ("100", "101", "2", "4", "either"), True, 50, ""),
     ("exactly at a strict level", ("152", "146.0", "6", "10", "below"), True, 100, ""),
     ("exactly at a loose level", ("0", "4", "4", "6", "above"), False, 100, "remedial"),
-    ("a hair beyond", ("152", "145.99", "6", "10", "below"), True, 101, "remedial"),
-    ("a hair inside", ("152", "146.01", "6", "10", "below"), True, 99, ""),
+    ("a hair beyond", ("152", "145.99", "6", "10", "below"), True, "100.2", "remedial"),
+    ("a hair inside", ("152", "146.01", "6", "10", "below"), True, "99.8", ""),
+    ("far less than a tenth beyond", ("0", "100.01", "100", None, "above"), True, "100.1", "remedial"),
+    ("far less than a tenth inside", ("0", "99.99", "100", None, "above"), True, "99.9", ""),
+    ("a third", ("152", "150", "6", "10", "below"), True, "33.3", ""),
+    ("two thirds", ("152", "148", "6", "10", "below"), True, "66.7", ""),
     ("beyond the outer level", ("152", "141.8", "6", "10", "below"), True, 170, "suspension"),
     ("a gain where loss is judged", ("152", "159", "6", "10", "below"), True, 0, ""),
     ("decimal, not binary", ("20.0", "20.3", "0.3", None, "either"), True, 100, ""),
@@ -64,12 +68,12 @@ SHARES = [
 )
 def test_share_when_a_reading_is_judged(given_, strict, share, reached):
     line = allowance_line(judged(*given_, strict=strict))
-    assert (line.share_percent, line.reached) == (share, reached)
+    assert (line.share_percent, line.reached) == (None if share is None else Decimal(share), reached)
 
 
 BOUNDS = [
-    ("more than, loss judged", ("162", "160", "6", None, "below"), ">", "≤ 33 %"),
-    ("less than, loss judged", ("152", "148", "6", None, "below"), "<", "≥ 66 %"),
+    ("more than, loss judged", ("162", "160", "6", None, "below"), ">", "≤ 33.3 %"),
+    ("less than, loss judged", ("152", "148", "6", None, "below"), "<", "≥ 66.7 %"),
     ("more than, growth judged", ("0", "3", "4", None, "above"), ">", "≥ 75 %"),
     ("less than, growth judged", ("0", "1", "4", None, "above"), "<", "≤ 25 %"),
     ("more than, above a two-sided nominal", ("100", "101", "2", None, "either"), ">", "≥ 50 %"),
@@ -84,6 +88,12 @@ BOUNDS = [
 )
 def test_share_text_when_the_reading_is_qualified(given_, qualifier, text):
     assert share_text(allowance_line(judged(*given_, qualifier=qualifier))) == text
+
+
+def test_line_when_the_numbers_are_ranks_has_a_place_and_no_share():
+    line = allowance_line(judged("0", "1", "1", "2", "above", strict=False, ranks=True))
+    assert (line.reached, share_text(line)) == ("remedial", "")
+    assert line.plumb == line.remedial[0]
 
 
 def test_line_when_nothing_is_known_is_a_bare_scale():

@@ -97,7 +97,11 @@ def readings(value: str, verdict: str, sentence: str) -> tuple[Reading, ...]:
             condition="Abdomen 4 MHz",
         ),
         Reading(
-            "Lens", "green", "conforming", "No wear seen.", line=Line("0", "0", "1", "2", "above", False)
+            "Lens",
+            "green",
+            "conforming",
+            "No wear seen.",
+            line=Line("0", "0", "1", "2", "above", False, ranks=True),
         ),
     )
 
