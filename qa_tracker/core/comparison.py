@@ -151,9 +151,7 @@ def probability_within(low: float, high: float, estimate: float, standard_uncert
     if standard_uncertainty == 0:
         return float(low <= estimate <= high)
     scale = standard_uncertainty * math.sqrt(2)
-    # The complementary error function keeps its digits in the far tails.
-    above, under = math.erfc((high - estimate) / scale) / 2, math.erfc((estimate - low) / scale) / 2
-    return max(0.0, 1 - above - under)
+    return (math.erf((high - estimate) / scale) - math.erf((low - estimate) / scale)) / 2
 
 
 def comparison_parameters(compared: Comparison, level: Level, first: Level) -> dict[str, str]:

@@ -88,7 +88,7 @@ def judge(
         ``simple``, ``guarded`` or ``zones``. Without U the last two clear nothing: a reading beyond a level
         by plain comparison is given it, any other is not assessable.
     unit, criterion_unit
-        Compared where the criterion has one; nothing is converted.
+        Compared where the criterion has one; nothing is converted. "Not seen" has no unit to compare.
 
     Returns
     -------
@@ -190,12 +190,12 @@ def _judge_number(criterion: Criterion, question: _Question) -> Judgement:
 
 def _at_band(criterion: Criterion, question: _Question) -> Criterion | Judgement:
     """Check that there is a reading in the right unit, and pick the band that holds."""
-    if question.value is None and question.qualifier != "not_seen":
-        return _not_assessable(Say.NO_READING)
-    if question.criterion_unit is not None and question.unit != question.criterion_unit:
-        return _not_assessable(
-            Say.WRONG_UNIT, unit=question.unit or "", criterion_unit=question.criterion_unit
-        )
+    if question.qualifier != "not_seen":
+        if question.value is None:
+            return _not_assessable(Say.NO_READING)
+        if question.criterion_unit not in (None, question.unit):
+            units = {"unit": question.unit or "", "criterion_unit": question.criterion_unit or ""}
+            return _not_assessable(Say.WRONG_UNIT, **units)
     if not criterion.bands:
         return criterion
     quantity = question.quantity

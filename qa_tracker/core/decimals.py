@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import re
 from dataclasses import dataclass
-from decimal import Decimal
+from decimal import Context, Decimal
 from fractions import Fraction
 
 from qa_tracker.core.errors import Invalid
@@ -23,6 +23,9 @@ MAX_TEXT = 40
 # How near ten times or a tenth of the last value asks again, and how far a value may stand outside a band of
 # no width: common practice, no source.
 ASK_AGAIN_SHARE = Fraction(15, 100)
+
+# Wide enough that moving the point of any number admitted here rounds nothing.
+_WIDE = Context(prec=300)
 
 _NUMBER = re.compile(r"[+-]?(?:[0-9]+(?:[.,][0-9]+)?|[.,][0-9]+)", re.ASCII)
 # What is wrong with a text that is no number, most telling first.
@@ -165,14 +168,11 @@ def scaled_at(value: Decimal, places: int) -> int:
     own = places_of(value)
     if own > 2 * MAX_TEXT:
         raise Invalid("number.too_many_places", entered=str(value)[:MAX_TEXT], places=str(2 * MAX_TEXT))
-    sign, digits, exponent = value.as_tuple()
-    number = int("".join(map(str, digits))) * ten_to(max(0, int(exponent))) * (-1 if sign else 1)
-    if places >= own:
-        return number * ten_to(places - own)
-    kept, lost = divmod(number, ten_to(own - places))
-    if lost:
+    shifted = value.scaleb(places, _WIDE)
+    whole = int(shifted)
+    if shifted != whole:
         raise Invalid("number.loss", entered=plain(value), places=str(places))
-    return kept
+    return whole
 
 
 def subtract(value: Decimal, other: Decimal) -> Decimal:
@@ -213,9 +213,15 @@ def plain(value: Decimal, *, strip: bool = False) -> str:
 
 
 def is_multiple(value: Decimal, step: Decimal) -> bool:
-    """Tell whether ``value`` is a whole multiple of ``step`` (> 0), exactly."""
+    """Tell whether ``value`` is a whole multiple of ``step``, exactly; ``number.step`` unless step > 0."""
+    _check_step(step)
     places = max(places_of(value), places_of(step))
     return scaled_at(value, places) % scaled_at(step, places) == 0
+
+
+def _check_step(step: Decimal) -> None:
+    if not step.is_finite() or step <= 0:
+        raise Invalid("number.step", step=str(step))
 
 
 def round_half_even(value: Decimal | Fraction, step: Decimal) -> Decimal:
@@ -233,7 +239,7 @@ def round_half_even(value: Decimal | Fraction, step: Decimal) -> Decimal:
     Raises
     ------
     Invalid
-        ``number.not_finite`` for NaN and infinity.
+        ``number.not_finite`` for NaN and infinity, ``number.step`` unless step > 0.
 
     Examples
     --------
@@ -242,6 +248,7 @@ def round_half_even(value: Decimal | Fraction, step: Decimal) -> Decimal:
     """
     if isinstance(value, Decimal) and not value.is_finite():
         raise Invalid("number.not_finite", entered=str(value))
+    _check_step(step)
     multiples = round(Fraction(value) / Fraction(step))
     places = places_of(step)
     return from_scaled(multiples * scaled_at(step, places), places)

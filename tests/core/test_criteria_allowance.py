@@ -39,7 +39,7 @@ def test_allowance_is_the_limit_itself_when_nothing_is_referred_to():
     assert allowance(Limit(D("-5.4")), None).size == D("-5.4")
 
 
-@settings(max_examples=500)
+@settings(max_examples=200)
 @given(NUMBERS, NUMBERS)
 def test_share_of_is_exact_for_long_numbers(percent, reference):
     assert Fraction(share_of(percent, -reference)) == Fraction(percent) * Fraction(reference) / 100

@@ -109,6 +109,11 @@ REFUSALS = {
         "criterion.not_beyond",
         "criterion",
     ),
+    "lower_limits_equal": (
+        {"basis": "none", "direction": "below", "remedial": R6, "suspension": R6},
+        "criterion.not_beyond",
+        "criterion",
+    ),
     "bands_unnamed": (
         _bands({"below": "3", "remedial": R6}, by=None),
         "criterion.bands_and_quantity",

@@ -13,6 +13,7 @@ from hypothesis import strategies as st
 from qa_tracker.core.decimals import (
     far_outside,
     from_scaled,
+    is_multiple,
     near_factor_ten,
     places_of,
     plain,
@@ -45,7 +46,14 @@ def test_round_half_even_refuses_when_not_finite(value):
         round_half_even(D(value), D("0.1"))
 
 
-@settings(max_examples=300)
+@pytest.mark.parametrize("step", ["0", "-0.1", "NaN", "Infinity"])
+def test_steps_are_refused_when_not_above_zero(step):
+    for question in (is_multiple, round_half_even):
+        with pytest.raises(Invalid, match=r"number\.step"):
+            question(D("1"), D(step))
+
+
+@settings(max_examples=200)
 @given(st.integers(-(10**15), 10**15), st.integers(0, 12))
 def test_from_scaled_returns_when_scaled_again(scaled, places):
     assert scaled_at(from_scaled(scaled, places), places) == scaled
