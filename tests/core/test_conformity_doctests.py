@@ -1,0 +1,18 @@
+"""The worked examples in the docstrings of the judging modules."""
+
+from __future__ import annotations
+
+import doctest
+
+import pytest
+
+from qa_tracker.core import allowances, comparison, conformity, criteria, decimals, units, verdict_kernel
+
+
+@pytest.mark.parametrize(
+    "module", [allowances, comparison, conformity, criteria, decimals, units, verdict_kernel]
+)
+def test_examples_give_what_they_say(module):
+    found = doctest.testmod(module)
+    assert found.attempted > 0
+    assert found.failed == 0
