@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from django.apps import AppConfig
-from django.db.models.signals import post_migrate
+from django.db.models.signals import post_migrate, pre_migrate
 
 
 class RecordsConfig(AppConfig):
@@ -13,5 +13,6 @@ class RecordsConfig(AppConfig):
     def ready(self) -> None:
         from qa_tracker.records import guards  # noqa: PLC0415  models can't be imported before the apps are ready
 
+        pre_migrate.connect(guards.before_migrate, sender=self)
         # SQLite rebuilds a table to alter it and silently drops its triggers: put them back after every migrate.
         post_migrate.connect(guards.after_migrate, sender=self)

@@ -97,7 +97,7 @@ def installed(cursor: Any) -> dict[str, str]:
     cursor.execute(
         "SELECT t.tgname, t.tgrelid::regclass::text, p.proname, p.prosrc, t.tgtype "
         "FROM pg_trigger t JOIN pg_proc p ON p.oid = t.tgfoid "
-        "WHERE NOT t.tgisinternal AND t.tgenabled IN ('O', 'A') AND t.tgqual IS NULL"
+        "WHERE NOT t.tgisinternal AND t.tgenabled IN ('O', 'A') AND t.tgqual IS NULL AND t.tgattr::text = ''"
     )
     bodies = {name: body.split("$$")[1] for name, body in zip(FUNCTIONS, PREPARE, strict=True)}
     return {
@@ -108,13 +108,23 @@ def installed(cursor: Any) -> dict[str, str]:
 
 
 def _trigger_text(name: str, table: str, function: str, kind: int) -> str:
-    """A found trigger in the words of :func:`_trigger` (bits of ``tgtype``: row 1, insert 4, delete 8, ...)."""
+    """A found trigger in the words of :func:`_trigger` (bits of ``tgtype``: row 1, before 2, insert 4, ...)."""
     scope = "ROW" if kind & 1 else "STATEMENT"
+    time = "BEFORE" if kind & 2 else "AFTER"
     moments = [
         word for bit, word in ((4, "INSERT"), (8, "DELETE"), (16, "UPDATE"), (32, "TRUNCATE")) if kind & bit
     ]
-    sql = f'CREATE TRIGGER "{name}" BEFORE {" OR ".join(moments)} ON "{table}" '
+    sql = f'CREATE TRIGGER "{name}" {time} {" OR ".join(moments)} ON "{table}" '
     return sql + f"FOR EACH {scope} EXECUTE FUNCTION {function}()"
+
+
+def unenforced(cursor: Any) -> list[str]:
+    """Tables whose foreign keys were switched off, without which a row needs no leaf."""
+    cursor.execute(
+        "SELECT DISTINCT 'foreign keys of ' || c.relname FROM pg_trigger t JOIN pg_class c ON c.oid = t.tgrelid "
+        "WHERE t.tgisinternal AND t.tgenabled NOT IN ('O', 'A') AND starts_with(c.relname, 'leadline_')"
+    )
+    return [name for (name,) in cursor.fetchall()]
 
 
 def same(found: str | None, wanted: str) -> bool:

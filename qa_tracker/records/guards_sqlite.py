@@ -91,6 +91,16 @@ def installed(cursor: Any) -> dict[str, str]:
     return dict(cursor.fetchall())
 
 
+def unenforced(cursor: Any) -> list[str]:
+    """Rules of this connection that are off, without which a row needs no leaf or REPLACE fires no guard."""
+    off = []
+    for rule in ("foreign_keys", "recursive_triggers"):
+        cursor.execute(f"PRAGMA {rule}")
+        if cursor.fetchone()[0] != 1:
+            off.append(f"PRAGMA {rule}")
+    return off
+
+
 def same(found: str | None, wanted: str) -> bool:
     """Whether a stored trigger is the one wanted."""
     return found == wanted
