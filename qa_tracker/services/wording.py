@@ -1,0 +1,58 @@
+"""The words of the program: every code as a sentence or word a person reads, in their language.
+
+This is the door; the siblings ``wording_*`` hold the words by what they speak of.
+"""
+
+from __future__ import annotations
+
+from qa_tracker.services.wording_criteria import criterion_words, source_line, standing_word
+from qa_tracker.services.wording_due import due_words, recurrence_words
+from qa_tracker.services.wording_leaves import leaf_sentence
+from qa_tracker.services.wording_letters import digest_letter, health_sentence
+from qa_tracker.services.wording_refusals import refusal
+from qa_tracker.services.wording_verdicts import verdict_sentence
+from qa_tracker.services.wording_words import (
+    array_word,
+    check_state_word,
+    contact_word,
+    device_state_word,
+    dossier_state_word,
+    fault_state_word,
+    kind_word,
+    level_of_notice_word,
+    level_word,
+    meaning_word,
+    qualifier_word,
+    reason_word,
+    role_word,
+    unit_symbol,
+    verdict_word,
+)
+
+__all__ = [
+    "array_word",
+    "check_state_word",
+    "contact_word",
+    "criterion_words",
+    "device_state_word",
+    "digest_letter",
+    "dossier_state_word",
+    "due_words",
+    "fault_state_word",
+    "health_sentence",
+    "kind_word",
+    "leaf_sentence",
+    "level_of_notice_word",
+    "level_word",
+    "meaning_word",
+    "qualifier_word",
+    "reason_word",
+    "recurrence_words",
+    "refusal",
+    "role_word",
+    "source_line",
+    "standing_word",
+    "unit_symbol",
+    "verdict_sentence",
+    "verdict_word",
+]

@@ -1,0 +1,152 @@
+"""The sentences of readings that were not compared: grades, what was not seen, and what can't be judged."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+from typing import Final
+
+from django.utils.translation import gettext as _
+from django.utils.translation import gettext_noop as N_
+
+from qa_tracker.core.sentence_codes import SentenceCode as Say
+from qa_tracker.services.wording_words import (
+    REFERENCES,
+    amount,
+    banding_unit,
+    banding_word,
+    capital,
+    kind_word,
+    unit_symbol,
+)
+
+Parameters = Mapping[str, str]
+
+
+def _not_seen(given: Parameters, says: str) -> str:
+    return _("Nothing was seen, which is worse than any value the limit could allow: %(verdict)s.") % {
+        "verdict": says
+    }
+
+
+def _graded(given: Parameters, says: str) -> str:
+    told = {"grade": given["grade"], "verdict": says}
+    if given["grade"] in ("yes", "no"):
+        return _("The answer is “%(grade)s”: %(verdict)s.") % told
+    return _("The grade is “%(grade)s”: %(verdict)s.") % told
+
+
+NUMBERS: Final = {
+    "value": N_("the reading"),
+    "nominal": N_("the nominal value"),
+    "baseline": N_("the baseline"),
+    "reference": N_("what it is compared with"),
+    "uncertainty": N_("the uncertainty"),
+}
+
+
+def _not_finite(given: Parameters, says: str) -> str:
+    told = {"what": _(NUMBERS.get(given["what"], given["what"])), "verdict": says}
+    sentence = _("%(what)s is not a finite number: %(verdict)s. Look at the readings it is computed from.")
+    return capital(sentence % told)
+
+
+def _unit_words(code: str) -> str:
+    return unit_symbol(code) or _("a plain number")
+
+
+def _wrong_unit(given: Parameters, says: str) -> str:
+    sentence = _(
+        "The reading is in %(unit)s and the limit in %(wanted)s; nothing is converted: %(verdict)s. "
+        "Read it in %(wanted)s."
+    )
+    read_in = _unit_words(given["unit"]) if given["unit"] else _("no unit")
+    return sentence % {"unit": read_in, "wanted": _unit_words(given["criterion_unit"]), "verdict": says}
+
+
+def _no_nominal(given: Parameters, says: str) -> str:
+    return _(
+        "There is no nominal value to compare with: %(verdict)s. Name the test object whose true values are "
+        "on record."
+    ) % {"verdict": says}
+
+
+def _no_baseline(given: Parameters, says: str) -> str:
+    return _("There is no baseline yet to compare with: %(verdict)s. A physicist can set one.") % {
+        "verdict": says
+    }
+
+
+def _baseline_not_seen(given: Parameters, says: str) -> str:
+    return _(
+        "The baseline was “not seen”, so no change from it can be told: %(verdict)s. A physicist can set "
+        "another."
+    ) % {"verdict": says}
+
+
+def _no_reference(given: Parameters, says: str) -> str:
+    return _(
+        "The other reading that this one is judged against is missing: %(verdict)s. Read both in one check."
+    ) % {"verdict": says}
+
+
+def _zero_reference(given: Parameters, says: str) -> str:
+    names = REFERENCES | {"ratio": N_("the other reading")}
+    told = {
+        "name": _(names[given["basis"]]),
+        "amount": amount(given["reference"], given["unit"]),
+        "verdict": says,
+    }
+    return capital(_("%(name)s is %(amount)s, of which no share can be taken: %(verdict)s.") % told)
+
+
+def _no_band_quantity(given: Parameters, says: str) -> str:
+    told = {"name": banding_word(given["banded_by"]), "verdict": says}
+    return (
+        _("The limit depends on the %(name)s, which is not on record: %(verdict)s. Add it to the condition.")
+        % told
+    )
+
+
+def _outside_bands(given: Parameters, says: str) -> str:
+    quantity = amount(given["quantity"], banding_unit(given["banded_by"]))
+    told = {"name": banding_word(given["banded_by"]), "quantity": quantity, "verdict": says}
+    return _("There is no limit for a %(name)s of %(quantity)s: %(verdict)s.") % told
+
+
+def _not_seen_undecided(given: Parameters, says: str) -> str:
+    return _("Nothing was seen, and the limit has two sides, so it can't be told which: %(verdict)s.") % {
+        "verdict": says
+    }
+
+
+def _unknown_grade(given: Parameters, says: str) -> str:
+    told = {"grade": given["grade"], "known": given["known"], "verdict": says}
+    return _("The limit does not know the grade “%(grade)s”, only %(known)s: %(verdict)s.") % told
+
+
+def _no_reading(given: Parameters, says: str) -> str:
+    return _("There is no reading: %(verdict)s.") % {"verdict": says}
+
+
+def _kind_not_judged(given: Parameters, says: str) -> str:
+    told = {"kind": kind_word(given["kind"]), "verdict": says}
+    return _("A reading of this kind (%(kind)s) is not judged by this limit: %(verdict)s.") % told
+
+
+PLAIN: Final[dict[Say, Callable[[Parameters, str], str]]] = {
+    Say.NOT_SEEN: _not_seen,
+    Say.GRADED: _graded,
+    Say.NO_READING: _no_reading,
+    Say.NOT_FINITE: _not_finite,
+    Say.WRONG_UNIT: _wrong_unit,
+    Say.NO_NOMINAL: _no_nominal,
+    Say.NO_BASELINE: _no_baseline,
+    Say.BASELINE_NOT_SEEN: _baseline_not_seen,
+    Say.NO_REFERENCE: _no_reference,
+    Say.ZERO_REFERENCE: _zero_reference,
+    Say.NO_BAND_QUANTITY: _no_band_quantity,
+    Say.OUTSIDE_BANDS: _outside_bands,
+    Say.NOT_SEEN_UNDECIDED: _not_seen_undecided,
+    Say.UNKNOWN_GRADE: _unknown_grade,
+    Say.KIND_NOT_JUDGED: _kind_not_judged,
+}
