@@ -13,7 +13,7 @@ from typing import Any
 from qa_tracker.core.criteria import Band, Criterion
 from qa_tracker.core.errors import Invalid
 from qa_tracker.core.library_reader import one_of, refuse_repeated
-from qa_tracker.core.library_shapes import CAUTIONS, CRITERIA_SET, LEVELS, PROCEDURE
+from qa_tracker.core.library_shapes import CAUTIONS, CRITERIA_SET, CRITERION, LEVELS, PROCEDURE
 from qa_tracker.core.library_specs import (
     CautionSpec,
     CriteriaSetSpec,
@@ -46,6 +46,18 @@ def criteria_set(document: Any) -> CriteriaSetSpec:
     refuse_repeated([criterion.id for criterion in read.criteria], "criteria", "id")
     for index, criterion in enumerate(read.criteria):
         _check_levels(criterion, f"criteria[{index}]")
+    return read
+
+
+def criterion(document: Any) -> CriterionSpec:
+    """Read one criterion of a set.
+
+    Raises
+    ------
+    Invalid
+        ``library.*`` or ``criterion.*``, with the place as ``field``.
+    """
+    read: CriterionSpec = CRITERION(document, "criterion")
     return read
 
 

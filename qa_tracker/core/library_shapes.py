@@ -96,6 +96,7 @@ _CRITERION: Final[dict[str, Rule | tuple[Rule, Any]]] = {
     "criterion": _criterion,
     "note": note,
 }
+CRITERION: Final = object_of(_CRITERION, CriterionSpec)
 _SET: Final[dict[str, Rule | tuple[Rule, Any]]] = {
     "set": _SLUG,
     "edition": text,
@@ -103,7 +104,7 @@ _SET: Final[dict[str, Rule | tuple[Rule, Any]]] = {
     "source": text,
     "note": note,
     "cautions": many(_SLUG),
-    "criteria": some(object_of(_CRITERION, CriterionSpec)),
+    "criteria": some(CRITERION),
 }
 _MEASURAND: Final[dict[str, Rule | tuple[Rule, Any]]] = {
     "code": _CODE,

@@ -127,6 +127,20 @@ def command(
         append([act])
 
 
+@contextmanager
+def sweeping(kind: str, *, at: dt.datetime, as_if: dt.datetime | None) -> Iterator[Act]:
+    """A command of the program itself that first takes the ledger's lock, so that two never do the same work.
+
+    No leaf is written where the command wrote no row.
+    """
+    with transaction.atomic():
+        _locked_head()
+        act = Act(kind, None, at, LiveWriter(), as_if=as_if)
+        yield act
+        if act.facts:
+            append([act])
+
+
 class History:
     """Many commands of the past in one transaction; made by :func:`history`."""
 

@@ -1,0 +1,151 @@
+"""Checks as duties: what is due, what was done, what waits for a countersignature."""
+
+from __future__ import annotations
+
+import datetime as dt
+import uuid
+from dataclasses import dataclass
+
+from django.db.models import Q, QuerySet
+
+from qa_tracker.core.workflow import CHECK_AWAITED, CHECK_DONE
+from qa_tracker.records.models import Check
+from qa_tracker.records.queries.as_of import noun
+from qa_tracker.records.queries.scope import Scope, checks_in
+
+
+@dataclass(frozen=True)
+class CheckRow:
+    """One check with the device and procedure it belongs to."""
+
+    id: int
+    uid: uuid.UUID
+    version: int
+    plan_id: int | None
+    device_id: int
+    device_uid: uuid.UUID
+    device_kind: str
+    device_label: str
+    device_state: str
+    scanner_label: str
+    procedure_id: int
+    procedure: str
+    procedure_code: str
+    site_id: int | None
+    site_code: str
+    location: str
+    location_position: int
+    responsible_id: int | None
+    responsible: str
+    state: str
+    due_on: dt.date | None
+    opens_at: dt.datetime | None
+    due_at: dt.datetime | None
+    late_at: dt.datetime | None
+    overdue_at: dt.datetime | None
+    grace_days: int
+    verdict: str
+    verdict_level: str
+    submitted_at: dt.datetime | None
+    excuse: str
+
+
+def _row(check: Check) -> CheckRow:
+    device, plan = check.device, check.plan
+    scanner, room = device.scanner, device.location
+    return CheckRow(
+        check.id, check.uid, check.version, check.plan_id, device.id, device.uid, device.kind,
+        f"{device.maker} {device.model} {device.serial}", device.state,
+        f"{scanner.model} {scanner.serial}" if scanner else "",
+        check.procedure_id, check.procedure.title, check.procedure.code,
+        check.site_id, check.site.code if check.site else "",
+        room.name if room else "", room.position if room else 0,
+        plan.responsible_id if plan else None, plan.responsible.name if plan else "",
+        check.state, check.due_on, check.opens_at, check.due_at, check.late_at, check.overdue_at,
+        plan.grace_days if plan else 0,
+        check.verdict, check.verdict_level, check.submitted_at, check.excuse,
+    )  # fmt: skip
+
+
+def _joined() -> QuerySet[Check]:
+    return Check.objects.select_related(
+        "device__scanner", "device__location", "procedure", "site", "plan__responsible"
+    )
+
+
+def find_check(scope: Scope, uid: uuid.UUID, as_of: dt.datetime | None = None) -> CheckRow | None:
+    """A check in sight by uid; with ``as_of`` in the state known then."""
+    check = _joined().filter(checks_in(scope), uid=uid).first()
+    if check is None:
+        return None
+    if as_of is not None:
+        known = noun(Check, as_of, id=check.id)
+        if known is None:
+            return None
+        known.device, known.procedure, known.site, known.plan = (
+            check.device, check.procedure, check.site, check.plan,
+        )  # fmt: skip
+        check = known
+    return _row(check)
+
+
+def due_checks(scope: Scope, at: dt.datetime, *, horizon_days: int = 14) -> list[CheckRow]:
+    """Awaited checks that are open, due or overdue, or that open within the horizon; soonest due first."""
+    until = at + dt.timedelta(days=horizon_days)
+    found = (
+        _joined()
+        .filter(checks_in(scope), state__in=CHECK_AWAITED)
+        .filter(Q(opens_at=None) | Q(opens_at__lte=until))
+        .exclude(device__state__in=("disposed", "lost"))
+        .distinct()
+    )
+    rows = [_row(check) for check in found]
+    return sorted(
+        rows,
+        key=lambda row: (
+            row.site_code,
+            row.location_position,
+            row.location,
+            row.scanner_label,
+            row.due_on or dt.date.min,
+            row.device_label,
+            row.id,
+        ),  # fmt: skip
+    )
+
+
+def list_checks(
+    scope: Scope, *, before: int | None = None, most: int = 50, **wanted: object
+) -> list[CheckRow]:
+    """Checks in sight, newest first; ``wanted`` names columns, ``before`` pages by key."""
+    found = _joined().filter(checks_in(scope), **wanted).distinct().order_by("-id")
+    if before is not None:
+        found = found.filter(id__lt=before)
+    return [_row(check) for check in found[:most]]
+
+
+def done_checks(scope: Scope, *, before: int | None = None, most: int = 50) -> list[CheckRow]:
+    """Checks that were submitted, newest first."""
+    return list_checks(scope, before=before, most=most, state__in=CHECK_DONE | {"sent_back"})
+
+
+def submitted_checks(scope: Scope, most: int = 200) -> list[CheckRow]:
+    """Checks that wait for a countersignature or need none, oldest first."""
+    found = _joined().filter(checks_in(scope), state="submitted").distinct().order_by("submitted_at", "id")
+    return [_row(check) for check in found[:most]]
+
+
+def checks_of_device(
+    device_id: int, *, until: dt.datetime | None = None, most: int | None = None
+) -> list[CheckRow]:
+    """A device's checks, newest first, up to a moment."""
+    found = _joined().filter(device_id=device_id).order_by("-due_on", "-id")
+    if until is not None:
+        found = found.filter(Q(submitted_at=None, due_at__lte=until) | Q(submitted_at__lte=until))
+    return [_row(check) for check in found[:most]]
+
+
+def next_check_of(plan_id: int) -> CheckRow | None:
+    """The awaited occurrence of a plan."""
+    check = _joined().filter(plan_id=plan_id, state__in=CHECK_AWAITED).order_by("due_on").first()
+    return _row(check) if check else None

@@ -1,0 +1,398 @@
+"""Doing a check: drafts, the judged preview, signing, countersigning, sending back, could not test."""
+
+from __future__ import annotations
+
+import datetime as dt
+import uuid
+from collections.abc import Mapping
+from dataclasses import dataclass, field, replace
+
+from qa_tracker.core.canonical import canonical
+from qa_tracker.core.errors import Conflict, Forbidden, Invalid
+from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, target
+from qa_tracker.records import ledger
+from qa_tracker.records.models import (
+    Check,
+    Device,
+    Instrument,
+    NotTested,
+    Person,
+    Procedure,
+    ScannerFacts,
+    Submission,
+    TestObject,
+)
+from qa_tracker.records.queries import devices, library, submissions
+from qa_tracker.records.queries.library import EditionRow
+from qa_tracker.services import finding, judging, owed, plans, recording
+from qa_tracker.services.guards import (
+    check_may,
+    check_password,
+    check_shown,
+    may,
+    required,
+    role_for,
+)
+from qa_tracker.services.items import Item, items_of, surroundings
+from qa_tracker.services.judging import Entry, Instructions, Judged, MeasuredWith
+from qa_tracker.services.recording import Facts
+
+
+@dataclass(frozen=True)
+class Typed:
+    """Everything typed for a check, before it is judged."""
+
+    entries: Mapping[str, Entry]
+    measured_at: dt.datetime | None = None
+    test_object: uuid.UUID | None = None
+    instrument: uuid.UUID | None = None
+    port: str = ""
+    cleaned_before: str = ""
+    cleaned_after: str = ""
+    partial_reason: str = ""
+    remark: str = ""
+
+
+@dataclass(frozen=True)
+class Sheet:
+    """A check ready to be entered: its edition, its items, and what it is measured with."""
+
+    check: Check
+    edition: EditionRow
+    items: tuple[Item, ...]
+    test_object: TestObject | None
+    instrument: Instrument | None
+    console: Device | None
+    console_software: str
+    instructions: Instructions
+
+    @property
+    def measured_with(self) -> MeasuredWith:
+        """The part of the baselines' key that the whole check shares."""
+        return MeasuredWith(
+            self.console.model if self.console else "",
+            self.console_software,
+            self.test_object.id if self.test_object else None,
+        )
+
+
+@dataclass(frozen=True)
+class Preview:
+    """A sheet judged, with the hash that a signature on it is bound to."""
+
+    sheet: Sheet
+    judged: Judged
+    facts: Facts
+    shown_sha256: str
+    errors: tuple[Exception, ...] = field(default=())
+
+
+def sheet(
+    *,
+    check: uuid.UUID,
+    test_object: uuid.UUID | None = None,
+    instrument: uuid.UUID | None = None,
+    actor: Person,
+    at: dt.datetime,
+) -> Sheet:
+    """Lay out a check for entering. Reads only.
+
+    Refused: out of sight, a role that may not enter it, a state that takes no submission, no edition adopted.
+    """
+    row = finding.check(actor, check, at)
+    edition = library.adopted_edition(row.procedure_id, row.site_id)
+    if edition is None:
+        raise Conflict("check.no_edition")
+    check_may_enter(row, edition, actor=actor, at=at)
+    return lay_out(
+        row,
+        edition,
+        finding.test_object(actor, test_object, at),
+        finding.instrument(actor, instrument, at),
+    )
+
+
+def lay_out(
+    check: Check, edition: EditionRow, test_object: TestObject | None, instrument: Instrument | None
+) -> Sheet:
+    """The sheet of a check; for commands and for history."""
+    device = check.device
+    console = device if device.kind == "scanner" or device.handheld else device.scanner
+    facts = ScannerFacts.objects.filter(device=console).first() if console else None
+    nominals = nominals_of(test_object)
+    around = surroundings(devices.device_by_id(device.id), edition, check.site_id, nominals)
+    site = check.site
+    words = Instructions(site.remedial_instruction, site.suspension_instruction) if site else Instructions()
+    return Sheet(
+        check,
+        edition,
+        items_of(around),
+        test_object,
+        instrument,
+        console,
+        facts.software_version if facts else "",
+        words,
+    )
+
+
+def nominals_of(test_object: TestObject | None) -> dict[str, str]:
+    """True values of a test object by measurand code."""
+    return recording.read_json(test_object.nominals) if test_object else {}
+
+
+def check_may_enter(check: Check, edition: EditionRow, *, actor: Person, at: dt.datetime) -> None:
+    """Refuse who may not enter this check, and a check that takes no submission now."""
+    by_user = "user" in edition.spec.performed_by
+    site_id = check.site_id or check.device.site_id or actor.duties_site_id
+    check_may(actor, "check.enter_user" if by_user else "check.enter", site_id, at)
+    target(CHECK, check.state, "submit")
+
+
+def may_enter(check: Check, edition: EditionRow, *, actor: Person, at: dt.datetime) -> bool:
+    """Whether the actor may enter this check now."""
+    try:
+        check_may_enter(check, edition, actor=actor, at=at)
+    except (Forbidden, Conflict):
+        return False
+    return True
+
+
+def preview(*, check: uuid.UUID, typed: Typed, whole: bool, actor: Person, at: dt.datetime) -> Preview:
+    """Judge what was typed without writing anything; ``whole`` as for signing.
+
+    Refused: as :func:`sheet`, and with one refusal a field (``SeveralInvalid``).
+    """
+    laid = sheet(check=check, test_object=typed.test_object, instrument=typed.instrument, actor=actor, at=at)
+    entries = _with_partial_reason(laid, typed)
+    judged = judging.judge_all(laid.items, entries, laid.instructions, laid.measured_with, whole=whole)
+    facts = _facts(laid, typed, at)
+    if whole:
+        _check_facts(laid, facts, at)
+    shown = judging.shown_sha256(str(laid.check.uid), laid.edition.content_sha256, facts.as_text(at), judged)
+    return Preview(laid, judged, facts, shown)
+
+
+def _with_partial_reason(laid: Sheet, typed: Typed) -> dict[str, Entry]:
+    """Items left empty take the reason given for all of them."""
+    entries = dict(typed.entries)
+    if typed.partial_reason:
+        for item in laid.items:
+            entry = entries.get(item.key, Entry())
+            if item.spec.required and not (entry.text or entry.not_tested or entry.qualifier == "not_seen"):
+                entries[item.key] = replace(entry, not_tested=typed.partial_reason)
+    return entries
+
+
+def _facts(laid: Sheet, typed: Typed, at: dt.datetime) -> Facts:
+    return Facts(
+        measured_at=typed.measured_at,
+        test_object=laid.test_object,
+        instrument=laid.instrument,
+        console=laid.console,
+        console_software=laid.console_software,
+        port=typed.port,
+        cleaned_before=typed.cleaned_before,
+        cleaned_after=typed.cleaned_after,
+        partial_reason=typed.partial_reason,
+        remark=typed.remark,
+    )
+
+
+def _check_facts(laid: Sheet, facts: Facts, at: dt.datetime) -> None:
+    spec, measured_at = laid.edition.spec, facts.measured_at or at
+    if spec.decontamination_gate:
+        required(facts.cleaned_before, "check.cleaned_before_missing", "cleaned_before")
+    if spec.needs_test_object and laid.test_object is None:
+        raise Invalid("check.test_object_missing", field="test_object")
+    if spec.needs_instrument and laid.instrument is None:
+        raise Invalid("check.instrument_missing", field="instrument", kind=spec.needs_instrument)
+    if measured_at > at + dt.timedelta(minutes=5):
+        raise Invalid("check.measured_in_future", field="measured_at")
+    opens_at = laid.check.opens_at
+    if opens_at is not None and measured_at < opens_at:
+        raise Conflict("check.not_yet_open", field="measured_at", opens_at=opens_at.isoformat())
+
+
+def submit(
+    *,
+    check: uuid.UUID,
+    form_uid: uuid.UUID,
+    typed: Typed,
+    shown_sha256: str,
+    password: str,
+    quarantine: bool = False,
+    actor: Person,
+    at: dt.datetime,
+) -> Submission:
+    """Sign what was done. Writes Submission, Reading, Verdict, NotTested, Signature, Check and the plan's next
+    occurrence; a suspension verdict opens a Fault and owes notices. Leaf ``check.submitted``.
+
+    The same ``form_uid`` again returns the submission it made. Refused: as :func:`preview`; wrong password;
+    something else than what was shown; a check submitted meanwhile.
+    """
+    known = submissions.submission_by_form(form_uid)
+    if known is not None and known.performed_by_id == actor.pk:
+        return known
+    seen = preview(check=check, typed=typed, whole=True, actor=actor, at=at)
+    check_shown(shown_sha256, seen.shown_sha256)
+    check_password(actor, password)
+    row = seen.sheet.check
+    verb = "check.enter_user" if "user" in seen.sheet.edition.spec.performed_by else "check.enter"
+    role = role_for(actor, verb, row.site_id or actor.duties_site_id, at)
+    with ledger.command(
+        "check.submitted", actor=actor, at=at, measured_at=seen.facts.measured_at or at
+    ) as act:
+        submission = recording.record(
+            act,
+            row,
+            seen.sheet.edition,
+            seen.judged,
+            seen.facts,
+            form_uid=form_uid,
+            performed_by=actor,
+            role=role,
+            shown_sha256=seen.shown_sha256,
+        )
+        if row.plan is not None and row.plan.ended_at is None:
+            done_on = recording.local_day(row, seen.facts.measured_at or at)
+            plans.open_next(act, row.plan, after_on=row.due_on, done_on=done_on)
+        recording.open_faults(act, row, submission, seen.judged, actor, quarantine=quarantine)
+        if seen.judged.verdict == "suspension":
+            owed.owe_suspension(act, row, performed_by=actor)
+        row.drafts.all().delete()
+    return submission
+
+
+def countersign(
+    *, check: uuid.UUID, shown_sha256: str, remark: str, password: str, actor: Person, at: dt.datetime
+) -> None:
+    """Countersign the latest submission. Writes Signature, Check; leaf ``check.countersigned``.
+
+    Refused: role, one's own work, wrong password, another submission than the one shown, state.
+    """
+    row, submission = _latest(actor, check, at)
+    check_may_countersign(row, submission, actor=actor, at=at)
+    check_shown(shown_sha256, submission.shown_sha256)
+    check_password(actor, password)
+    _second_signature(row, submission, "countersign", "countersigned", remark, actor, at)
+
+
+def send_back(
+    *, check: uuid.UUID, shown_sha256: str, remark: str, password: str, actor: Person, at: dt.datetime
+) -> None:
+    """Send the latest submission back with what is to be done. Writes Signature, Check; leaf ``check.sent_back``.
+
+    Refused: as :func:`countersign`, and without a remark.
+    """
+    row, submission = _latest(actor, check, at)
+    check_may_countersign(row, submission, actor=actor, at=at)
+    remark = required(remark, "check.send_back_remark_missing", "remark")
+    check_shown(shown_sha256, submission.shown_sha256)
+    check_password(actor, password)
+    _second_signature(row, submission, "send_back", "sent back", remark, actor, at)
+
+
+def _latest(actor: Person, check: uuid.UUID, at: dt.datetime) -> tuple[Check, Submission]:
+    row = finding.check(actor, check, at)
+    submission = row.submissions.order_by("-number").first()
+    if submission is None:
+        raise Conflict("check.wrong_state", state=row.state, verb="countersign")
+    return row, submission
+
+
+def check_may_countersign(check: Check, submission: Submission, *, actor: Person, at: dt.datetime) -> None:
+    """Refuse who may not countersign this: role, one's own work, a state that takes none."""
+    check_may(actor, "check.countersign", check.site_id or actor.duties_site_id, at)
+    if submission.performed_by_id == actor.pk:
+        raise Forbidden("check.own_work")
+    target(CHECK, check.state, "countersign")
+
+
+def may_countersign(*, check: uuid.UUID, actor: Person, at: dt.datetime) -> Exception | None:
+    """The refusal the actor would meet on countersigning, or None: the button's own words."""
+    try:
+        row, submission = _latest(actor, check, at)
+        check_may_countersign(row, submission, actor=actor, at=at)
+    except (Forbidden, Conflict) as refusal:
+        return refusal
+    return None
+
+
+def _second_signature(
+    check: Check,
+    submission: Submission,
+    verb: str,
+    meaning: str,
+    remark: str,
+    actor: Person,
+    at: dt.datetime,
+) -> None:
+    role = role_for(actor, "check.countersign", check.site_id or actor.duties_site_id, at)
+    state = target(CHECK, check.state, verb)
+    with ledger.command(f"check.{state}", actor=actor, at=at, reason=remark) as act:
+        recording.second_signature(act, check, submission, actor, role, meaning, remark, state)
+
+
+def could_not_test(
+    *, check: uuid.UUID, reason: str, remark: str, actor: Person, at: dt.datetime
+) -> NotTested:
+    """Record an attempt that could not be made. Writes NotTested, Check; leaf ``check.not_tested``.
+
+    "Not found" a second time opens a fault for a lost device. Refused: role, state, unknown reason.
+    """
+    row = finding.check(actor, check, at)
+    site_id = row.site_id or actor.duties_site_id
+    check_may(actor, "check.enter_user", site_id, at)
+    if row.state not in CHECK_AWAITED:
+        raise Conflict("check.wrong_state", state=row.state, verb="could not test")
+    if reason not in judging.REASONS:
+        raise Invalid("reading.reason_unknown", field="reason", reason=reason)
+    with ledger.command("check.not_tested", actor=actor, at=at, reason=reason) as act:
+        attempt = recording.not_tested(act, row, reason, remark, actor)
+    return attempt
+
+
+def excuse(*, check: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> None:
+    """Excuse an occurrence with a reason and open the next. Writes Check; leaf ``check.excused``."""
+    row = finding.check(actor, check, at)
+    check_may(actor, "check.excuse", row.site_id or actor.duties_site_id, at)
+    reason = required(reason, "check.excuse_missing", "reason")
+    state = target(CHECK, row.state, "excuse")
+    with ledger.command("check.excused", actor=actor, at=at, reason=reason) as act:
+        act.change(row, state=state, excuse=reason[:300], next_notice_at=None, next_level="")
+        if row.plan is not None:
+            plans.open_next(act, row.plan, after_on=row.due_on, done_on=row.due_on)
+        act.about(row, device=row.device, site=row.site)
+        act.tell({"state": state, "due": row.due_on.isoformat() if row.due_on else None})
+
+
+def open_unplanned(*, device: uuid.UUID, procedure: str, actor: Person, at: dt.datetime) -> Check:
+    """Begin a check that no plan asked for. Writes Check; leaf ``check.opened``.
+
+    Refused: role, a procedure not adopted there or not meant for this kind of device.
+    """
+    row = finding.device(actor, device, at)
+    wanted = Procedure.objects.filter(code=procedure).first()
+    site_id = row.site_id or actor.duties_site_id
+    edition = library.adopted_edition(wanted.id, site_id) if wanted else None
+    if wanted is None or edition is None:
+        raise Conflict("plan.procedure_not_adopted", field="procedure", procedure=procedure)
+    if row.kind not in edition.spec.applies_to.kinds:
+        raise Invalid("check.procedure_not_for_kind", field="procedure", kind=row.kind)
+    by_user = "user" in edition.spec.performed_by
+    check_may(actor, "check.enter_user" if by_user else "check.enter", site_id, at)
+    with ledger.command("check.opened", actor=actor, at=at) as act:
+        check = act.insert(Check(device=row, procedure=wanted, site=row.site, state="started"))
+        act.about(check, device=row, site=row.site)
+        act.tell({"procedure": procedure})
+    return check
+
+
+def draft_content(typed: Mapping[str, str]) -> str:
+    """A draft as canonical text."""
+    return canonical(dict(typed)).decode()
+
+
+def may_excuse(check_site_id: int | None, *, actor: Person, at: dt.datetime) -> bool:
+    """Whether the actor may excuse a check of this site."""
+    return may(actor, "check.excuse", check_site_id or actor.duties_site_id, at)
