@@ -11,8 +11,8 @@ os.environ.setdefault("LEADLINE_TEST_DIR", tempfile.mkdtemp(prefix="leadline-tes
 os.environ["DATA_DIR"] = os.environ["LEADLINE_TEST_DIR"]
 os.environ.setdefault("SECRET_KEY", "only-for-tests-" + "x" * 40)
 
-from config.settings import *  # noqa: E402, F403  the environment above must be set first
-from config.settings import DATABASES, database  # noqa: E402
+from config.settings import *  # noqa: F403  the environment above must be set first
+from config.settings import DATABASES, database
 
 TEST_DIR = Path(os.environ["LEADLINE_TEST_DIR"])
 TEST_ENGINE_URL = os.environ.get("LEADLINE_TEST_DATABASE_URL", "")
@@ -24,3 +24,4 @@ STORAGES = {
     "staticfiles": {"BACKEND": "django.contrib.staticfiles.storage.StaticFilesStorage"},
 }
 ALLOWED_HOSTS = ["*"]
+(TEST_DIR / "static").mkdir(exist_ok=True)
