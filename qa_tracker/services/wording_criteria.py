@@ -42,9 +42,9 @@ BEYOND: Final = {
     (True, False): N_("at most %(amount)s"),
 }
 BOTH_PARTS: Final = {
-    "larger": N_("%(absolute)s or %(percent)s, the larger of the two"),
-    "smaller": N_("%(absolute)s or %(percent)s, the smaller of the two"),
-    "either": N_("%(absolute)s or %(percent)s, whichever is passed first"),
+    "larger": N_("the larger of %(absolute)s and %(percent)s"),
+    "smaller": N_("the smaller of %(absolute)s and %(percent)s"),
+    "either": N_("%(absolute)s or %(percent)s (whichever is passed first)"),
 }
 
 

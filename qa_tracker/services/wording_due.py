@@ -89,15 +89,20 @@ def _overdue(since_on: dt.date, today: dt.date) -> str:
 
 def recurrence_words(rule_text: str, basis: str) -> str:
     """How often, in words: "every 3 months, counted from the last check"."""
-    code, values = in_words(parse_rule(rule_text), basis)
     rule = parse_rule(rule_text)
-    told = [_every(code, rule.interval)]
-    if rule.months:
-        told.append(_("in %(months)s") % {"months": listed_all(str(dates.MONTHS[m]) for m in rule.months)})
+    code, values = in_words(rule, basis)
     days = [_month_day(day) for day in rule.month_days] + [_weekday(*pair, code) for pair in rule.weekdays]
-    if days:
-        told.append(_("on %(days)s") % {"days": listed_all(days)})
+    if code == "every.days" and rule.interval == 1 and days:
+        told = [_("every %(days)s") % {"days": listed_all(days)}]
+    else:
+        told = [_every(code, rule.interval), *_in_months(rule.months)]
+        told += [_("on %(days)s") % {"days": listed_all(days)}] if days else []
     return _("%(often)s, %(basis)s") % {"often": " ".join(told), "basis": _(BASES[str(values["basis"])])}
+
+
+def _in_months(months: tuple[int, ...]) -> list[str]:
+    named = listed_all(str(dates.MONTHS[month]) for month in months)
+    return [_("in %(months)s") % {"months": named}] if months else []
 
 
 def _every(code: str, interval: int) -> str:

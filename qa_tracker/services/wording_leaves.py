@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime as dt
 from collections.abc import Callable, Mapping
 from typing import Any, Final
 
@@ -12,10 +13,12 @@ from django.utils.translation import ngettext
 from qa_tracker.records.queries.ledger import LeafRow
 from qa_tracker.services.wording_words import (
     capital,
+    day_words,
     device_state_word,
     kind_word,
     level_word,
     listed_all,
+    moment_words,
     reason_word,
     role_word,
     verdict_word,
@@ -82,7 +85,9 @@ def leaf_sentence(leaf: LeafRow) -> str:
         sentence = _(SENTENCES[leaf.kind]) % _Told(_common(leaf, said) | _from_content(said.get("new") or {}))
     marks = [_(ORIGINS[said["origin"]])] if said.get("origin") in ORIGINS else []
     if said.get("as_if"):
-        marks.append(_("as if on %(moment)s") % {"moment": said["as_if"]})
+        marks.append(
+            _("as if on %(moment)s") % {"moment": moment_words(dt.datetime.fromisoformat(said["as_if"]))}
+        )
     return capital(sentence.removesuffix(": ")) + (f" ({', '.join(marks)})" if marks else "") + "."
 
 
@@ -151,6 +156,10 @@ def _moved(new: Mapping[str, Any]) -> str:
     return listed_all(told) if told else _("nothing to tell")
 
 
+def _day(text: str) -> str:
+    return day_words(dt.date.fromisoformat(text))
+
+
 WORDS: Final[dict[str, Callable[[Any], str]]] = {
     "kind": kind_word,
     "role": role_word,
@@ -158,6 +167,7 @@ WORDS: Final[dict[str, Callable[[Any], str]]] = {
     "grade": level_word,
     "readings": _readings,
     "baselines": _baselines,
-    "days": lambda days: ", ".join(sorted(days)),
+    "days": lambda days: listed_all(_day(day) for day in sorted(days)),
+    **dict.fromkeys(("due", "since", "first_due", "from", "until"), _day),
     "sites": listed_all,
 }

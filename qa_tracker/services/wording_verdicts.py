@@ -208,9 +208,16 @@ def _share(given: Parameters) -> list[str]:
         return []
     if given["basis"] == "none" and given["direction"] == "below":
         qualifier = {">": "<", "<": ">"}.get(qualifier, qualifier)
-    deciding = given["level"] == "remedial" or Decimal(used) <= 100
-    whose = _("the allowance") if deciding else _("what the first level allows")
+    whose = _("the allowance") if _is_of_shown(given) else _("what the remedial level allows")
     return [_(SHARES[qualifier]) % {"used": percent(used), "whose": whose}]
+
+
+def _is_of_shown(given: Parameters) -> bool:
+    """Whether the share is of the level that is shown; else it is of the remedial level, the lower one."""
+    share, of = Decimal(given["departure"]), Decimal(given["allowance"])
+    if given["basis"] == "none" and given["direction"] == "below":
+        share, of = of, share
+    return of > 0 and abs(100 * share / of - Decimal(given["used"])) <= Decimal("0.1")
 
 
 def _probability(given: Parameters) -> list[str]:
@@ -241,13 +248,14 @@ def _better(given: Parameters, says: str) -> list[str]:
     told = {"finding": finding(given), "verdict": says}
     return [
         _("%(finding)s, better than expected: %(verdict)s.") % told,
-        _("Check the settings: a change for the better this large often means that they were not the same."),
+        _("Check the settings: they often explain a change for the better this large."),
     ]
 
 
 def _hidden_loss(given: Parameters, says: str) -> list[str]:
     told, bound = _judged(given, says), _size(given, "reference")
     if given["hidden"] == "both":
+        bound = _size(given, "value")
         sentence = _(
             "Reading and baseline are both bounds: a loss that leaves more than %(bound)s doesn't show."
         )
