@@ -29,6 +29,7 @@ from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.finding import test_object as find_test_object
 from qa_tracker.services.guards import check_may, check_password, required, role_for
 
+NO_UID = uuid.UUID(int=0)
 DIGITS = ("number", "count")
 
 
@@ -105,7 +106,7 @@ def adopt_submission(
     Writes Baseline, Signature; leaf ``baseline.set``. Refused: as :func:`set_values`; nothing to take.
     """
     row = Submission.objects.filter(uid=submission).select_related("check_of__device").first()
-    device = find_device(actor, row.check_of.device.uid if row else uuid.UUID(int=0), at)
+    device = find_device(actor, row.check_of.device.uid if row else NO_UID, at)
     if row is None:
         raise Invalid("baseline.values_missing", field="submission")
     check_may(actor, "baseline.set", device.site_id or actor.duties_site_id, at)
@@ -192,8 +193,8 @@ def refuse_beyond_absolute(spec: MeasurandSpec, exact: Exact, site_id: int | Non
 
 
 def _part(device: Device, value: Value) -> tuple[Aperture | None, Condition | None]:
-    aperture = Aperture.objects.filter(device=device, uid=value.aperture).first()
-    condition = Condition.objects.filter(device=device, uid=value.condition).first()
+    aperture = Aperture.objects.filter(device=device, uid=value.aperture or NO_UID).first()
+    condition = Condition.objects.filter(device=device, uid=value.condition or NO_UID).first()
     if (value.aperture and aperture is None) or (value.condition and condition is None):
         raise Invalid("baseline.part_unknown", field=value.measurand)
     return aperture, condition

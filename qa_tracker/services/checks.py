@@ -348,8 +348,7 @@ def could_not_test(
     if reason not in judging.REASONS:
         raise Invalid("reading.reason_unknown", field="reason", reason=reason)
     with ledger.command("check.not_tested", actor=actor, at=at, reason=reason) as act:
-        attempt = recording.not_tested(act, row, reason, remark, actor)
-    return attempt
+        return recording.not_tested(act, row, reason, remark, actor)
 
 
 def excuse(*, check: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> None:

@@ -70,8 +70,7 @@ def register_scanner(
     _one_of(protection_class, PROTECTION_CLASSES, "protection_class")
     check_may(actor, "device.register", _site_id(place), at)
     with ledger.command("device.registered", actor=actor, at=at) as act:
-        device = add_scanner(act, identity, place, software_version, protection_class)
-    return device
+        return add_scanner(act, identity, place, software_version, protection_class)
 
 
 def add_scanner(
@@ -123,8 +122,7 @@ def register_probe(
         array_kind=array_kind, contact_class=contact_class, applied_part=applied_part, wireless=wireless
     )
     with ledger.command("device.registered", actor=actor, at=at) as act:
-        device = add_probe(act, identity, place, facts, apertures)
-    return device
+        return add_probe(act, identity, place, facts, apertures)
 
 
 def add_probe(
@@ -301,8 +299,7 @@ def set_condition(
         if text:
             decimals.parse(text, field=field_name)
     with ledger.command("condition.set", actor=actor, at=at) as act:
-        condition = put_condition(act, row, name, test_frequency_mhz, sound_speed_m_s, settings)
-    return condition
+        return put_condition(act, row, name, test_frequency_mhz, sound_speed_m_s, settings)
 
 
 def put_condition(

@@ -81,8 +81,7 @@ def act_on(
         raise Invalid("fault.action_unknown", field="kind", kind=kind, known=", ".join(ACTION_KINDS))
     text = required(text, "fault.action_text_missing", "text")
     with ledger.command("fault.acted_on", actor=actor, at=at) as act:
-        action = add_action(act, row, kind, text, job_number, actor)
-    return action
+        return add_action(act, row, kind, text, job_number, actor)
 
 
 def add_action(

@@ -9,7 +9,6 @@ import datetime as dt
 import hashlib
 import smtplib
 import zoneinfo
-from dataclasses import dataclass
 
 from django.conf import settings
 from django.core.mail import EmailMessage, get_connection
@@ -118,20 +117,12 @@ def _put_off(digest: Digest, at: dt.datetime, why: str) -> None:
     Digest.objects.filter(pk=digest.pk, state="claimed").update(reply=why[:300], lease_until=None, **columns)
 
 
-@dataclass(frozen=True)
-class Letter:
-    """A mail's words."""
-
-    subject: str
-    body: str
-
-
 def _send(digest: Digest) -> str:
     """Hand the mail to the server and return its reply to the data."""
-    letter = wording.digest_letter(digest.person.name, notices_in(digest.pk), settings.BASE_URL)
+    subject, body = wording.digest_letter(digest.person.name, notices_in(digest.pk), settings.BASE_URL)
     message = EmailMessage(
-        letter[0],
-        letter[1],
+        subject,
+        body,
         settings.DEFAULT_FROM_EMAIL,
         [digest.person.email],
         headers={"Message-ID": digest.message_id, "Auto-Submitted": "auto-generated"},
@@ -157,10 +148,14 @@ def _transact(backend: EmailBackend, message: EmailMessage, to: str) -> str:
     refused = server.rcpt(to)
     if refused[0] not in (250, 251):
         raise smtplib.SMTPResponseException(*refused)
-    code, reply = server.data(message.message().as_bytes(linesep="\r\n"))
+    code, reply = server.data(_with_crlf(message.message().as_bytes()))
     if code != 250:
         raise smtplib.SMTPDataError(code, reply)
     return f"{code} {reply.decode('utf-8', 'replace')}"
+
+
+def _with_crlf(data: bytes) -> bytes:
+    return data.replace(b"\r\n", b"\n").replace(b"\n", b"\r\n")
 
 
 def pending_notices() -> int:

@@ -10,6 +10,8 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import dataclass, field
 
+from django.db.models import Q
+
 from qa_tracker.core import schedule
 from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, DEVICE_USABLE, target
 from qa_tracker.records import ledger
@@ -51,12 +53,12 @@ def sweep(*, at: dt.datetime, as_if: dt.datetime | None = None) -> Swept:
     return Swept(checks, notices)
 
 
-def _due(moment: dt.datetime) -> dict[str, object]:
-    return {"next_notice_at__lte": moment, "state__in": CHECK_AWAITED}
+def _due(moment: dt.datetime) -> Q:
+    return Q(next_notice_at__lte=moment, state__in=CHECK_AWAITED)
 
 
 def _sites_due(moment: dt.datetime) -> list[int | None]:
-    found = Check.objects.filter(**_due(moment)).order_by().values_list("site_id", flat=True).distinct()
+    found = Check.objects.filter(_due(moment)).order_by().values_list("site_id", flat=True).distinct()
     return list(found)
 
 
@@ -64,7 +66,11 @@ def _sweep_site(site_id: int | None, at: dt.datetime, as_if: dt.datetime | None)
     moment, moved = as_if or at, Moved()
     with ledger.sweeping("notices.owed", at=at, as_if=as_if) as act:
         joins = ("plan__device__site", "device__site", "site", "procedure")
-        found = Check.objects.filter(**_due(moment), site_id=site_id).select_related(*joins).order_by("id")
+        found = (
+            Check.objects.filter(_due(moment), Q(**{"site_id": site_id}))
+            .select_related(*joins)
+            .order_by("id")
+        )
         checks = list(found[:MOST_A_TRANSACTION])
         if not checks:
             return 0, moved

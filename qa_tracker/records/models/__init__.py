@@ -1,6 +1,6 @@
 """Every table, by noun. The ledger's table is imported as a module, never re-exported: its door is records/ledger.py."""
 
-from qa_tracker.records.models import ledger
+from qa_tracker.records.models import ledger as ledger
 from qa_tracker.records.models.baselines import Baseline
 from qa_tracker.records.models.checks import (
     Check,

@@ -84,7 +84,7 @@ def baselines_of(device_id: int, as_of: dt.datetime | None = None) -> list[Basel
             each.valid_from,
             each.ended_at,
             each.under_review,
-        )  # fmt: skip
+        )
         for each in found
     ]
     return sorted(rows, key=lambda row: (row.measurand, row.aperture, row.condition, row.epoch))

@@ -110,7 +110,7 @@ def due_checks(scope: Scope, at: dt.datetime, *, horizon_days: int = 14) -> list
             row.due_on or dt.date.min,
             row.device_label,
             row.id,
-        ),  # fmt: skip
+        ),
     )
 
 

@@ -77,7 +77,8 @@ def _spec(content: str) -> ProcedureSpec:
 
 
 @lru_cache(maxsize=1024)
-def _criterion_spec(content: str) -> CriterionSpec:
+def criterion_spec(content: str) -> CriterionSpec:
+    """A stored criterion, read; the same text is read once."""
     return published.criterion(json.loads(content))
 
 
@@ -109,7 +110,7 @@ def find_edition(uid: uuid.UUID) -> EditionRow | None:
 def _criterion_row(criterion: Criterion, of: CriteriaSet) -> CriterionRow:
     return CriterionRow(
         criterion.id, criterion.uid, of.uid, of.code, of.edition, of.source, criterion.code,
-        _criterion_spec(criterion.content),
+        criterion_spec(criterion.content),
     )  # fmt: skip
 
 
@@ -144,7 +145,7 @@ def list_adoptions(as_of: dt.datetime | None = None) -> list[AdoptionRow]:
             a.adopted_at,
             a.remark,
             a.ended_at,
-        )  # fmt: skip
+        )
         for a in found
     ]
     return sorted(rows, key=lambda row: row.adopted_at, reverse=True)

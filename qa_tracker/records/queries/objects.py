@@ -67,7 +67,7 @@ def list_test_objects(scope: Scope, as_of: dt.datetime | None = None) -> list[Te
             json.loads(one.nominals),
             one.certificate_ends_on,
             one.in_use,
-        )  # fmt: skip
+        )
         for one in nouns(TestObject, as_of)
         if scope.holds(one.site_id)
     ]
@@ -86,7 +86,7 @@ def list_instruments(scope: Scope, as_of: dt.datetime | None = None) -> list[Ins
             one.serial,
             one.calibration_due_on,
             one.in_use,
-        )  # fmt: skip
+        )
         for one in nouns(Instrument, as_of)
         if scope.holds(one.site_id)
     ]

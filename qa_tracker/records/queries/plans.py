@@ -50,7 +50,7 @@ def _rows(plans: list[CheckPlan]) -> list[PlanRow]:
             plan.responsible_id,
             people.get(plan.responsible_id, ""),
             plan.ended_at,
-        )  # fmt: skip
+        )
         for plan in plans
     ]
 

@@ -239,7 +239,7 @@ def submissions_of(check_ids: list[int], until: dt.datetime | None = None) -> di
                 tuple(readings.get(each.id, ())),
                 tuple(untested.get(each.id, ())),
                 tuple(signatures.get(each.id, ())),
-            )  # fmt: skip
+            )
         )
     return rows
 

@@ -1,0 +1,214 @@
+"""Verifying what is stored: the ledger against the rows it covers, and every verdict against its parts."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Any
+
+from django.apps import apps
+from django.db.models import OuterRef, Q, Subquery
+
+from qa_tracker.core import conformity, decimals
+from qa_tracker.core.canonical import canonical
+from qa_tracker.core.criteria import Criterion as PureCriterion
+from qa_tracker.core.errors import DomainError
+from qa_tracker.core.merkle import Frontier, leaf_hash
+from qa_tracker.records import ledger
+from qa_tracker.records.models import Baseline, Criterion, Verdict, Version
+from qa_tracker.records.models.base import Fact, Noun
+from qa_tracker.records.queries.ledger import LeafRow, every_leaf, list_checkpoints
+from qa_tracker.records.queries.library import criterion_spec
+from qa_tracker.records.rows import columns_of, digest_of
+from qa_tracker.seals.notes import open_checkpoint
+from qa_tracker.services import checkpoints
+from qa_tracker.services.keys import ledger_key
+
+BATCH = 400
+
+
+@dataclass(frozen=True)
+class Problem:
+    """Something that is not as it was written: the leaf's place, and the row or part."""
+
+    seq: int | None
+    what: str
+    where: str
+
+
+@dataclass(frozen=True)
+class LedgerFinding:
+    """The answer of a full verification."""
+
+    size: int
+    root: str
+    checkpoints: int
+    problems: tuple[Problem, ...]
+
+
+def verify_ledger() -> LedgerFinding:
+    """Rehash every leaf, compare every row with its leaf, and check every checkpoint. Reads only."""
+    problems = [*_verify_leaves(), *_verify_nouns()]
+    size, root = ledger.state()
+    problems += _verify_checkpoints()
+    return LedgerFinding(size, root.hex(), len(list_checkpoints()), tuple(problems))
+
+
+def _batches(leaves: Iterator[LeafRow]) -> Iterator[list[LeafRow]]:
+    batch: list[LeafRow] = []
+    for leaf in leaves:
+        batch.append(leaf)
+        if len(batch) == BATCH:
+            yield batch
+            batch = []
+    yield batch
+
+
+def _verify_leaves() -> Iterator[Problem]:
+    frontier, wanted = Frontier(0, ()), 0
+    roots = {row.size: row.root for row in list_checkpoints()}
+    for batch in _batches(every_leaf()):
+        for leaf in batch:
+            if leaf.seq != wanted:
+                yield Problem(wanted, "leaf_missing", "")
+                wanted = leaf.seq
+            wanted += 1
+            yield from _verify_bytes(leaf)
+            frontier = frontier.extend([leaf_hash(leaf.content.encode())])
+            if frontier.size in roots and roots[frontier.size] != frontier.root():
+                yield Problem(leaf.seq, "checkpoint_differs", str(frontier.size))
+        yield from _verify_rows(batch)
+    size, root = ledger.state()
+    if (frontier.size, frontier.root()) != (size, root):
+        yield Problem(None, "head_differs", f"{frontier.size}/{size}")
+
+
+def _verify_bytes(leaf: LeafRow) -> Iterator[Problem]:
+    content = leaf.content.encode()
+    if leaf_hash(content) != leaf.leaf_hash:
+        yield Problem(leaf.seq, "leaf_changed", str(leaf.uid))
+        return
+    said = json.loads(content)
+    columns = (leaf.seq, str(leaf.uid), leaf.kind)
+    if canonical(said) != content or (said["seq"], said["uid"], said["kind"]) != columns:
+        yield Problem(leaf.seq, "leaf_columns_differ", str(leaf.uid))
+
+
+def fact_models() -> list[type[Fact]]:
+    """Every insert-only table."""
+    return [model for model in apps.get_app_config("leadline").get_models() if issubclass(model, Fact)]
+
+
+def _verify_rows(batch: list[LeafRow]) -> Iterator[Problem]:
+    """Compare the facts of these leaves with the digests the leaves hold, table by table."""
+    uids = [leaf.uid for leaf in batch]
+    found: dict[Any, dict[str, list[Fact]]] = {uid: {} for uid in uids}
+    for model in fact_models():
+        for row in model._base_manager.filter(Q(leaf_id__in=uids)):
+            found[row.leaf_id].setdefault(str(model._meta.model_name), []).append(row)
+    for leaf in batch:
+        said: dict[str, dict[str, object]] = leaf.said["rows"]
+        tables = {key.partition("/")[0] for key in said}
+        for name in sorted(set(found[leaf.uid]) - tables):
+            yield Problem(leaf.seq, "row_added", f"{name} {found[leaf.uid][name][0].pk}")
+        for key, digest in said.items():
+            name, _, form = key.partition("/")
+            rows = found[leaf.uid].get(name, [])
+            if digest_of(rows, int(form)) != digest:
+                yield Problem(leaf.seq, "rows_differ", f"{name} {[row.pk for row in rows][:20]}")
+
+
+def _verify_nouns() -> Iterator[Problem]:
+    """Compare each noun's current row with its newest version."""
+    for model in apps.get_app_config("leadline").get_models():
+        if issubclass(model, Noun):
+            yield from _verify_noun_table(model)
+
+
+def _verify_noun_table(model: type[Noun]) -> Iterator[Problem]:
+    name = str(model._meta.model_name)
+    newest = Version.objects.filter(noun=name, subject_id=OuterRef("pk")).order_by("-number")
+    rows = model._base_manager.annotate(
+        kept=Subquery(newest.values("columns")[:1]), under=Subquery(newest.values("leaf_id")[:1])
+    )
+    for row in rows.iterator(chunk_size=2000):
+        kept, under = getattr(row, "kept", None), getattr(row, "under", None)
+        if kept != canonical(columns_of(row)).decode() or row.leaf_id != under:
+            yield Problem(None, "current_row_differs", f"{name} {row.pk}")
+
+
+def _verify_checkpoints() -> list[Problem]:
+    problems, verifier = [], ledger_key().verifier
+    roots = {}
+    for row in list_checkpoints():
+        roots[row.size] = row.root
+        try:
+            said = open_checkpoint(row.note, verifier)
+        except DomainError as error:
+            problems.append(Problem(None, "checkpoint_unsigned", f"{row.size} {error.code}"))
+            continue
+        if (said.size, said.root) != (row.size, row.root):
+            problems.append(Problem(None, "checkpoint_differs", str(row.size)))
+    for said in checkpoints.outside():
+        if roots.get(said.size) != said.root:
+            problems.append(Problem(None, "checkpoint_outside_differs", str(said.size)))
+    return problems
+
+
+@dataclass(frozen=True)
+class VerdictFinding:
+    """The answer of re-deriving every verdict."""
+
+    verdicts: int
+    problems: tuple[Problem, ...]
+
+
+def recheck_verdicts() -> VerdictFinding:
+    """Re-derive every stored verdict from its stored parts: reading, criterion, baseline, reference. Reads only."""
+    problems, count = [], 0
+    criteria = {row.id: (row.code, criterion_spec(row.content)) for row in Criterion.objects.all()}
+    joins = ("reading", "measurand", "baseline")
+    for verdict in Verdict.objects.select_related(*joins).order_by("id").iterator(chunk_size=2000):
+        count += 1
+        code, spec = criteria.get(verdict.criterion_id or 0, ("", None))
+        if spec is None or not _agrees(verdict, spec.criterion, spec.unit):
+            problems.append(Problem(None, "verdict_differs", f"verdict {verdict.pk} {code}"))
+    return VerdictFinding(count, tuple(problems))
+
+
+def _agrees(verdict: Verdict, criterion: PureCriterion, unit: str) -> bool:
+    reading, baseline = verdict.reading, verdict.baseline
+    kind = verdict.measurand.kind
+    numeric = kind in ("number", "count", "image", "derived")
+    value: Any = None
+    if reading is not None:
+        value = (
+            decimals.from_scaled(reading.scaled, reading.places or 0)
+            if reading.scaled is not None
+            else reading.entered or None
+        )
+    found = conformity.judge(
+        criterion,
+        value=value,
+        kind=kind,
+        qualifier=reading.qualifier if reading else "=",
+        nominal=verdict.reference or None,
+        reference=verdict.reference or None,
+        baseline=_value_of(baseline),
+        baseline_qualifier=baseline.qualifier if baseline else "=",
+        quantity=verdict.quantity or None,
+        unit=verdict.measurand.unit if numeric else None,
+        criterion_unit=unit if numeric else None,
+    )
+    kept = json.loads(verdict.parameters)
+    same = all(kept.get(name) == value for name, value in found.parameters.items())
+    return same and (found.verdict, found.level or "", str(found.code)) == (
+        verdict.verdict,
+        verdict.level,
+        verdict.code,
+    )
+
+
+def _value_of(baseline: Baseline | None) -> Any:
+    return decimals.from_scaled(baseline.scaled, baseline.places) if baseline else None
