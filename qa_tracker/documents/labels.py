@@ -7,6 +7,7 @@ from __future__ import annotations
 
 ENGLISH = {
     "page": "Page {n} of {m}",
+    "seal_reason": "Audit dossier of one device",
     "demo_key": "Sealed with a demonstration key: this document proves nothing about a real device.",
     "device": "Device",
     "site": "Site",

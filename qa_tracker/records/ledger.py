@@ -55,6 +55,7 @@ class Act:
     uid: uuid.UUID = field(default_factory=uuid7)
     facts: list[Fact] = field(default_factory=list)
     subject: Noun | None = None
+    subject_version: int = 0
     device_uid: uuid.UUID | None = None
     site_uid: uuid.UUID | None = None
     old: Mapping[str, object] = field(default_factory=dict)
@@ -86,6 +87,7 @@ class Act:
     def about(self, subject: Noun | None, *, device: Noun | None = None, site: Noun | None = None) -> None:
         """Say what the command was about, and which device and site it belongs to."""
         self.subject = subject
+        self.subject_version = subject.version if subject else 0
         self.device_uid = device.uid if device else None
         self.site_uid = site.uid if site else None
 
@@ -99,6 +101,9 @@ class Act:
         self.new, self.old, self.files = new, old or {}, files
 
     def _remember(self, noun: Noun) -> None:
+        if noun is self.subject:
+            # Kept now: in a history the noun goes on changing before this leaf is written.
+            self.subject_version = noun.version
         version = Version(
             noun=noun._meta.model_name,
             subject_id=noun.pk,
@@ -188,7 +193,7 @@ def leaf_content(act: Act, seq: int) -> dict[str, object]:
         "kind": act.kind,
         "subject": None
         if subject is None
-        else {"type": subject._meta.model_name, "uid": str(subject.uid), "version": subject.version},
+        else {"type": subject._meta.model_name, "uid": str(subject.uid), "version": act.subject_version},
         "device": None if act.device_uid is None else str(act.device_uid),
         "site": None if act.site_uid is None else str(act.site_uid),
         "actor": None
@@ -250,3 +255,8 @@ def state() -> tuple[int, bytes]:
 def keep_checkpoint(*, size: int, root: bytes, at: dt.datetime, note: str) -> None:
     """Keep a signed checkpoint; a second one of the same size is left out."""
     Checkpoint.objects.get_or_create(size=size, defaults={"root": root, "at": at, "note": note})
+
+
+def moment_of(leaf_uid: uuid.UUID) -> dt.datetime | None:
+    """When a leaf was written, by the program's clock."""
+    return Leaf.objects.filter(uid=leaf_uid).values_list("at", flat=True).first()

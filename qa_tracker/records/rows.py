@@ -46,17 +46,15 @@ def columns_of(noun: models.Model) -> dict[str, str | None]:
 
 def noun_from(model: type[models.Model], columns: dict[str, str | None]) -> models.Model:
     """Rebuild an unsaved noun from the text columns of one of its versions."""
-    values = {
-        field.attname: field.to_python(columns.get(field.attname))
-        if columns.get(field.attname) is not None
-        else None
-        for field in model._meta.concrete_fields
-        if field.attname in columns
-    }
-    for field in model._meta.concrete_fields:
-        if isinstance(field, models.BooleanField) and field.attname in columns:
-            values[field.attname] = columns[field.attname] == "true"
-    return model(**values)
+    fields = [field for field in model._meta.concrete_fields if field.attname in columns]
+    return model(**{field.attname: _from_text(field, columns[field.attname]) for field in fields})
+
+
+def _from_text(field: models.Field[Any, Any], text: str | None) -> object:
+    """The value of :func:`cell`'s text."""
+    if text is not None and isinstance(field, models.BooleanField):
+        return text == "true"
+    return field.to_python(text)
 
 
 def newest_form(model: type[Fact]) -> int:

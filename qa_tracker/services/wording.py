@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from qa_tracker.services.wording_criteria import criterion_words, source_line, standing_word
 from qa_tracker.services.wording_due import due_words, recurrence_words
+from qa_tracker.services.wording_findings import problem_sentence, seal_sentence
 from qa_tracker.services.wording_leaves import leaf_sentence
 from qa_tracker.services.wording_letters import digest_letter, health_sentence
 from qa_tracker.services.wording_refusals import refusal
@@ -24,6 +25,7 @@ from qa_tracker.services.wording_words import (
     meaning_word,
     qualifier_word,
     reason_word,
+    register_word,
     role_word,
     unit_symbol,
     verdict_word,
@@ -45,11 +47,14 @@ __all__ = [
     "level_of_notice_word",
     "level_word",
     "meaning_word",
+    "problem_sentence",
     "qualifier_word",
     "reason_word",
     "recurrence_words",
     "refusal",
+    "register_word",
     "role_word",
+    "seal_sentence",
     "source_line",
     "standing_word",
     "unit_symbol",

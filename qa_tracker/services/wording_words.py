@@ -267,3 +267,22 @@ def moment_words(moment: dt.datetime) -> str:
     """An instant in UTC as "5 March 2025 at 14:02 UTC"."""
     utc = moment.astimezone(dt.UTC)
     return _("%(day)s at %(time)s UTC") % {"day": day_words(utc.date()), "time": utc.strftime("%H:%M")}
+
+
+REGISTER: Final = {
+    "udi": N_("Unique device identifier (UDI)"),
+    "owner": N_("Owner"),
+    "purchased_on": N_("Bought on"),
+    "warranty_ends_on": N_("Warranty ends"),
+    "contract": N_("Contract"),
+    "replacement_year": N_("Planned replacement"),
+    "network_title": N_("Network title"),
+    "clinical_use": N_("Clinical use"),
+    "keeper": N_("Keeper"),
+    "spare": N_("Spare"),
+}
+
+
+def register_word(name: str) -> str:
+    """The label of a register field."""
+    return _(REGISTER[name])

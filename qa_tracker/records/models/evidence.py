@@ -74,7 +74,9 @@ class Dossier(Noun):
 
     device = models.ForeignKey(Device, on_delete=models.DO_NOTHING, related_name="dossiers")
     state = models.CharField(max_length=10)
-    requested_by = models.ForeignKey(Person, on_delete=models.DO_NOTHING, related_name="+")
+    requested_by = models.ForeignKey(
+        Person, null=True, on_delete=models.DO_NOTHING, related_name="+", help_text="empty: the command line"
+    )
     requested_at = models.DateTimeField()
     content_sha256 = models.CharField(max_length=64)
     ledger_size = models.BigIntegerField()

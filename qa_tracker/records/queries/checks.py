@@ -149,3 +149,8 @@ def next_check_of(plan_id: int) -> CheckRow | None:
     """The awaited occurrence of a plan."""
     check = _joined().filter(plan_id=plan_id, state__in=CHECK_AWAITED).order_by("due_on").first()
     return _row(check) if check else None
+
+
+def check_by_id(check_id: int) -> CheckRow:
+    """A check by key, for use inside commands."""
+    return _row(_joined().get(pk=check_id))

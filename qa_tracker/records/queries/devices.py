@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+import json
 import uuid
 from dataclasses import dataclass
 
@@ -18,6 +19,7 @@ from qa_tracker.records.models import (
     ProbeFacts,
     ScannerFacts,
     Site,
+    Version,
 )
 from qa_tracker.records.queries.as_of import noun, nouns
 from qa_tracker.records.queries.scope import Scope, devices_in
@@ -264,3 +266,36 @@ def placements_of(device_id: int, as_of: dt.datetime | None = None) -> list[Plac
         place = ", ".join(part for part in parts if part)
         rows.append(PlacementRow(each.uid, place, each.site_id, each.started_at, each.ended_at, each.reason))
     return sorted(rows, key=lambda row: row.started_at)
+
+
+@dataclass(frozen=True)
+class SoftwareRow:
+    """A software version of a scanner, from a day on."""
+
+    version: str
+    options: str
+    since_on: dt.date | None
+    recorded_at: dt.datetime
+
+
+def software_of(device_id: int, as_of: dt.datetime | None = None) -> list[SoftwareRow]:
+    """A scanner's software versions, oldest first, from the versions of its facts."""
+    facts = ScannerFacts.objects.filter(device_id=device_id).first()
+    if facts is None:
+        return []
+    kept = Version.objects.filter(noun="scannerfacts", subject_id=facts.id).order_by("number")
+    if as_of is not None:
+        kept = kept.filter(recorded_at__lte=as_of)
+    rows: list[SoftwareRow] = []
+    for each in kept:
+        columns = json.loads(each.columns)
+        since = columns["software_since_on"]
+        row = SoftwareRow(
+            columns["software_version"],
+            columns["software_options"],
+            dt.date.fromisoformat(since) if since else None,
+            each.recorded_at,
+        )
+        if row.version and (not rows or rows[-1].version != row.version):
+            rows.append(row)
+    return rows

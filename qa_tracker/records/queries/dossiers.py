@@ -36,7 +36,7 @@ def _row(dossier: Dossier) -> DossierRow:
     device = dossier.device
     return DossierRow(
         dossier.id, dossier.uid, device.id, device.uid, f"{device.maker} {device.model} {device.serial}",
-        device.site_id, dossier.state, dossier.requested_by.name, dossier.requested_at,
+        device.site_id, dossier.state, dossier.requested_by.name if dossier.requested_by else "", dossier.requested_at,
         dossier.content_sha256, dossier.ledger_size, dossier.ledger_root, dossier.file_sha256, dossier.pages,
         dossier.issued_at, dossier.failure,
     )  # fmt: skip

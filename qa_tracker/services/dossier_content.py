@@ -1,0 +1,367 @@
+"""What a device's dossier says: read from the records once, put in words, and frozen."""
+
+from __future__ import annotations
+
+import datetime as dt
+import uuid
+import zoneinfo
+from decimal import Decimal
+
+from django.utils.translation import gettext as _
+
+from qa_tracker.core import decimals
+from qa_tracker.core.judged_line import judged_line
+from qa_tracker.core.roles import ROLES
+from qa_tracker.documents import content as frozen
+from qa_tracker.documents.labels import ENGLISH
+from qa_tracker.records.queries import baselines as baseline_rows
+from qa_tracker.records.queries import checks, devices, faults, library, people, plans, sites, submissions
+from qa_tracker.records.queries.checks import CheckRow
+from qa_tracker.records.queries.devices import REGISTER, DeviceRow
+from qa_tracker.records.queries.faults import FaultRow
+from qa_tracker.records.queries.ledger import CheckpointRow, leaf_range_of
+from qa_tracker.records.queries.library import EditionRow
+from qa_tracker.records.queries.scope import EVERYTHING
+from qa_tracker.records.queries.submissions import ReadingRow, SignatureRow, SubmissionRow
+from qa_tracker.services import cautions, wording
+from qa_tracker.services.keys import ledger_key
+
+LAST_CHECKS = 36
+DOSSIER_CAUTIONS = ("conforming-not-safe", "memory-limits", "return-to-use")
+
+
+class Writer:
+    """Puts moments and days in the site's own time; made for one dossier."""
+
+    def __init__(self, zone: str) -> None:
+        self.zone = zoneinfo.ZoneInfo(zone)
+        self.editions: dict[int, EditionRow] = {}
+
+    def moment(self, at: dt.datetime | None) -> str:
+        """A moment with the site's offset, to the second."""
+        return at.astimezone(self.zone).isoformat(timespec="seconds") if at else ""
+
+    def day(self, at: dt.datetime | None) -> str:
+        """The site's day of a moment."""
+        return at.astimezone(self.zone).date().isoformat() if at else ""
+
+    def edition(self, edition_id: int) -> EditionRow:
+        """An edition, read once."""
+        if edition_id not in self.editions:
+            self.editions[edition_id] = library.edition_by_id(edition_id)
+        return self.editions[edition_id]
+
+
+def device_content(
+    device_uid: uuid.UUID,
+    *,
+    dossier_uid: uuid.UUID,
+    checkpoint: CheckpointRow,
+    demo_key: bool,
+    at: dt.datetime,
+) -> frozen.DeviceDossier:
+    """Everything the dossier of one device says at a moment, in the words and times of its site."""
+    device = devices.find_device(EVERYTHING, device_uid)
+    if device is None:
+        raise LookupError(f"no device {device_uid}")
+    site = sites.site_by_id(device.site_id) if device.site_id else None
+    writer = Writer(site.time_zone if site else "UTC")
+    done = checks.checks_of_device(device.id, most=LAST_CHECKS)
+    made = submissions.submissions_of([row.id for row in done])
+    first, last = leaf_range_of(device.uid)
+    written = tuple(_check(writer, row, made.get(row.id, [])) for row in reversed(done) if _tells(row, made))
+    found = faults.faults_of_device(device.id)
+    return frozen.DeviceDossier(
+        uid=str(dossier_uid),
+        title=_("Audit dossier of one device"),
+        group=site.name if site else device.pool_name,
+        site=f"{site.code} {site.name}" if site else device.pool_name,
+        device=device.label,
+        state=wording.device_state_word(device.state),
+        frozen_at=writer.moment(at),
+        as_of=writer.moment(at),
+        period=_period(writer, done, at),
+        ledger=frozen.LedgerState(
+            origin=ledger_key().name,
+            size=str(checkpoint.size),
+            root=checkpoint.root.hex(),
+            first_leaf="" if first is None else str(first),
+            last_leaf="" if last is None else str(last),
+        ),
+        labels={key: _(text) for key, text in ENGLISH.items()},
+        demo_key=demo_key,
+        identity=_identity(device),
+        placements=tuple(
+            frozen.Placement(each.place, writer.day(each.started_at), writer.day(each.ended_at), each.reason)
+            for each in devices.placements_of(device.id)
+        ),
+        apertures=tuple(
+            frozen.Aperture(each.name, _("%(n)s elements") % {"n": each.elements} if each.elements else "")
+            for each in devices.apertures_of(device.id)
+        ),
+        software=_software(device, writer),
+        plans=_plans(writer, device, at),
+        checks=written,
+        faults=tuple(_fault(writer, row) for row in found),
+        baselines=_baselines(writer, device),
+        cautions=_cautions(writer),
+        people=_people(written, found),
+    )
+
+
+def _tells(row: CheckRow, made: dict[int, list[SubmissionRow]]) -> bool:
+    """Whether a check belongs in the history: done, missed or excused, not one still awaited."""
+    return bool(made.get(row.id)) or row.state in ("missed", "excused", "void")
+
+
+def _period(writer: Writer, done: list[CheckRow], at: dt.datetime) -> str:
+    days = sorted(writer.day(row.submitted_at) for row in done if row.submitted_at)
+    return f"{days[0]} – {writer.day(at)}" if days else writer.day(at)
+
+
+def _identity(device: DeviceRow) -> tuple[frozen.Row, ...]:
+    facts = [
+        (_("Kind"), wording.kind_word(device.kind)),
+        (_("Maker"), device.maker),
+        (_("Model"), device.model),
+        (_("Serial number"), device.serial),
+        (_("Internal number"), device.inventory_number),
+        (_("Array"), wording.array_word(device.array_kind) if device.array_kind else ""),
+        (_("Contact"), wording.contact_word(device.contact_class) if device.contact_class else ""),
+        (_("Applied part"), device.applied_part),
+        (_("Protection class"), device.protection_class),
+        (_("Scanner"), device.scanner_label),
+        *((wording.register_word(name), device.register.get(name, "")) for name in REGISTER),
+    ]
+    return tuple(frozen.Row(label, value) for label, value in facts if value)
+
+
+def _software(device: DeviceRow, writer: Writer) -> tuple[frozen.SoftwareVersion, ...]:
+    return tuple(
+        frozen.SoftwareVersion(row.version, row.since_on.isoformat() if row.since_on else "", row.options)
+        for row in devices.software_of(device.id)
+    )
+
+
+def _plans(writer: Writer, device: DeviceRow, at: dt.datetime) -> tuple[frozen.Plan, ...]:
+    rows = []
+    for plan in plans.plans_of(device.id):
+        if plan.ended_at is not None:
+            continue
+        awaited = checks.next_check_of(plan.id)
+        rows.append(
+            frozen.Plan(
+                plan.procedure,
+                wording.recurrence_words(plan.rule, plan.basis),
+                plan.responsible,
+                awaited.due_on.isoformat() if awaited and awaited.due_on else "",
+                wording.due_words(awaited, at, writer.zone.key) if awaited else "",
+            )
+        )
+    return tuple(rows)
+
+
+def _check(writer: Writer, row: CheckRow, made: list[SubmissionRow]) -> frozen.Check:
+    due_on = row.due_on.isoformat() if row.due_on else ""
+    if not made:
+        return frozen.Check(
+            row.procedure, "", wording.check_state_word(row.state), due_on, sentence=row.excuse
+        )
+    latest = made[-1]
+    edition = writer.edition(latest.edition_id)
+    names = {spec.code: spec.name for spec in edition.spec.measurands}
+    return frozen.Check(
+        procedure=row.procedure,
+        edition=str(edition.number),
+        state=wording.check_state_word(row.state),
+        due_on=due_on,
+        measured_at=writer.moment(latest.measured_at),
+        recorded_at=writer.moment(latest.recorded_at),
+        performer=latest.performed_by,
+        place=row.site_code,
+        verdict=latest.verdict,
+        sentence=_deciding_sentence(latest, names),
+        facts=_facts(latest),
+        readings=tuple(_reading(reading, names) for reading in latest.readings),
+        untested=tuple(
+            frozen.Untested(names.get(each.measurand, each.measurand), wording.reason_word(each.reason))
+            for each in latest.not_tested
+        ),
+        signatures=tuple(_signature(writer, each) for one in made for each in one.signatures),
+        leaf=str(latest.leaf_uid),
+    )
+
+
+def _deciding_sentence(latest: SubmissionRow, names: dict[str, str]) -> str:
+    """Which reading made the check's verdict."""
+    for reading in latest.readings:
+        verdict = reading.verdict
+        if verdict and (verdict.verdict, verdict.level) == (latest.verdict, latest.verdict_level):
+            return "" if verdict.verdict == "conforming" else names.get(reading.measurand, reading.measurand)
+    return ""
+
+
+def _facts(latest: SubmissionRow) -> tuple[frozen.Row, ...]:
+    facts = [
+        (_("Test object"), latest.test_object),
+        (_("Instrument"), latest.instrument),
+        (_("Console"), " ".join(part for part in (latest.console, latest.console_software) if part)),
+        (_("Port"), latest.port),
+        (_("Cleaned before"), latest.cleaned_before),
+        (_("Cleaned after"), latest.cleaned_after),
+        (_("Remark"), latest.remark),
+    ]
+    return tuple(frozen.Row(label, value) for label, value in facts if value)
+
+
+def _reading(reading: ReadingRow, names: dict[str, str]) -> frozen.Reading:
+    verdict = reading.verdict
+    sentence, criterion, line = "", None, frozen.Line()
+    if verdict is not None:
+        sentence = wording.verdict_sentence(verdict.code, verdict.parameters, verdict.verdict, verdict.level)
+    if verdict is not None and verdict.criterion is not None:
+        spec = verdict.criterion.spec
+        standing = spec.standing.suspension if verdict.level == "suspension" else spec.standing.remedial
+        criterion = frozen.Criterion(
+            verdict.criterion.code,
+            f"{verdict.criterion.set_code} {verdict.criterion.set_edition}",
+            wording.criterion_words(spec),
+            spec.source,
+            wording.standing_word(standing or spec.standing.suspension or spec.standing.remedial),
+        )
+        line = _line(reading)
+    unit = "" if reading.unit in ("", "1") else wording.unit_symbol(reading.unit)
+    return frozen.Reading(
+        label=names.get(reading.measurand, reading.measurand),
+        value=reading.entered,
+        verdict=verdict.verdict if verdict else "",
+        sentence=sentence,
+        unit=unit,
+        qualifier=reading.qualifier,
+        condition=reading.condition,
+        aperture=reading.aperture,
+        origin="",
+        line=line,
+        criterion=criterion,
+    )
+
+
+def _line(reading: ReadingRow) -> frozen.Line:
+    verdict = reading.verdict
+    if verdict is None or verdict.criterion is None:
+        return frozen.Line()
+    judged = judged_line(verdict.criterion.spec.criterion, verdict.parameters)
+    if judged is None:
+        return frozen.Line()
+    return frozen.Line(
+        origin=_plain(judged.origin),
+        value=_plain(judged.value),
+        remedial=_plain(judged.remedial),
+        suspension=_plain(judged.suspension),
+        direction=judged.direction,
+        strict=judged.strict,
+        qualifier=judged.qualifier,
+        ranks=judged.ranks,
+    )
+
+
+def _plain(value: Decimal | None) -> str:
+    return "" if value is None else decimals.plain(value)
+
+
+def _signature(writer: Writer, row: SignatureRow) -> frozen.Signature:
+    return frozen.Signature(
+        row.name,
+        wording.role_word(row.role),
+        writer.moment(row.at),
+        wording.meaning_word(row.meaning),
+        row.remark,
+    )
+
+
+def _fault(writer: Writer, row: FaultRow) -> frozen.Fault:
+    actions = tuple(
+        frozen.Action(
+            writer.moment(each.at),
+            f"{each.text} ({each.job_number})" if each.job_number else each.text,
+            each.name,
+        )
+        for each in faults.actions_of(row.id)
+    )
+    return frozen.Fault(
+        title=row.seen.split("\n")[0][:120],
+        grade=wording.level_word(row.grade),
+        opened_at=writer.moment(row.opened_at),
+        state=wording.fault_state_word(row.state),
+        closed_at=writer.moment(row.closed_at),
+        seen=row.seen,
+        downtime=_downtime(row),
+        look_back=row.look_back,
+        proof=_proof(row),
+        actions=actions,
+    )
+
+
+def _downtime(row: FaultRow) -> str:
+    if row.closed_at is None or row.grade != "suspension":
+        return ""
+    return _("%(days)s days") % {"days": (row.closed_at - row.opened_at).days}
+
+
+def _proof(row: FaultRow) -> str:
+    if row.proving_check_id is None:
+        return row.close_remark
+    check = checks.check_by_id(row.proving_check_id)
+    verdict = wording.verdict_word(check.verdict) if check.verdict else ""
+    return _("%(procedure)s of %(day)s: %(verdict)s") % {
+        "procedure": check.procedure,
+        "day": check.submitted_at.date().isoformat() if check.submitted_at else "",
+        "verdict": verdict,
+    }
+
+
+def _baselines(writer: Writer, device: DeviceRow) -> tuple[frozen.Baseline, ...]:
+    names = {spec.code: spec.name for edition in library.list_editions() for spec in edition.spec.measurands}
+    return tuple(
+        frozen.Baseline(
+            measurand=", ".join(
+                part
+                for part in (names.get(row.measurand, row.measurand), row.aperture, row.condition)
+                if part
+            ),
+            value=row.entered
+            if row.qualifier == "="
+            else f"{wording.qualifier_word(row.qualifier)} {row.entered}",
+            unit="" if row.unit in ("", "1") else wording.unit_symbol(row.unit),
+            epoch=str(row.epoch),
+            from_on=writer.day(row.valid_from),
+            reason=row.reason,
+            key=", ".join(
+                part for part in (row.console_model, row.console_software, row.test_object) if part
+            ),
+            until_on=writer.day(row.ended_at),
+            set_by=row.set_by,
+        )
+        for row in baseline_rows.baselines_of(device.id)
+    )
+
+
+def _cautions(writer: Writer) -> tuple[str, ...]:
+    """The cautions of the document itself and of every procedure in it, each once."""
+    codes = [*DOSSIER_CAUTIONS]
+    for edition in writer.editions.values():
+        codes += [code for code in edition.spec.cautions if code not in codes]
+    return cautions.texts(codes)
+
+
+def _people(written: tuple[frozen.Check, ...], found: list[FaultRow]) -> tuple[frozen.Person, ...]:
+    """Everybody named, with the roles they hold."""
+    named = {each.name for check in written for each in check.signatures}
+    named |= {check.performer for check in written if check.performer} | {row.opened_by for row in found}
+    rows = []
+    for person in people.list_people(EVERYTHING):
+        if person.name in named:
+            held = {grant.role for grant in person.grants}
+            words = ", ".join(wording.role_word(role) for role in ROLES if role in held)
+            rows.append(frozen.Person(person.name, words))
+    return tuple(rows)
