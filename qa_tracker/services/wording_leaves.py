@@ -69,6 +69,10 @@ SENTENCES: Final = {
     "location.added": N_("%(actor)s added the room %(name)s"),
     "holidays.added": N_("%(actor)s added days off (%(days)s)"),
     "pool.created": N_("%(actor)s made the pool %(name)s of %(sites)s"),
+    "dossier.frozen": N_("%(actor)s set a dossier of %(device)s, its content frozen, to be drawn"),
+    "dossier.rendering": N_("%(actor)s began to draw a dossier of %(device)s"),
+    "dossier.issued": N_("%(actor)s issued a sealed dossier of %(device)s"),
+    "dossier.failed": N_("%(actor)s could not draw a dossier of %(device)s: %(failure)s"),
     "notices.owed": N_("%(actor)s moved checks by date: %(moved)s"),
 }
 """A sentence for every kind of leaf, with what it takes from the leaf's content."""

@@ -71,9 +71,11 @@ class _Given(dict[str, str]):
 
 
 def _in_words(error: DomainError) -> dict[str, str]:
-    return {"field": error.field} | {
-        name: _parameter(name, value) for name, value in error.parameters.items()
-    }
+    told = {name: _parameter(name, value) for name, value in error.parameters.items()}
+    noun = error.code.partition(".")[0]
+    if "state" in told and noun in STATES:
+        told["state"] = word(STATES[noun], told["state"])
+    return {"field": error.field} | told
 
 
 def _parameter(name: str, value: object) -> str:

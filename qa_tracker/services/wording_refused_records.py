@@ -8,6 +8,13 @@ from django.utils.translation import gettext_noop as N_
 
 CHECKS: Final = {
     "check.unknown": N_("There is no such check in your sight. Go back to Due and choose it there."),
+    "draft.someone_else": N_(
+        "Since this page was opened someone else has signed in here, so nothing was kept. Open the check again."
+    ),
+    "draft.kept_meanwhile": N_(
+        "Another page has kept something else for this check since you opened it here. Look at what it kept, then "
+        "go on with one of the two."
+    ),
     "check.no_edition": N_(
         "No edition of this procedure is adopted here, so there is nothing to check by. Ask a physicist to adopt one."
     ),
@@ -19,6 +26,9 @@ CHECKS: Final = {
     ),
     "check.test_object_missing": N_("This procedure needs a test object. Name the one that was used."),
     "check.instrument_missing": N_("This procedure needs a %(kind)s. Name the one that was used."),
+    "check.measured_at_wrong": N_(
+        "“%(entered)s” is no date and time. Write it as 2025-03-05 14:30, in the site's own time."
+    ),
     "check.measured_in_future": N_(
         "The time of measurement lies in the future. Correct the day or the time."
     ),
@@ -171,6 +181,9 @@ PLANS: Final = {
 }
 DOSSIERS: Final = {
     "dossier.unknown": N_("There is no such dossier in your sight. Go back to Dossiers and choose it there."),
+    "dossier.not_issued": N_(
+        "This dossier is %(state)s, so there is no file yet. Look again in a minute, or issue it anew."
+    ),
     "dossier.amount_unreadable": N_(
         "The frozen content holds “%(amount)s” where an amount should be. Freeze it anew."
     ),
@@ -181,6 +194,13 @@ DOSSIERS: Final = {
         "The frozen content is of the form “%(schema)s”, and only %(known)s can be drawn. Use a newer program."
     ),
     "dossier.content_unreadable": N_("The frozen content can't be read: %(problem)s. Freeze it anew."),
+    "file.missing": N_(
+        "The file with the hash %(sha256)s is no longer where it was kept. Bring it back from a backup."
+    ),
+    "file.changed": N_(
+        "The file with the hash %(sha256)s was changed since it was kept, so it is not shown. Bring it back from a "
+        "backup."
+    ),
     "seal.key_unreadable": N_("The sealing key can't be read. Check its file and its password."),
     "seal.already_signed": N_("This document is already sealed. Issue a new one to seal again."),
     "seal.timestamp_unavailable": N_(

@@ -44,6 +44,9 @@ READINGS: Final = {
     "reading.not_asked": N_(
         "This check doesn't ask for “%(key)s”. Open the check again: its procedure or the device may have changed."
     ),
+    "reading.condition_unconfirmed": N_(
+        "Nothing is said of the condition “%(condition)s”. Confirm that it is unchanged, or enter what differs."
+    ),
     "reading.both": N_("There is a value and also a reason for not testing. Keep one of the two."),
     "reading.reason_unknown": N_("“%(reason)s” is no reason for not testing. Choose one of those listed."),
     "reading.qualifier_not_allowed": N_(
@@ -188,6 +191,10 @@ INNER: Final = {
     "kernel.no_level": N_("The criterion has no level to judge by. Give it one."),
     "kernel.index": N_("A reading points outside its %(count)s criteria. Tell the administrator."),
     "kernel.numbers": N_("Readings came as %(kinds)s instead of whole numbers. Tell the administrator."),
+    "ledger.checkpoint_contradicted": N_(
+        "The first %(size)s leaves of the ledger no longer give the root of their checkpoint: something was changed "
+        "or lost. Sign nothing more, and compare with a backup."
+    ),
     "merkle.no_such_leaf": N_("There is no leaf %(index)s in a ledger of %(size)s. Use a smaller number."),
     "merkle.sizes_reversed": N_(
         "A ledger of %(old_size)s leaves can't be the beginning of one of %(new_size)s. Give the smaller size first."

@@ -10,14 +10,18 @@ from pathlib import Path
 
 import pytest
 
+from qa_tracker.core.workflow import DOSSIER
 from qa_tracker.records.queries.ledger import LeafRow
 from qa_tracker.services.wording import leaf_sentence
 from qa_tracker.services.wording_leaves import SENTENCES
 
 ROOT = Path(__file__).parents[2] / "qa_tracker"
 DOORS = {"command", "sweeping", "act"}
-# The second signature's kind ends with the state it leads to.
-MADE = {"f'check.{state}'": ("check.countersigned", "check.sent_back")}
+# Kinds that end with the state a verb leads to.
+MADE = {
+    "f'check.{state}'": ("check.countersigned", "check.sent_back"),
+    "f'dossier.{state}'": tuple(f"dossier.{state}" for state in DOSSIER.states),
+}
 
 
 def _kinds():
@@ -31,7 +35,7 @@ def _kinds():
             if isinstance(kind, ast.Constant) and "." in str(kind.value):
                 yield kind.value
             elif isinstance(kind, ast.JoinedStr):
-                yield from MADE[ast.unparse(kind)]
+                yield from MADE.get(ast.unparse(kind), (f"{path.name}:{node.lineno}",))
 
 
 def test_every_kind_that_is_written_has_a_sentence_and_no_other_has():
@@ -172,6 +176,16 @@ TABLE = [
         f"{HD} added days off (25 December 2025 and 26 December 2025).",
     ),
     ("pool.created", {"name": "Probes", "sites": ["AG", "KB", "SO"]}, "", f"{HD} made the pool Probes of AG, KB and SO."),
+    (
+        "dossier.frozen", {"content_sha256": "", "ledger_size": 5}, "",
+        f"{HD} set a dossier of {TERN}, its content frozen, to be drawn.",
+    ),
+    ("dossier.rendering", {"state": "rendering"}, "", f"{HD} began to draw a dossier of {TERN}."),
+    ("dossier.issued", {"state": "issued"}, "", f"{HD} issued a sealed dossier of {TERN}."),
+    (
+        "dossier.failed", {"state": "failed", "failure": "seal.cannot_sign"}, "",
+        f"{HD} could not draw a dossier of {TERN}: seal.cannot_sign.",
+    ),
     (
         "notices.owed", {"notices": ["a", "b"], "missed": ["c"], "excused": [], "opened": ["d"]}, "",
         f"{HD} moved checks by date: 2 notices owed, 1 check missed and 1 check opened.",
