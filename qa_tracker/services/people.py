@@ -149,9 +149,9 @@ def set_password(*, person: uuid.UUID, password: str, actor: Person, at: dt.date
 def issue_token(*, label: str, actor: Person, at: dt.datetime) -> str:
     """Make a bearer token for the actor and return it: it is shown once and kept as a hash.
 
-    Leaf ``token.issued``. A token carries what its person may do, nothing more.
+    Leaf ``token.issued``. A token carries what its person may do, nothing more. Refused: role.
     """
-    guards.check_may_somewhere(actor, "see", at)
+    guards.check_may_somewhere(actor, "token.issue", at)
     token = secrets.token_urlsafe(32)
     with ledger.command("token.issued", actor=actor, at=at) as act:
         digest = hashlib.sha256(token.encode()).hexdigest()

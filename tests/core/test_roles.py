@@ -28,17 +28,18 @@ MAY = {
     "user": {"see", "check.enter_user", "device.quarantine", "fault.open"},
     "technician": {
         *("see", "check.enter_user", "check.enter", "device.place", "device.quarantine"),
-        *("fault.open", "fault.act", "dossier.read", "ledger.read"),
+        *("fault.open", "fault.act", "dossier.read", "ledger.read", "token.issue"),
     },
     "lead": {
         *("see", "check.enter_user", "check.enter", "check.excuse", "device.register", "device.edit"),
         *("device.place", "device.quarantine", "condition.set", "object.register", "plan.make"),
-        *("fault.open", "fault.act", "dossier.issue", "dossier.read", "ledger.read"),
+        *("fault.open", "fault.act", "dossier.issue", "dossier.read", "ledger.read", "token.issue"),
     },
     "engineer": {
         *("see", "check.enter_user", "check.enter", "device.register", "device.edit", "device.place"),
         *("device.accept", "device.quarantine", "device.restore", "device.repair", "object.register"),
         *("fault.open", "fault.act", "fault.close", "dossier.issue", "dossier.read", "ledger.read"),
+        "token.issue",
     },
     "physicist": {
         *("see", "check.enter_user", "check.enter", "check.countersign", "check.excuse"),
@@ -47,7 +48,7 @@ MAY = {
         *("procedure.adopt", "criteria.adopt", "baseline.set", "plan.make", "fault.open", "fault.act"),
         *("fault.close", "dossier.issue", "dossier.read", "ledger.read", "token.issue"),
     },
-    "auditor": {"see", "dossier.issue", "dossier.read", "ledger.read"},
+    "auditor": {"see", "dossier.issue", "dossier.read", "ledger.read", "token.issue"},
     "administrator": {
         *("see", "dossier.read", "ledger.read", "person.manage", "site.manage", "mail.see", "token.issue"),
     },
