@@ -106,7 +106,7 @@ class Criterion:
 
 @dataclass(frozen=True)
 class Reading:
-    """One reading with its verdict; ``value`` and ``qualifier`` exactly as entered."""
+    """One reading with its verdict (empty: no limit judges it); ``value`` and ``qualifier`` exactly as entered."""
 
     label: str
     value: str

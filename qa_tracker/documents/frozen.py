@@ -69,7 +69,7 @@ def _require_labels_and_verdicts(content: DeviceDossier) -> None:
     if missing:
         raise Invalid("dossier.label_missing", labels=", ".join(missing))
     verdicts = {check.verdict for check in content.checks if check.verdict}
-    verdicts |= {reading.verdict for check in content.checks for reading in check.readings}
+    verdicts |= {reading.verdict for check in content.checks for reading in check.readings if reading.verdict}
     unknown = sorted(verdicts - VERDICT_COLOURS.keys())
     if unknown:
         raise Invalid("dossier.verdict_unknown", verdicts=", ".join(unknown))

@@ -32,6 +32,7 @@ ENGLISH = {
     "not_assessable": "not assessable",
     "not_seen": "not seen",
     "no_reading": "no reading",
+    "no_limit": "recorded, no limit",
     "over_time": "Checks over time",
     "stroke_explained": "A bare stroke is a check without a verdict: missed, excused, void or not yet submitted.",
     "continued": "continued",

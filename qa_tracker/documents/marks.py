@@ -33,7 +33,9 @@ def word_style(verdict: str, size: float, leading: float) -> Style:
 def verdict_cell(
     flow: Flow, verdict: str, labels: Mapping[str, str], x: float, width: float, leading: float = 12.5
 ) -> Cell:
-    """Draw the mark for the row about to be set, and give the cell with its word."""
+    """Draw the mark for the row about to be set, and give the cell with its word; no mark where nothing judged."""
+    if not verdict:
+        return Cell(printable(labels["no_limit"]), x, width, Style(8.2, leading))
     draw_mark(flow, verdict, x, flow.y - leading / 2 + MARK / 2 - 0.6)
     word = printable(labels[verdict])
     return Cell(word, x + MARK + GAP, width - MARK - GAP, word_style(verdict, 8.6, leading))
