@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import json
+
 import rfc8785
 
 from qa_tracker.core.errors import Invalid
@@ -34,27 +36,38 @@ def canonical(value: object) -> bytes:
     >>> canonical({"unit": "mm", "entered": "12.50", "places": 2})
     b'{"entered":"12.50","places":2,"unit":"mm"}'
     """
-    _refuse_what_has_no_exact_form(value, depth=0)
+    plainly_ordered = _check_exact_form(value, depth=0)
     try:
+        if plainly_ordered:
+            return _PLAIN.encode(value).encode()
         return rfc8785.dumps(value)  # type: ignore[no-any-return, arg-type, unused-ignore]
-    except ValueError as error:
+    except (ValueError, TypeError) as error:
         raise Invalid("canonical.not_json", what=str(error)) from error
 
 
-def _refuse_what_has_no_exact_form(value: object, depth: int) -> None:
+def _check_exact_form(value: object, depth: int) -> bool:
+    """Refuse what has no exact form, and tell whether every name orders the same by code point and code unit.
+
+    Then Python's own writer gives the bytes of RFC 8785, many times faster: names sort alike, whole numbers and
+    escapes are written alike, and there are no fractions.
+    """
+    if isinstance(value, str) or value is None:
+        return True
     if depth > DEEPEST_NESTING:
         raise Invalid("canonical.too_deep", most=DEEPEST_NESTING)
     if isinstance(value, float):
         raise Invalid("canonical.binary_fraction", value=repr(value))
-    if isinstance(value, int) and abs(value) > LARGEST_INTEGER:
-        raise Invalid("canonical.integer_too_large", value=str(value), most=LARGEST_INTEGER)
-    for member in _members(value):
-        _refuse_what_has_no_exact_form(member, depth + 1)
-
-
-def _members(value: object) -> tuple[object, ...]:
+    if isinstance(value, int):
+        if abs(value) > LARGEST_INTEGER:
+            raise Invalid("canonical.integer_too_large", value=str(value), most=LARGEST_INTEGER)
+        return type(value) in (int, bool)
     if isinstance(value, dict):
-        return (*value.keys(), *value.values())
+        plain = all([_check_exact_form(member, depth + 1) for member in value.values()])
+        named = all([_check_exact_form(name, depth + 1) for name in value])
+        return plain and named and all([type(name) is str and name.isascii() for name in value])
     if isinstance(value, list | tuple):
-        return tuple(value)
-    return ()
+        return all([_check_exact_form(member, depth + 1) for member in value])
+    return False
+
+
+_PLAIN = json.JSONEncoder(ensure_ascii=False, check_circular=False, sort_keys=True, separators=(",", ":"))
