@@ -11,7 +11,9 @@ from django.utils.translation import gettext_noop as N_
 
 from qa_tracker.core.errors import DomainError, SeveralInvalid
 from qa_tracker.core.roles import PERMISSIONS
+from qa_tracker.services.wording_findings import REFUSED
 from qa_tracker.services.wording_refused_records import RECORDS
+from qa_tracker.services.wording_refused_requests import REQUESTS
 from qa_tracker.services.wording_refused_values import VALUES
 from qa_tracker.services.wording_verbs import MOVES, PERMITTED
 from qa_tracker.services.wording_words import (
@@ -30,7 +32,7 @@ from qa_tracker.services.wording_words import (
     word,
 )
 
-SENTENCES: Final[Mapping[str, str]] = VALUES | RECORDS
+SENTENCES: Final[Mapping[str, str]] = VALUES | RECORDS | REQUESTS | REFUSED
 STATES: Final = {
     "check": CHECK_STATES,
     "device": DEVICE_STATES,

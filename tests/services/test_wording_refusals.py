@@ -16,6 +16,7 @@ from qa_tracker.core.errors import Conflict, DomainError, Forbidden, Invalid, Se
 from qa_tracker.core.roles import VERBS
 from qa_tracker.core.workflow import DEVICE, WORKFLOWS, target
 from qa_tracker.services.wording import refusal
+from qa_tracker.services.wording_findings import REFUSED
 from qa_tracker.services.wording_refusals import KNOWN, NOUNS, SENTENCES, WRONG_STATE
 from qa_tracker.services.wording_verbs import MOVES, PERMITTED
 
@@ -23,7 +24,7 @@ ROOT = Path(__file__).parents[2] / "qa_tracker"
 RAISED = {"DomainError", "Invalid", "Forbidden", "NotFound", "Conflict"}
 PLACEHOLDER = re.compile(r"%\((\w+)\)s")
 # Places that pass a code on, and where the codes come from that they pass.
-PASSED_ON = {("decimals.py", "code"), ("guards.py", "code")}
+PASSED_ON = {("decimals.py", "code"), ("guards.py", "code"), ("verify_dossier.py", "code")}
 # Codes that a place makes up from a noun.
 MADE = {
     "f'{workflow.noun}.wrong_state'": WRONG_STATE,
@@ -63,6 +64,8 @@ def _raised():
                 yield made, given
     for code, _pattern in decimals._REFUSALS:
         yield code, {"field", "entered"} | SPREAD.get(code, set())
+    for code in REFUSED:
+        yield code, set()
 
 
 RAISING = defaultdict(list)
