@@ -5,13 +5,13 @@ from __future__ import annotations
 import datetime as dt
 import uuid
 
-from ninja import Router, Schema
+from ninja import Schema
 
 from qa_tracker.api.authentication import ApiRequest
-from qa_tracker.api.errors import refusals
+from qa_tracker.api.nouns import NounRouter
 from qa_tracker.records.queries import objects, people, sites
 
-router = Router(tags=["places and people"])
+router = NounRouter(tags=["places and people"])
 
 
 class LocationOut(Schema):
@@ -92,7 +92,7 @@ class InstrumentOut(Schema):
     in_use: bool
 
 
-@router.get("/sites", response=list[SiteOut], operation_id="listSites", openapi_extra=refusals())
+@router.reads("/sites", list[SiteOut], "listSites")
 def list_sites(request: ApiRequest) -> list[object]:
     """Sites in sight."""
     scope = request.auth.scope()
@@ -103,7 +103,7 @@ def list_sites(request: ApiRequest) -> list[object]:
     ]
 
 
-@router.get("/pools", response=list[PoolOut], operation_id="listPools", openapi_extra=refusals())
+@router.reads("/pools", list[PoolOut], "listPools")
 def list_pools(request: ApiRequest) -> list[object]:
     """Pools with a member site in sight."""
     scope = request.auth.scope()
@@ -114,22 +114,20 @@ def list_pools(request: ApiRequest) -> list[object]:
     ]
 
 
-@router.get("/people", response=list[PersonOut], operation_id="listPeople", openapi_extra=refusals())
+@router.reads("/people", list[PersonOut], "listPeople")
 def list_people(request: ApiRequest) -> list[people.PersonRow]:
     """Accounts of the sites one administers."""
     request.auth.check_may_somewhere("person.manage")
     return people.list_people(request.auth.scope("person.manage"))
 
 
-@router.get("/me", response=PersonOut, operation_id="showMe", openapi_extra=refusals())
+@router.reads("/me", PersonOut, "showMe")
 def show_me(request: ApiRequest) -> people.PersonRow | None:
     """The person the token acts for, with their roles."""
     return people.find_person(request.auth.scope(), request.auth.actor.uid)
 
 
-@router.get(
-    "/test-objects", response=list[TestObjectOut], operation_id="listTestObjects", openapi_extra=refusals()
-)
+@router.reads("/test-objects", list[TestObjectOut], "listTestObjects")
 def list_test_objects(request: ApiRequest) -> list[object]:
     """Test objects of the sites in sight."""
     scope = request.auth.scope()
@@ -137,9 +135,7 @@ def list_test_objects(request: ApiRequest) -> list[object]:
     return [vars(row) | {"site_code": codes[row.site_id]} for row in objects.list_test_objects(scope)]
 
 
-@router.get(
-    "/instruments", response=list[InstrumentOut], operation_id="listInstruments", openapi_extra=refusals()
-)
+@router.reads("/instruments", list[InstrumentOut], "listInstruments")
 def list_instruments(request: ApiRequest) -> list[object]:
     """Instruments of the sites in sight."""
     scope = request.auth.scope()

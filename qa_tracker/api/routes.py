@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from qa_tracker.api import errors, places
+from qa_tracker.api import baselines, checks, devices, errors, evidence, faults, library, places, signing
 from qa_tracker.api.authentication import BearerToken
 from qa_tracker.api.openapi import JsonApi
 
@@ -19,5 +19,5 @@ api = JsonApi(
     auth=BearerToken(),
 )
 errors.install(api)
-for noun in (places,):
+for noun in (places, devices, library, baselines, checks, signing, faults, evidence):
     api.add_router("", noun.router)
