@@ -163,6 +163,8 @@ EMAIL_USE_TLS = env.text("EMAIL_USE_TLS", "0") == "1"
 EMAIL_TIMEOUT = 20
 DEFAULT_FROM_EMAIL = env.text("MAIL_FROM", "leadline@leadline.invalid")
 MAIL_DOMAIN = DEFAULT_FROM_EMAIL.rpartition("@")[2]
+# How long a claimed mail is left to the worker that claimed it; longer than a task may take (config/celery.py).
+MAIL_LEASE_S = int(env.text("LEADLINE_MAIL_LEASE_S", "240"))
 DEMO_MAILBOX = not env.text("EMAIL_HOST")
 
 SEAL_KEY_FILE = env.text("SEAL_KEY_FILE")

@@ -4,8 +4,11 @@ from __future__ import annotations
 
 import os
 
-from django.core.wsgi import get_wsgi_application
-
 os.environ.setdefault("DJANGO_SETTINGS_MODULE", "config.settings")
 
+from django.core.wsgi import get_wsgi_application
+
+from qa_tracker.services.start import require_guards
+
 application = get_wsgi_application()
+require_guards()

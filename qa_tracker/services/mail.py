@@ -21,7 +21,6 @@ from qa_tracker.records.models import Digest, Notice, NoticeMail, Person, Site
 from qa_tracker.records.queries.notices import notices_in, waiting_digests
 from qa_tracker.services import plans, wording
 
-LEASE_S = 240
 RETRY_AFTER_MIN = (1, 5, 15, 60)
 IMMEDIATE = ("suspension",)
 
@@ -78,7 +77,7 @@ def claim(*, digest_id: int) -> bool:
     free = Q(state="waiting", due_at__lte=Now()) | Q(state="claimed", lease_until__lt=Now())
     taken = Digest.objects.filter(free, pk=digest_id).update(
         state="claimed",
-        lease_until=Now() + dt.timedelta(seconds=LEASE_S),
+        lease_until=Now() + dt.timedelta(seconds=settings.MAIL_LEASE_S),
         attempts=F("attempts") + 1,
     )
     return taken == 1
@@ -142,6 +141,7 @@ def _transact(backend: EmailBackend, message: EmailMessage, to: str) -> str:
     server = backend.connection
     if server is None:
         raise smtplib.SMTPServerDisconnected("no connection to the mail server")
+    server.ehlo_or_helo_if_needed()
     refused = server.mail(settings.DEFAULT_FROM_EMAIL)
     if refused[0] != 250:
         raise smtplib.SMTPResponseException(*refused)
