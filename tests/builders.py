@@ -8,6 +8,7 @@ import uuid
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from pathlib import Path
+from zoneinfo import ZoneInfo
 
 from django.test import Client
 from django.utils.timezone import now
@@ -22,6 +23,7 @@ from qa_tracker.records.models import (
     RoleGrant,
     Site,
     Submission,
+    TestObject,
 )
 from qa_tracker.services import checks, devices, library, objects, people, plans, sites, states
 from qa_tracker.services.checks import Typed
@@ -34,6 +36,7 @@ PASSWORD = "plumb line and water bath"
 BACKEND = "qa_tracker.web.sign_in.CredentialBackend"
 MONTHLY = "monthly-in-air"
 EVERY_MONTH = "FREQ=MONTHLY"
+LONDON = ZoneInfo("Europe/London")
 
 
 def first_administrator(at: dt.datetime | None = None) -> Person:
@@ -174,8 +177,8 @@ def plan(
     return made.checks.get()
 
 
-def test_object(physicist: Person, at_site: Site, nominals: Mapping[str, str] | None = None) -> object:
-    """A phantom of the site."""
+def phantom(physicist: Person, at_site: Site, nominals: Mapping[str, str] | None = None) -> TestObject:
+    """A test object of the site."""
     return objects.register_test_object(
         site=at_site,
         name="General phantom",
@@ -185,9 +188,6 @@ def test_object(physicist: Person, at_site: Site, nominals: Mapping[str, str] | 
         actor=physicist,
         at=now(),
     )
-
-
-test_object.__test__ = False
 
 
 @dataclass(frozen=True)

@@ -7,6 +7,8 @@ import uuid
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 
+from django.db import IntegrityError
+
 from qa_tracker.core.canonical import canonical
 from qa_tracker.core.errors import Conflict, Forbidden, Invalid
 from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, target
@@ -228,11 +230,38 @@ def submit(
     occurrence; a suspension verdict opens a Fault and owes notices. Leaf ``check.submitted``.
 
     The same ``form_uid`` again returns the submission it made. Refused: as :func:`preview`; wrong password;
-    something else than what was shown; a check submitted meanwhile.
+    something else than what was shown; a check submitted meanwhile; the form of another check.
     """
-    known = submissions.submission_by_form(form_uid)
-    if known is not None and known.performed_by_id == actor.pk:
+    known = _made_by(form_uid, check, actor)
+    if known is not None:
         return known
+    try:
+        return _submit(check, form_uid, typed, shown_sha256, password, quarantine, actor, at)
+    except (Conflict, IntegrityError):
+        # The same form sent twice at once: the other one was first.
+        known = _made_by(form_uid, check, actor)
+        if known is None:
+            raise
+        return known
+
+
+def _made_by(form_uid: uuid.UUID, check: uuid.UUID, actor: Person) -> Submission | None:
+    known = submissions.submission_by_form(form_uid)
+    if known is not None and (known.performed_by_id, known.check_of.uid) != (actor.pk, check):
+        raise Conflict("check.form_used", field="form_uid")
+    return known
+
+
+def _submit(
+    check: uuid.UUID,
+    form_uid: uuid.UUID,
+    typed: Typed,
+    shown_sha256: str,
+    password: str,
+    quarantine: bool,
+    actor: Person,
+    at: dt.datetime,
+) -> Submission:
     seen = preview(check=check, typed=typed, whole=True, actor=actor, at=at)
     check_shown(shown_sha256, seen.shown_sha256)
     check_password(actor, password)

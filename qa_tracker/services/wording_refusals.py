@@ -12,6 +12,7 @@ from django.utils.translation import gettext_noop as N_
 from qa_tracker.core.errors import DomainError, SeveralInvalid
 from qa_tracker.core.roles import PERMISSIONS
 from qa_tracker.services.wording_findings import REFUSED
+from qa_tracker.services.wording_refused_entry import ENTRY
 from qa_tracker.services.wording_refused_records import RECORDS
 from qa_tracker.services.wording_refused_requests import REQUESTS
 from qa_tracker.services.wording_refused_values import VALUES

@@ -23,7 +23,7 @@ from qa_tracker.web.refused import Refused
 
 register = template.Library()
 MARK_PX = 16
-LINE_PX = (224.0, 26.0)
+LINE_PX = (224, 26)
 WORDS = {
     "level": wording.level_word,
     "check_state": wording.check_state_word,
@@ -87,7 +87,7 @@ def allowance_line(judged: Judged | None) -> SafeString | str:
     share = figures.share_text(line)
     width, height = LINE_PX
     return format_html(
-        '<span class="allowance"><svg viewBox="0 0 {0:g} {1:g}" width="{0:g}" height="{1:g}" role="img" '
+        '<span class="allowance"><svg viewBox="0 0 {0} {1}" width="{0}" height="{1}" role="img" '
         'aria-label="{2}">{3}</svg><span class="share">{4}</span></span>',
         width,
         height,
@@ -162,5 +162,6 @@ def described_by(refused: Refused | None, field: str, hint: str = "") -> SafeStr
     ids = " ".join(part for part in (hint, f"refusal_{field}" if sentence else "") if part)
     if not ids:
         return ""
-    invalid = format_html(' aria-invalid="true"') if sentence else ""
-    return format_html(' aria-describedby="{}"{}', ids, invalid)
+    if sentence:
+        return format_html(' aria-describedby="{}" aria-invalid="true"', ids)
+    return format_html(' aria-describedby="{}"', ids)

@@ -4,9 +4,19 @@ from __future__ import annotations
 
 from django.urls import path
 
-from qa_tracker.web.views import due, notices
+from qa_tracker.web.views import attempts, checks, due, entry, notices, signing
 
 urlpatterns = [
     path("", due.show, name="due"),
     path("notices/", notices.show, name="notices"),
+    path("checks/", checks.index, name="checks"),
+    path("checks/<uuid:uid>/", checks.show, name="check"),
+    path("checks/<uuid:uid>/enter/", entry.enter, name="check-enter"),
+    path("checks/<uuid:uid>/draft/", entry.draft, name="check-draft"),
+    path("checks/<uuid:uid>/sign/", signing.sign, name="check-sign"),
+    path("checks/<uuid:uid>/countersign/", checks.countersign, name="check-countersign"),
+    path("checks/<uuid:uid>/send-back/", checks.send_back, name="check-send-back"),
+    path("checks/<uuid:uid>/not-tested/", attempts.not_tested, name="check-not-tested"),
+    path("checks/<uuid:uid>/excuse/", attempts.excuse, name="check-excuse"),
+    path("devices/<uuid:uid>/check/<slug:procedure_code>/", attempts.open_unplanned, name="unplanned-check"),
 ]
