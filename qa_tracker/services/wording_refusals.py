@@ -33,7 +33,7 @@ from qa_tracker.services.wording_words import (
     word,
 )
 
-SENTENCES: Final[Mapping[str, str]] = VALUES | RECORDS | REQUESTS | REFUSED
+SENTENCES: Final[Mapping[str, str]] = VALUES | RECORDS | REQUESTS | ENTRY | REFUSED
 STATES: Final = {
     "check": CHECK_STATES,
     "device": DEVICE_STATES,
