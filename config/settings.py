@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 from pathlib import Path
 
 import dj_database_url
@@ -88,7 +89,9 @@ def database(url: str) -> dict[str, object]:
 
 
 DATABASE_URL = env.text("DATABASE_URL", f"sqlite:///{DATA_DIR / 'leadline.sqlite3'}")
-DATABASES = {"default": database(DATABASE_URL)}
+# Only migrate may use the owner's role; whatever serves pages has no right to alter tables.
+MIGRATING = sys.argv[1:2] == ["migrate"]
+DATABASES = {"default": database((MIGRATING and env.text("MIGRATE_DATABASE_URL")) or DATABASE_URL)}
 DEFAULT_AUTO_FIELD = "django.db.models.BigAutoField"
 
 AUTH_USER_MODEL = "leadline.Person"
