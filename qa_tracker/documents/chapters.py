@@ -8,7 +8,7 @@ from qa_tracker.core.figures import RULE
 from qa_tracker.documents.canvas import BODY, COLUMN, HEADING, LEFT, SECTION, SMALL, Cell, Flow
 from qa_tracker.documents.checks import draw_check, draw_signatures
 from qa_tracker.documents.content import Baseline, Criterion, DeviceDossier, Fault, LedgerState, Row
-from qa_tracker.documents.opening import draw_facts, draw_legend, draw_opening, draw_timeline
+from qa_tracker.documents.opening import draw_facts, draw_legend, draw_opening, draw_timeline, spans_days
 from qa_tracker.documents.text import joined, moment_text, printable
 
 WIDE = 200.0
@@ -36,7 +36,7 @@ def draw_front(flow: Flow, content: DeviceDossier) -> None:
         chapter(flow, labels["cautions"])
         for caution in content.cautions:
             flow.write(printable(caution))
-    if content.checks:
+    if spans_days(content.checks):
         chapter(flow, labels["over_time"])
         draw_timeline(flow, content.checks, labels["stroke_explained"])
     _register(flow, content)
@@ -61,7 +61,7 @@ def _register(flow: Flow, content: DeviceDossier) -> None:
         flow,
         labels["plans"],
         (
-            (f"{due} {p.due_on}, {p.due}", p.procedure, joined_plain(p.recurrence, p.who))
+            (p.due or f"{due} {p.due_on}", p.procedure, joined_plain(p.recurrence, p.who))
             for p in content.plans
         ),
     )

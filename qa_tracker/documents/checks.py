@@ -94,6 +94,8 @@ def draw_reading(flow: Flow, reading: Reading, labels: Labels) -> None:
 
 def draw_line(flow: Flow, line: Line) -> str:
     """Draw the allowance line for the row about to be set, and give its share as a figure."""
+    if not line.value and not line.remedial and not line.suspension:
+        return ""
     placed = allowance_line(line.judged())
     top = flow.y - BODY.leading / 2 + LINE_HEIGHT / 2 + 0.6
     flow.draw(allowance_shapes(placed, LINE_WIDTH, LINE_HEIGHT), LINE_X, top)

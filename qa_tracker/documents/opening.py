@@ -89,11 +89,14 @@ def draw_legend(flow: Flow, content: DeviceDossier) -> None:
     flow.write(printable(labels["line_explained"]), SMALL, LEFT + 140, COLUMN - 140)
 
 
+def spans_days(checks: Iterable[Check]) -> bool:
+    """Whether there is a line of time to draw: checks on two days at least."""
+    return len({day for check in checks for day in _days(check)}) > 1
+
+
 def draw_timeline(flow: Flow, checks: Iterable[Check], explained: str) -> None:
     """Set every check as its mark along a line of time, left to right; one without a verdict as a stroke."""
     dated = sorted((day, check.verdict) for check in checks for day in _days(check))
-    if len(dated) < 2 or dated[0][0] == dated[-1][0]:
-        return
     first, last = dated[0][0], dated[-1][0]
     scale = (COLUMN - 2 * MARK) / (last - first)
     lanes = _lanes([LEFT + MARK + (day - first) * scale for day, _ in dated])

@@ -197,7 +197,12 @@ def _deciding_sentence(latest: SubmissionRow, names: dict[str, str]) -> str:
     for reading in latest.readings:
         verdict = reading.verdict
         if verdict and (verdict.verdict, verdict.level) == (latest.verdict, latest.verdict_level):
-            return "" if verdict.verdict == "conforming" else names.get(reading.measurand, reading.measurand)
+            name = names.get(reading.measurand, reading.measurand)
+            return (
+                ""
+                if verdict.verdict == "conforming"
+                else _("The verdict is that of: %(name)s.") % {"name": name}
+            )
     return ""
 
 
