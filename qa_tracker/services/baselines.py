@@ -94,7 +94,7 @@ def set_values(
             )
             for value, exact in read
         ]
-        _sign(act, row, found, actor, role, reason)
+        sign(act, row, found, actor, role, reason)
     return found
 
 
@@ -115,7 +115,7 @@ def adopt_submission(
     taken = [
         reading
         for reading in row.readings.select_related("measurand", "aperture", "condition")
-        if reading.scaled is not None and _wants_baseline(specs.get(reading.measurand.code), device.site_id)
+        if reading.scaled is not None and wants_baseline(specs.get(reading.measurand.code), device.site_id)
     ]
     if not taken:
         raise Invalid("baseline.values_missing", field="submission")
@@ -130,7 +130,7 @@ def adopt_submission(
     role = role_for(actor, "baseline.set", device.site_id or actor.duties_site_id, at)
     with ledger.command("baseline.set", actor=actor, at=at, reason=reason) as act:
         found = [_from_reading(act, device, specs, reading, source, reason, actor) for reading in taken]
-        _sign(act, device, found, actor, role, reason)
+        sign(act, device, found, actor, role, reason)
     return found
 
 
@@ -155,7 +155,8 @@ def known_measurands(site_id: int | None) -> dict[str, MeasurandSpec]:
     return {spec.code: spec for edition in adopted_procedures(site_id) for spec in edition.spec.measurands}
 
 
-def _wants_baseline(spec: MeasurandSpec | None, site_id: int | None) -> bool:
+def wants_baseline(spec: MeasurandSpec | None, site_id: int | None) -> bool:
+    """Whether readings of a measurand are compared with a baseline at a site."""
     if spec is None:
         return False
     adopted = adopted_criteria(site_id)
@@ -217,12 +218,27 @@ def put(
     reason: str,
     set_by: Person,
 ) -> Baseline:
-    """The rows of one baseline: the epoch before it ends. For commands and for history."""
+    """The rows of one baseline: the epoch before it ends."""
     measurand = Measurand.objects.get(code=spec.code)
     before = Baseline.objects.filter(
         device=device, measurand=measurand, aperture=part[0], condition=part[1]
     ).order_by("-epoch")
-    last = before.first()
+    return put_epoch(act, device, measurand, part, exact, qualifier, source, reason, set_by, before.first())
+
+
+def put_epoch(
+    act: ledger.Act,
+    device: Device,
+    measurand: Measurand,
+    part: tuple[Aperture | None, Condition | None],
+    exact: Exact,
+    qualifier: str,
+    source: Source,
+    reason: str,
+    set_by: Person,
+    last: Baseline | None,
+) -> Baseline:
+    """The rows of one baseline after the last one of its series; for commands and for history."""
     if last is not None and last.ended_at is None:
         act.change(last, ended_at=act.at, under_review=False)
     return act.insert(
@@ -236,7 +252,7 @@ def put(
             entered=exact.entered,
             scaled=exact.scaled,
             places=exact.places,
-            unit=spec.unit,
+            unit=measurand.unit,
             console_model=source.console_model,
             console_software=source.console_software,
             test_object=source.test_object,
@@ -249,9 +265,10 @@ def put(
     )
 
 
-def _sign(
+def sign(
     act: ledger.Act, device: Device, found: list[Baseline], actor: Person, role: str, reason: str
 ) -> None:
+    """Sign baselines and say them in the leaf; for commands and for history."""
     shown = {
         "device": str(device.uid),
         "baselines": [

@@ -299,7 +299,8 @@ def set_condition(
         if text:
             decimals.parse(text, field=field_name)
     with ledger.command("condition.set", actor=actor, at=at) as act:
-        return put_condition(act, row, name, test_frequency_mhz, sound_speed_m_s, settings)
+        known = Condition.objects.filter(device=row, name=name.strip()).first()
+        return put_condition(act, row, name, test_frequency_mhz, sound_speed_m_s, settings, known)
 
 
 def put_condition(
@@ -309,8 +310,9 @@ def put_condition(
     test_frequency_mhz: str,
     sound_speed_m_s: str,
     settings: Mapping[str, str],
+    known: Condition | None,
 ) -> Condition:
-    """The rows of a condition; for commands and for history."""
+    """The rows of a condition, new or ``known``; for commands and for history."""
     name = required(name, "condition.name_missing", "name")
     told = {"name": name, "test_frequency_mhz": test_frequency_mhz, "sound_speed_m_s": sound_speed_m_s,
             "settings": dict(settings)}  # fmt: skip
@@ -319,12 +321,11 @@ def put_condition(
         "sound_speed_m_s": sound_speed_m_s,
         "settings": canonical(dict(settings)).decode(),
     }
-    condition = Condition.objects.filter(device=device, name=name).first()
     old: dict[str, object] = {}
-    if condition is None:
+    if known is None:
         condition = act.insert(Condition(device=device, name=name, **columns))
     else:
-        old = {"settings": json.loads(condition.settings)}
+        condition, old = known, {"settings": json.loads(known.settings)}
         act.change(condition, **columns)
     act.about(condition, device=device, site=device.site)
     act.tell(told, old)

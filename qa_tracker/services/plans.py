@@ -58,7 +58,12 @@ def make(
 
 
 def add_plan(
-    act: ledger.Act, device: Device, procedure: Procedure, recurrence: Recurrence, responsible: Person
+    act: ledger.Act,
+    device: Device,
+    procedure: Procedure,
+    recurrence: Recurrence,
+    responsible: Person,
+    days: schedule.SiteDays | None = None,
 ) -> tuple[CheckPlan, Check]:
     """The rows of a plan and its first occurrence; for commands and for history."""
     schedule.check_basis(schedule.parse_rule(recurrence.rule), recurrence.basis)
@@ -75,7 +80,7 @@ def add_plan(
             responsible=responsible,
         )
     )
-    check = open_next(act, plan, after_on=None)
+    check = open_next(act, plan, after_on=None, days=days)
     act.about(plan, device=device, site=device.site)
     act.tell(
         {

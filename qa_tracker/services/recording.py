@@ -308,11 +308,16 @@ def _finding_words(judged: Judged) -> str:
     return f"{worst.item.spec.name}{where}: {worst.entry.text or worst.entry.qualifier}{unit}"
 
 
-def not_tested(act: ledger.Act, check: Check, reason: str, remark: str, by: Person) -> NotTested:
-    """The rows of an attempt that could not be made; "not found" twice opens a fault."""
-    before = NotTested.objects.filter(
-        check_of__device=check.device, submission=None, reason="not_found"
-    ).count()
+def not_tested(
+    act: ledger.Act, check: Check, reason: str, remark: str, by: Person, before: int | None = None
+) -> NotTested:
+    """The rows of an attempt that could not be made; "not found" twice opens a fault.
+
+    ``before`` counts earlier attempts that didn't find the device, where the caller knows.
+    """
+    if before is None:
+        attempts = NotTested.objects.filter(check_of__device=check.device, submission=None)
+        before = attempts.filter(reason="not_found").count()
     attempt = act.insert(NotTested(check_of=check, reason=reason, remark=remark, by=by, at=act.at))
     if reason == "not_found" and before == 1:
         faults.add_fault(act, check.device, grade="remedial", seen="Not found twice: is it lost?", by=by)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import hashlib
 import uuid
+from collections.abc import Sequence
 
 from qa_tracker.core.canonical import canonical
 from qa_tracker.core.errors import Conflict, Invalid
@@ -105,9 +106,17 @@ def restore(
 
 
 def restore_device(
-    act: ledger.Act, device: Device, person: Person, role: str, remark: str, proof: Check | None
+    act: ledger.Act,
+    device: Device,
+    person: Person,
+    role: str,
+    remark: str,
+    proof: Check | None,
+    open_faults: Sequence[Fault] | None = None,
 ) -> None:
-    """The rows of a restoration; for commands and for history."""
+    """The rows of a restoration; for commands, and for history, which knows the open faults."""
+    if open_faults is None:
+        open_faults = list(Fault.objects.filter(device=device).exclude(state="closed"))
     shown = {
         "device": str(device.uid),
         "state": device.state,
@@ -115,7 +124,7 @@ def restore_device(
         "proving_check": str(proof.uid) if proof else None,
     }
     sign(act, person=person, role=role, meaning="restored to use", subject=device, shown=shown, remark=remark)
-    for fault in Fault.objects.filter(device=device).exclude(state="closed"):
+    for fault in open_faults:
         faults.close_by_proof(act, fault, proof, remark)
     set_state(act, device, "restore", "")
 

@@ -1,0 +1,389 @@
+"""The bulk door: the past of devices, written through the same judging and the same rows as live commands.
+
+One transaction holds many commands; their leaves are appended together, marked ``demo`` or ``imported``. What
+live commands read from the database (baselines in force, earlier attempts, open faults) is kept in memory here,
+since rows are written only when the transaction ends. Nobody is asked again about a value that looks odd.
+"""
+
+from __future__ import annotations
+
+import datetime as dt
+import itertools
+from collections.abc import Callable, Iterator, Sequence
+from contextlib import contextmanager
+from dataclasses import dataclass, field
+from typing import TypeVar
+
+from django.db import models
+
+from qa_tracker.core.decimals import from_scaled
+from qa_tracker.core.schedule import SiteDays, local_day
+from qa_tracker.core.workflow import CHECK, target
+from qa_tracker.records import ledger
+from qa_tracker.records.ids import uuid7
+from qa_tracker.records.models import (
+    Aperture,
+    Baseline,
+    Check,
+    CheckPlan,
+    Condition,
+    Device,
+    Fault,
+    Measurand,
+    Person,
+    Placement,
+    Procedure,
+    ScannerFacts,
+    Site,
+    Submission,
+    TestObject,
+)
+from qa_tracker.records.models.base import Audited
+from qa_tracker.records.queries import library
+from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey
+from qa_tracker.records.queries.devices import ApertureRow, ConditionRow, DeviceRow
+from qa_tracker.records.queries.library import CriterionRow, EditionRow
+from qa_tracker.services import baselines, checks, faults, judging, plans, recording, states
+from qa_tracker.services.items import Item, Surroundings, items_of
+from qa_tracker.services.judging import Entry, Instructions, Judged, MeasuredWith
+from qa_tracker.services.recording import Facts
+
+M = TypeVar("M", bound=models.Model)
+A = TypeVar("A", bound=Audited)
+Answer = Callable[[Item], Entry]
+
+
+@dataclass
+class Kept:
+    """One device and what is known of it while its past is written."""
+
+    device: Device
+    placement: Placement
+    scanner_facts: ScannerFacts | None = None
+    apertures: dict[int, Aperture] = field(default_factory=dict)
+    conditions: dict[int, Condition] = field(default_factory=dict)
+    array_kind: str = ""
+    baselines: dict[SeriesKey, Baseline] = field(default_factory=dict)
+    attempts: int = 0
+    items: dict[tuple[int, int], tuple[Item, ...]] = field(default_factory=dict)
+
+
+@dataclass(frozen=True)
+class Done:
+    """A check that was done: what was written, and the occurrence it opened."""
+
+    check: Check
+    submission: Submission
+    judged: Judged
+    following: Check | None
+
+
+@dataclass
+class Past:
+    """A stretch of the past being written, with the library it is judged by."""
+
+    batch: ledger.History
+    editions: dict[str, EditionRow]
+    procedures: dict[str, Procedure]
+    measurands: dict[str, Measurand]
+    criteria: dict[str, CriterionRow]
+    days: dict[int | None, SiteDays] = field(default_factory=dict)
+    nominals: dict[int, dict[str, str]] = field(default_factory=dict)
+
+    def act(
+        self,
+        kind: str,
+        actor: Person | None,
+        at: dt.datetime,
+        reason: str = "",
+        measured_at: dt.datetime | None = None,
+    ) -> ledger.Act:
+        """Begin the next command of the past."""
+        return self.batch.act(kind, actor=actor, at=at, reason=reason, measured_at=measured_at)
+
+    def newest(self, model: type[M]) -> M:
+        """The row of a table written last."""
+        return next(reversed(self._rows(model)))
+
+    def rows_of(self, model: type[A], act: ledger.Act) -> list[A]:
+        """Rows of a table written by a command just before."""
+        return list(itertools.takewhile(lambda row: row.leaf_id == act.uid, reversed(self._rows(model))))[
+            ::-1
+        ]
+
+    def open_faults(self, device: Device) -> list[Fault]:
+        """Faults of a device that are not closed."""
+        found = self._rows(Fault)
+        return [each for each in found if each.device_id == device.pk and each.state != "closed"]
+
+    def _rows(self, model: type[M]) -> list[M]:
+        rows: dict[int, M] = self.batch.writer.new.get(model, {})  # type: ignore[assignment]
+        return list(rows.values())
+
+    def days_of(self, site: Site | None) -> SiteDays:
+        """When a site works; read once."""
+        key = site.id if site else None
+        if key not in self.days:
+            self.days[key] = plans.site_days(site)
+        return self.days[key]
+
+
+@contextmanager
+def past(origin: str) -> Iterator[Past]:
+    """Open the bulk door: one transaction, its leaves marked with the origin.
+
+    The library and the adoptions have to be there, adopted by the group; a site's own adoptions are not asked.
+    """
+    with ledger.history(origin) as batch:
+        yield Past(
+            batch,
+            {row.code: row for row in library.adopted_procedures(None)},
+            {row.code: row for row in Procedure.objects.all()},
+            {row.code: row for row in Measurand.objects.all()},
+            library.adopted_criteria(None),
+        )
+
+
+def plan(
+    past: Past,
+    kept: Kept,
+    procedure: str,
+    recurrence: plans.Recurrence,
+    responsible: Person,
+    *,
+    actor: Person,
+    at: dt.datetime,
+) -> tuple[CheckPlan, Check]:
+    """Plan a procedure for a device; the first occurrence is opened."""
+    act = past.act("plan.made", actor, at)
+    days = past.days_of(kept.device.site)
+    return plans.add_plan(act, kept.device, past.procedures[procedure], recurrence, responsible, days)
+
+
+def open_unplanned(past: Past, kept: Kept, procedure: str, *, actor: Person, at: dt.datetime) -> Check:
+    """Begin a check that no plan asked for."""
+    act = past.act("check.opened", actor, at)
+    device = kept.device
+    row = Check(device=device, procedure=past.procedures[procedure], site=device.site, state="started")
+    check = act.insert(row)
+    act.about(check, device=device, site=device.site)
+    act.tell({"procedure": procedure})
+    return check
+
+
+def perform(
+    past: Past,
+    kept: Kept,
+    check: Check,
+    answer: Answer,
+    *,
+    by: Person,
+    role: str,
+    at: dt.datetime,
+    facts: Facts | None = None,
+    quarantine: bool = False,
+) -> Done:
+    """Do a check: ask for an entry for each item, judge, record and sign; the plan's next occurrence is opened.
+
+    Refused as :func:`qa_tracker.services.judging.judge_all` refuses.
+    """
+    facts = facts or Facts()
+    edition = past.editions[check.procedure.code]
+    items = items_for(past, kept, edition, facts.test_object)
+    entries = {item.key: answer(item) for item in items}
+    judged = judging.judge_all(items, entries, _instructions(check.site), _measured_with(facts), whole=True)
+    shown = judging.shown_sha256(str(check.uid), edition.content_sha256, facts.as_text(at), judged)
+    act = past.act("check.submitted", by, at, measured_at=facts.measured_at or at)
+    submission = recording.record(
+        act,
+        check,
+        edition,
+        judged,
+        facts,
+        form_uid=uuid7(),
+        performed_by=by,
+        role=role,
+        shown_sha256=shown,
+        number=1,
+        codes={code: row.id for code, row in past.measurands.items()},
+    )
+    following = _open_following(past, act, check, at)
+    recording.open_faults(act, check, submission, judged, by, quarantine=quarantine)
+    return Done(check, submission, judged, following)
+
+
+def items_for(
+    past: Past, kept: Kept, edition: EditionRow, test_object: TestObject | None
+) -> tuple[Item, ...]:
+    """What an edition asks of a device; built once and again after a baseline changes."""
+    key = (edition.id, test_object.id if test_object else 0)
+    if key not in kept.items:
+        around = Surroundings(
+            _device_row(kept),
+            edition,
+            [ApertureRow(a.id, a.uid, a.name, a.elements, a.pitch_um) for a in kept.apertures.values()],
+            [
+                ConditionRow(c.id, c.uid, c.name, c.test_frequency_mhz, c.sound_speed_m_s, c.settings)
+                for c in kept.conditions.values()
+            ],
+            past.criteria,
+            {key: _baseline_row(key, baseline) for key, baseline in kept.baselines.items()},
+            {},
+            checks.nominals_of(test_object),
+        )
+        kept.items[key] = items_of(around)
+    return kept.items[key]
+
+
+def _open_following(past: Past, act: ledger.Act, check: Check, at: dt.datetime) -> Check | None:
+    if check.plan is None or check.plan.ended_at is not None:
+        return None
+    days = past.days_of(check.plan.device.site)
+    done_on = local_day(at, days.zone)
+    return plans.open_next(act, check.plan, after_on=check.due_on, done_on=done_on, days=days)
+
+
+def give_up(past: Past, check: Check, verb: str, reason: str, at: dt.datetime) -> Check | None:
+    """Miss or excuse an occurrence when the next one opens, as the sweep does."""
+    act = past.act("notices.owed", None, at)
+    columns: dict[str, object] = {"excuse": reason} if verb == "excuse" else {}
+    act.change(check, state=target(CHECK, check.state, verb), next_notice_at=None, next_level="", **columns)
+    following = _open_following(past, act, check, at)
+    act.about(check.site, site=check.site)
+    done = "missed" if verb == "miss" else "excused"
+    told: dict[str, object] = {"notices": [], "missed": [], "excused": []}
+    opened = [str(following.uid)] if following else []
+    act.tell({**told, done: [str(check.uid)], "opened": opened})
+    return following
+
+
+def countersign(past: Past, done: Done, *, by: Person, at: dt.datetime, remark: str = "") -> None:
+    """Countersign a submission."""
+    act = past.act("check.countersigned", by, at, remark)
+    state = target(CHECK, done.check.state, "countersign")
+    recording.second_signature(
+        act, done.check, done.submission, by, "physicist", "countersigned", remark, state
+    )
+
+
+def not_tested(past: Past, kept: Kept, check: Check, reason: str, *, by: Person, at: dt.datetime) -> None:
+    """Record an attempt that could not be made; the second "not found" opens a fault."""
+    act = past.act("check.not_tested", by, at, reason)
+    recording.not_tested(act, check, reason, "", by, kept.attempts)
+    kept.attempts += reason == "not_found"
+
+
+def set_baselines(
+    past: Past,
+    kept: Kept,
+    done: Done,
+    codes: Sequence[str],
+    *,
+    by: Person,
+    reason: str,
+    at: dt.datetime,
+    texts: dict[str, str] | None = None,
+) -> list[Baseline]:
+    """Make readings of a submission the baselines of their series, signed; ``texts`` puts a mean in their place."""
+    act = past.act("baseline.set", by, at, reason)
+    facts = done.submission
+    source = baselines.Source(
+        facts.console.model if facts.console else "",
+        facts.console_software,
+        facts.test_object,
+        "eye",
+        str(facts.uid),
+    )
+    found = []
+    for one in done.judged.items:
+        if one.item.spec.code not in codes or one.exact is None:
+            continue
+        text = (texts or {}).get(one.item.spec.code)
+        exact = judging.read_entry(one.item, Entry(text)) if text else one.exact
+        part = (
+            kept.apertures.get(one.item.aperture.id) if one.item.aperture else None,
+            kept.conditions.get(one.item.condition.id) if one.item.condition else None,
+        )
+        baseline = baselines.put_epoch(
+            act,
+            kept.device,
+            past.measurands[one.item.spec.code],
+            part,
+            exact or one.exact,
+            one.entry.qualifier,
+            source,
+            reason,
+            by,
+            kept.baselines.get(one.item.series),
+        )
+        kept.baselines[one.item.series] = baseline
+        found.append(baseline)
+    kept.items.clear()
+    baselines.sign(act, kept.device, found, by, "physicist", reason)
+    return found
+
+
+def move_state(
+    past: Past,
+    kept: Kept,
+    verb: str,
+    note: str,
+    *,
+    by: Person,
+    at: dt.datetime,
+    kind: str = "device.moved_on",
+) -> None:
+    """Move a device by a verb of its table."""
+    states.set_state(past.act(kind, by, at, note), kept.device, verb, note)
+
+
+def restore(
+    past: Past, kept: Kept, *, proof: Check | None, remark: str, by: Person, role: str, at: dt.datetime
+) -> None:
+    """Restore a device to use, signed; its open faults are closed by the proof."""
+    act = past.act("device.restored", by, at, remark)
+    states.restore_device(act, kept.device, by, role, remark, proof, past.open_faults(kept.device))
+
+
+def act_on_fault(
+    past: Past, fault: Fault, kind: str, text: str, *, by: Person, at: dt.datetime, job_number: str = ""
+) -> None:
+    """Record something done about a fault."""
+    faults.add_action(past.act("fault.acted_on", by, at), fault, kind, text, job_number, by)
+
+
+def _instructions(site: Site | None) -> Instructions:
+    return Instructions(site.remedial_instruction, site.suspension_instruction) if site else Instructions()
+
+
+def _measured_with(facts: Facts) -> MeasuredWith:
+    return MeasuredWith(
+        facts.console.model if facts.console else "",
+        facts.console_software,
+        facts.test_object.id if facts.test_object else None,
+    )
+
+
+def _device_row(kept: Kept) -> DeviceRow:
+    """What the items of a check need to know of a device."""
+    d = kept.device
+    return DeviceRow(
+        id=d.id, uid=d.uid, version=d.version, kind=d.kind, maker=d.maker, model=d.model, serial=d.serial,
+        inventory_number=d.inventory_number, handheld=d.handheld, state=d.state, state_note=d.state_note,
+        state_since=d.state_since, site_id=d.site_id, site_code="", site_name="", pool_id=d.pool_id,
+        pool_name="", scanner_id=d.scanner_id, scanner_uid=None, scanner_label="", location_id=d.location_id,
+        location="", location_position=0, array_kind=kept.array_kind, contact_class="", applied_part="",
+        protection_class="", software_version="", register={},
+    )  # fmt: skip
+
+
+def _baseline_row(key: SeriesKey, row: Baseline) -> BaselineRow:
+    return BaselineRow(
+        id=row.id, uid=row.uid, device_id=row.device_id, measurand=key[0], aperture_id=key[1], aperture="",
+        condition_id=key[2], condition="", epoch=row.epoch, qualifier=row.qualifier, entered=row.entered,
+        value=from_scaled(row.scaled, row.places), unit=row.unit, console_model=row.console_model,
+        console_software=row.console_software, test_object_id=row.test_object_id,
+        test_object=f"{row.test_object.name} {row.test_object.serial}" if row.test_object else "",
+        method=row.method, reason=row.reason, set_by="", valid_from=row.valid_from, ended_at=row.ended_at,
+        under_review=row.under_review,
+    )  # fmt: skip
