@@ -41,7 +41,7 @@ class FromSubmissionIn(Given):
     password: Secret
 
 
-@router.makes("/devices/{uid}/baselines", list[BaselineOut], "setBaselines")
+@router.makes("/devices/{uuid:uid}/baselines", list[BaselineOut], "setBaselines")
 def set_baselines(request: ApiRequest, uid: uuid.UUID, body: BaselinesIn) -> list[object]:
     """Set baselines by value; each begins a new epoch of its series."""
     caller = request.auth
@@ -57,7 +57,7 @@ def set_baselines(request: ApiRequest, uid: uuid.UUID, body: BaselinesIn) -> lis
     return _rows(made)
 
 
-@router.makes("/submissions/{uid}/baselines", list[BaselineOut], "takeBaselines")
+@router.makes("/submissions/{uuid:uid}/baselines", list[BaselineOut], "takeBaselines")
 def take_baselines(request: ApiRequest, uid: uuid.UUID, body: FromSubmissionIn) -> list[object]:
     """Make the numbers of a submission the baselines of their series, as at acceptance."""
     caller = request.auth

@@ -3,9 +3,7 @@
 from __future__ import annotations
 
 import uuid
-from typing import Annotated, Any
-
-from ninja import Query
+from typing import Any
 
 from qa_tracker.api.authentication import ApiRequest, Caller
 from qa_tracker.api.check_shapes import AskedOut, CheckPage, DueOut, WholeCheckOut
@@ -37,13 +35,13 @@ def list_due(request: ApiRequest) -> list[object]:
 @router.reads("/checks", CheckPage, "listChecks")
 def list_checks(
     request: ApiRequest,
-    state: Annotated[Mark | None, Query()] = None,
-    verdict: Annotated[Mark | None, Query()] = None,
-    procedure: Annotated[Mark | None, Query()] = None,
-    site: Annotated[uuid.UUID | None, Query()] = None,
-    device: Annotated[uuid.UUID | None, Query()] = None,
-    before: Annotated[Cursor, Query()] = LARGEST_KEY,
-    limit: Annotated[Limit, Query()] = 50,
+    state: Mark | None = None,
+    verdict: Mark | None = None,
+    procedure: Mark | None = None,
+    site: uuid.UUID | None = None,
+    device: uuid.UUID | None = None,
+    before: Cursor = LARGEST_KEY,
+    limit: Limit = 50,
 ) -> dict[str, Any]:
     """Checks in sight, newest first."""
     wanted = {
@@ -57,7 +55,7 @@ def list_checks(
     return page(rows.list_checks(request.auth.scope(), before=before, most=limit + 1, **given), limit)
 
 
-@router.reads("/checks/{uid}", WholeCheckOut, "showCheck")
+@router.reads("/checks/{uuid:uid}", WholeCheckOut, "showCheck")
 def show_check(request: ApiRequest, uid: uuid.UUID) -> dict[str, Any]:
     """One check with its submissions, readings, verdicts and signatures."""
     return whole_check(request.auth, uid)
@@ -87,11 +85,11 @@ def submission_out(row: SubmissionRow) -> dict[str, Any]:
     return vars(row) | {"readings": readings}
 
 
-@router.reads("/checks/{uid}/items", AskedOut, "listItems", 409)
+@router.reads("/checks/{uuid:uid}/items", AskedOut, "listItems", 409)
 def list_items(
     request: ApiRequest,
     uid: uuid.UUID,
-    test_object: Annotated[uuid.UUID | None, Query()] = None,
+    test_object: uuid.UUID | None = None,
 ) -> dict[str, Any]:
     """What a check asks of whoever may enter it; nominals are those of the test object named."""
     caller = request.auth

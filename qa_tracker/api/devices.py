@@ -3,9 +3,7 @@
 from __future__ import annotations
 
 import uuid
-from typing import Annotated, Any
-
-from ninja import Query
+from typing import Any
 
 from qa_tracker.api.authentication import ApiRequest, Caller
 from qa_tracker.api.device_shapes import (
@@ -42,13 +40,13 @@ router = NounRouter(tags=["devices"])
 @router.reads("/devices", DevicePage, "listDevices")
 def list_devices(
     request: ApiRequest,
-    kind: Annotated[Mark | None, Query()] = None,
-    site: Annotated[uuid.UUID | None, Query()] = None,
-    state: Annotated[Mark | None, Query()] = None,
-    serial: Annotated[Name | None, Query()] = None,
-    text: Annotated[Name, Query()] = "",
-    after: Annotated[Cursor, Query()] = 0,
-    limit: Annotated[Limit, Query()] = 50,
+    kind: Mark | None = None,
+    site: uuid.UUID | None = None,
+    state: Mark | None = None,
+    serial: Name | None = None,
+    text: Name = "",
+    after: Cursor = 0,
+    limit: Limit = 50,
 ) -> dict[str, Any]:
     """Devices in sight, oldest first; `text` looks in maker, model, serial and inventory number."""
     wanted = {"kind": kind, "site__uid": site, "state": state, "serial": serial}
@@ -57,7 +55,7 @@ def list_devices(
     return page(found, limit)
 
 
-@router.reads("/devices/{uid}", WholeDeviceOut, "showDevice")
+@router.reads("/devices/{uuid:uid}", WholeDeviceOut, "showDevice")
 def show_device(request: ApiRequest, uid: uuid.UUID) -> dict[str, Any]:
     """One device with placements, apertures, conditions, plans and baselines."""
     device = device_row(request.auth, uid)
@@ -128,7 +126,7 @@ def _place(caller: Caller, given: PlaceIn) -> Place:
     )
 
 
-@router.makes("/devices/{uid}/quarantine", FaultOut, "quarantineDevice")
+@router.makes("/devices/{uuid:uid}/quarantine", FaultOut, "quarantineDevice")
 def quarantine(request: ApiRequest, uid: uuid.UUID, body: QuarantineIn) -> object:
     """Take a device out of use at once; answers the fault this opens."""
     caller = request.auth
@@ -136,7 +134,7 @@ def quarantine(request: ApiRequest, uid: uuid.UUID, body: QuarantineIn) -> objec
     return vars(faults.find_fault(caller.scope(), fault.uid)) | {"actions": []}
 
 
-@router.does("/devices/{uid}/accept", DeviceOut, "acceptDevice")
+@router.does("/devices/{uuid:uid}/accept", DeviceOut, "acceptDevice")
 def accept(request: ApiRequest, uid: uuid.UUID, body: AcceptIn) -> DeviceRow:
     """Sign a device's acceptance into use."""
     caller = request.auth
@@ -144,7 +142,7 @@ def accept(request: ApiRequest, uid: uuid.UUID, body: AcceptIn) -> DeviceRow:
     return device_row(caller, uid)
 
 
-@router.does("/devices/{uid}/restore", DeviceOut, "restoreDevice")
+@router.does("/devices/{uuid:uid}/restore", DeviceOut, "restoreDevice")
 def restore(request: ApiRequest, uid: uuid.UUID, body: RestoreIn) -> DeviceRow:
     """Sign a device's restoration to use."""
     caller = request.auth
@@ -159,7 +157,7 @@ def restore(request: ApiRequest, uid: uuid.UUID, body: RestoreIn) -> DeviceRow:
     return device_row(caller, uid)
 
 
-@router.does("/devices/{uid}/move", DeviceOut, "moveDevice")
+@router.does("/devices/{uuid:uid}/move", DeviceOut, "moveDevice")
 def move(request: ApiRequest, uid: uuid.UUID, body: MoveIn) -> DeviceRow:
     """End the device's placement and begin the next."""
     caller = request.auth
@@ -168,7 +166,7 @@ def move(request: ApiRequest, uid: uuid.UUID, body: MoveIn) -> DeviceRow:
     return device_row(caller, uid)
 
 
-@router.makes("/devices/{uid}/conditions", ConditionOut, "setCondition")
+@router.makes("/devices/{uuid:uid}/conditions", ConditionOut, "setCondition")
 def set_condition(request: ApiRequest, uid: uuid.UUID, body: ConditionIn) -> object:
     """Set a named preset, new or changed."""
     caller = request.auth
@@ -177,7 +175,7 @@ def set_condition(request: ApiRequest, uid: uuid.UUID, body: ConditionIn) -> obj
     return next(each for each in known if each.uid == made.uid)
 
 
-@router.makes("/devices/{uid}/plans", PlanOut, "makePlan")
+@router.makes("/devices/{uuid:uid}/plans", PlanOut, "makePlan")
 def make_plan(request: ApiRequest, uid: uuid.UUID, body: PlanIn) -> object:
     """Plan a procedure for a device; its first occurrence opens at once."""
     caller = request.auth

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import datetime as dt
 import uuid
-from typing import Annotated, Any
+from typing import Any
 
 from django.http import HttpResponse
-from ninja import Query, Schema
+from ninja import Schema
 
 from qa_tracker.api.authentication import ApiRequest, Caller
 from qa_tracker.api.errors import refusals
@@ -86,7 +86,7 @@ class NoticeOut(Schema):
     skipped: str
 
 
-@router.makes("/devices/{uid}/dossiers", DossierOut, "requestDossier")
+@router.makes("/devices/{uuid:uid}/dossiers", DossierOut, "requestDossier")
 def request_dossier(request: ApiRequest, uid: uuid.UUID) -> rows.DossierRow:
     """Freeze what is known of a device now; the file is drawn and sealed soon after."""
     caller = request.auth
@@ -102,7 +102,7 @@ def list_dossiers(request: ApiRequest) -> list[rows.DossierRow]:
     return rows.list_dossiers(request.auth.scope("dossier.read"))
 
 
-@router.reads("/dossiers/{uid}", DossierOut, "showDossier")
+@router.reads("/dossiers/{uuid:uid}", DossierOut, "showDossier")
 def show_dossier(request: ApiRequest, uid: uuid.UUID) -> rows.DossierRow:
     """One dossier and its state."""
     request.auth.check_may_somewhere("dossier.read")
@@ -117,7 +117,7 @@ def _dossier(caller: Caller, uid: uuid.UUID) -> rows.DossierRow:
 
 
 @router.get(
-    "/dossiers/{uid}/file",
+    "/dossiers/{uuid:uid}/file",
     operation_id="downloadDossier",
     openapi_extra={
         "responses": {
@@ -141,9 +141,9 @@ def download_dossier(request: ApiRequest, uid: uuid.UUID) -> HttpResponse:
 @router.reads("/ledger/leaves", LeafPage, "listLeaves")
 def list_leaves(
     request: ApiRequest,
-    device: Annotated[uuid.UUID | None, Query()] = None,
-    before: Annotated[Cursor, Query()] = LARGEST_KEY,
-    limit: Annotated[Limit, Query()] = 50,
+    device: uuid.UUID | None = None,
+    before: Cursor = LARGEST_KEY,
+    limit: Limit = 50,
 ) -> dict[str, Any]:
     """Leaves in sight, newest first."""
     request.auth.check_may_somewhere("ledger.read")
@@ -158,7 +158,7 @@ def _leaf_out(leaf: ledger.LeafRow) -> dict[str, Any]:
 
 
 @router.reads("/ledger/checkpoints", list[CheckpointOut], "listCheckpoints")
-def list_checkpoints(request: ApiRequest, limit: Annotated[Limit, Query()] = 50) -> list[dict[str, Any]]:
+def list_checkpoints(request: ApiRequest, limit: Limit = 50) -> list[dict[str, Any]]:
     """Checkpoints, newest first."""
     request.auth.check_may_somewhere("ledger.read")
     return [vars(each) | {"root": each.root.hex()} for each in ledger.list_checkpoints(limit)]

@@ -3,9 +3,7 @@
 from __future__ import annotations
 
 import uuid
-from typing import Annotated, Any
-
-from ninja import Query
+from typing import Any
 
 from qa_tracker.api.authentication import ApiRequest, Caller
 from qa_tracker.api.fault_shapes import ActionIn, FaultBriefOut, FaultIn, FaultOut
@@ -21,9 +19,9 @@ router = NounRouter(tags=["faults"])
 @router.reads("/faults", list[FaultBriefOut], "listFaults")
 def list_faults(
     request: ApiRequest,
-    state: Annotated[Mark | None, Query()] = None,
-    grade: Annotated[Mark | None, Query()] = None,
-    device: Annotated[uuid.UUID | None, Query()] = None,
+    state: Mark | None = None,
+    grade: Mark | None = None,
+    device: uuid.UUID | None = None,
 ) -> list[rows.FaultRow]:
     """Faults in sight, suspension first and the oldest first; without `state` those not closed."""
     wanted: dict[str, object] = {"state": state} if state is not None else {"closed_at": None}
@@ -42,13 +40,13 @@ def open_fault(request: ApiRequest, body: FaultIn) -> dict[str, Any]:
     return _whole(caller, made.uid)
 
 
-@router.reads("/faults/{uid}", FaultOut, "showFault")
+@router.reads("/faults/{uuid:uid}", FaultOut, "showFault")
 def show_fault(request: ApiRequest, uid: uuid.UUID) -> dict[str, Any]:
     """One fault with its actions."""
     return _whole(request.auth, uid)
 
 
-@router.makes("/faults/{uid}/actions", FaultOut, "actOnFault")
+@router.makes("/faults/{uuid:uid}/actions", FaultOut, "actOnFault")
 def act_on(request: ApiRequest, uid: uuid.UUID, body: ActionIn) -> dict[str, Any]:
     """Record something done about a fault; answers the fault with all its actions."""
     caller = request.auth

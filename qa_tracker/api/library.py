@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 import uuid
-from typing import Annotated, Any
+from typing import Any
 
-from ninja import Query, Schema
+from ninja import Schema
 
 from qa_tracker.api.authentication import ApiRequest, Caller
 from qa_tracker.api.judged_shapes import CriterionOut, criterion_out
@@ -83,9 +83,7 @@ class AdoptCriteriaIn(Given):
 
 
 @router.reads("/procedures", list[EditionOut], "listProcedures", 404)
-def list_procedures(
-    request: ApiRequest, site: Annotated[uuid.UUID | None, Query()] = None
-) -> list[dict[str, Any]]:
+def list_procedures(request: ApiRequest, site: uuid.UUID | None = None) -> list[dict[str, Any]]:
     """Every published edition; with `site` the editions that site works by."""
     caller = request.auth
     if site is None:

@@ -29,7 +29,7 @@ from qa_tracker.services.judging import Entry
 router = NounRouter(tags=["checks"])
 
 
-@router.does("/checks/{uid}/judge", JudgedOut, "judgeCheck")
+@router.does("/checks/{uuid:uid}/judge", JudgedOut, "judgeCheck")
 def judge(request: ApiRequest, uid: uuid.UUID, body: JudgeIn) -> dict[str, Any]:
     """Judge what is given, and write nothing."""
     caller = request.auth
@@ -44,7 +44,7 @@ def judge(request: ApiRequest, uid: uuid.UUID, body: JudgeIn) -> dict[str, Any]:
     }
 
 
-@router.makes("/checks/{uid}/submissions", SubmissionOut, "submitCheck")
+@router.makes("/checks/{uuid:uid}/submissions", SubmissionOut, "submitCheck")
 def submit(request: ApiRequest, uid: uuid.UUID, body: SubmitIn) -> dict[str, Any]:
     """Sign what was done; the same form again answers the submission it made."""
     caller = request.auth
@@ -80,7 +80,7 @@ def _entry(given: EntryIn) -> Entry:
     return Entry(**vars(given), origin="api")
 
 
-@router.makes("/checks/{uid}/countersignatures", WholeCheckOut, "countersignCheck")
+@router.makes("/checks/{uuid:uid}/countersignatures", WholeCheckOut, "countersignCheck")
 def countersign(request: ApiRequest, uid: uuid.UUID, body: SecondSignatureIn) -> dict[str, Any]:
     """Countersign the latest submission; nobody countersigns their own work."""
     caller = request.auth
@@ -88,7 +88,7 @@ def countersign(request: ApiRequest, uid: uuid.UUID, body: SecondSignatureIn) ->
     return whole_check(caller, uid)
 
 
-@router.makes("/checks/{uid}/send-backs", WholeCheckOut, "sendCheckBack")
+@router.makes("/checks/{uuid:uid}/send-backs", WholeCheckOut, "sendCheckBack")
 def send_back(request: ApiRequest, uid: uuid.UUID, body: SecondSignatureIn) -> dict[str, Any]:
     """Send the latest submission back, with what is to be done."""
     caller = request.auth
@@ -96,7 +96,7 @@ def send_back(request: ApiRequest, uid: uuid.UUID, body: SecondSignatureIn) -> d
     return whole_check(caller, uid)
 
 
-@router.makes("/checks/{uid}/not-tested", WholeCheckOut, "recordNotTested")
+@router.makes("/checks/{uuid:uid}/not-tested", WholeCheckOut, "recordNotTested")
 def not_tested(request: ApiRequest, uid: uuid.UUID, body: NotTestedIn) -> dict[str, Any]:
     """Record an attempt that could not be made."""
     caller = request.auth
@@ -104,7 +104,7 @@ def not_tested(request: ApiRequest, uid: uuid.UUID, body: NotTestedIn) -> dict[s
     return whole_check(caller, uid)
 
 
-@router.makes("/devices/{uid}/checks", CheckOut, "openCheck")
+@router.makes("/devices/{uuid:uid}/checks", CheckOut, "openCheck")
 def open_check(request: ApiRequest, uid: uuid.UUID, body: UnplannedIn) -> object:
     """Begin a check that no plan asked for."""
     caller = request.auth

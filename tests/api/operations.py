@@ -1,0 +1,149 @@
+"""Every operation once: how it is called, and which roles of the first hospital may do it."""
+
+from __future__ import annotations
+
+import uuid
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from qa_tracker.records.models import CriteriaSet, Edition
+from tests import builders
+from tests.api.world import ROLES, World
+
+PASSWORD = builders.PASSWORD
+ALL = frozenset(ROLES)
+WARD = frozenset({"technician", "lead", "engineer", "physicist"})
+LEADING = frozenset({"lead", "engineer", "physicist"})
+ANSWERING = frozenset({"engineer", "physicist"})
+PLANNING = frozenset({"lead", "physicist"})
+PHYSICIST = frozenset({"physicist"})
+RANDOM = uuid.UUID("018f0000-0000-7000-8000-000000000007")
+
+
+@dataclass(frozen=True)
+class Call:
+    """``of`` gives the thing in the address, ``body`` what is sent; ``done`` is the status of success."""
+
+    roles: frozenset[str]
+    of: Callable[[World], uuid.UUID] | None = None
+    body: Callable[[World], dict] | None = None
+    done: int = 201
+
+
+def probe(world: World) -> uuid.UUID:
+    return world.ward.probe.uid
+
+
+def spare(world: World) -> uuid.UUID:
+    return world.spare.uid
+
+
+def check(world: World) -> uuid.UUID:
+    return world.ward.check.uid
+
+
+def waiting(world: World) -> uuid.UUID:
+    return world.waiting.uid
+
+
+def entries(world: World) -> dict:
+    typed = builders.answers(world.waiting, world.ward.technician)
+    given = {key: {"text": entry.text, "unit": "1", "confirmed": True} for key, entry in typed.items()}
+    return {"entries": given, "cleaned_before": "Wipe, Ifeoma, 12:10"}
+
+
+def signed(world: World) -> dict:
+    shown = world.near["technician"].post(f"/checks/{world.waiting.uid}/judge", entries(world), 200)
+    told = {"shown_sha256": shown["shown_sha256"], "password": PASSWORD, "form_uid": uuid.uuid4()}
+    return entries(world) | told
+
+
+def second(world: World) -> dict:
+    shown = world.submission.shown_sha256
+    return {"shown_sha256": shown, "remark": "Zone 3 is missing", "password": PASSWORD}
+
+
+def device(world: World) -> dict:
+    named = {"maker": "Ostrigard", "model": "OG-45", "serial": "45-77"}
+    return named | {"place": {"site": world.ward.site.uid, "location": world.ward.room.uid}}
+
+
+def probe_facts(world: World) -> dict:
+    facts = {"array_kind": "linear", "contact_class": "skin", "applied_part": "BF"}
+    return device(world) | facts | {"apertures": [{"name": "main", "elements": 192}]}
+
+
+def plan(world: World) -> dict:
+    when = {"rule": "FREQ=MONTHLY", "anchor_on": "2026-01-31", "before_days": 7, "grace_days": 7}
+    return when | {"procedure": "monthly-in-air", "responsible": world.ward.technician.uid}
+
+
+def baseline(world: World) -> dict:
+    value = {"measurand": "reverberation_depth", "text": "12.5"}
+    value["aperture"] = world.spare.apertures.get().uid
+    return {"values": [value], "reason": "Acceptance", "password": PASSWORD}
+
+
+def edition(world: World) -> dict:
+    return {"edition": Edition.objects.first().uid, "site": world.ward.site.uid}
+
+
+def criteria(world: World) -> dict:
+    return {"criteria_set": CriteriaSet.objects.first().uid, "site": world.ward.site.uid}
+
+
+def fault(world: World) -> dict:
+    return {"device": world.ward.probe.uid, "grade": "remedial", "seen": "Scuffed"}
+
+
+CALLS = {
+    "listSites": Call(ALL, done=200),
+    "listPools": Call(ALL, done=200),
+    "listPeople": Call(frozenset({"administrator"}), done=200),
+    "showMe": Call(ALL, done=200),
+    "listTestObjects": Call(ALL, done=200),
+    "listInstruments": Call(ALL, done=200),
+    "listDevices": Call(ALL, done=200),
+    "showDevice": Call(ALL, probe, done=200),
+    "registerScanner": Call(LEADING, body=device),
+    "registerProbe": Call(LEADING, body=probe_facts),
+    "quarantineDevice": Call(WARD, probe, lambda world: {"seen": "Lens cracked"}),
+    "acceptDevice": Call(
+        ANSWERING, lambda world: world.awaiting.uid, lambda world: {"password": PASSWORD}, 200
+    ),
+    "restoreDevice": Call(ANSWERING, spare, lambda world: {"remark": "Mended", "password": PASSWORD}, 200),
+    "moveDevice": Call(WARD, probe, lambda world: {"place": {"site": world.ward.site.uid}}, 200),
+    "setCondition": Call(PLANNING, probe, lambda world: {"name": "Abdomen", "test_frequency_mhz": "3.5"}),
+    "makePlan": Call(PLANNING, spare, plan),
+    "listProcedures": Call(ALL, done=200),
+    "listCriteriaSets": Call(ALL, done=200),
+    "adoptProcedure": Call(PHYSICIST, body=edition),
+    "adoptCriteria": Call(PHYSICIST, body=criteria),
+    "setBaselines": Call(PHYSICIST, spare, baseline),
+    "takeBaselines": Call(
+        PHYSICIST, lambda world: world.submission.uid, lambda world: {"reason": "New", "password": PASSWORD}
+    ),
+    "listDue": Call(ALL, done=200),
+    "listChecks": Call(ALL, done=200),
+    "showCheck": Call(ALL, check, done=200),
+    "listItems": Call(WARD, waiting, done=200),
+    "judgeCheck": Call(WARD, waiting, entries, 200),
+    "submitCheck": Call(WARD, waiting, signed),
+    "countersignCheck": Call(PHYSICIST, check, second),
+    "sendCheckBack": Call(PHYSICIST, check, second),
+    "recordNotTested": Call(WARD, waiting, lambda world: {"reason": "in_theatre"}),
+    "openCheck": Call(WARD, probe, lambda world: {"procedure": "monthly-in-air"}),
+    "listFaults": Call(ALL, done=200),
+    "openFault": Call(WARD, body=fault),
+    "showFault": Call(ALL, lambda world: world.fault.uid, done=200),
+    "actOnFault": Call(
+        WARD, lambda world: world.fault.uid, lambda world: {"kind": "note", "text": "Cleaned"}
+    ),
+    "requestDossier": Call(LEADING | {"auditor"}, probe, lambda world: {}),
+    "listDossiers": Call(ALL, done=200),
+    "showDossier": Call(ALL, lambda world: world.dossier.uid, done=200),
+    "downloadDossier": Call(ALL, lambda world: world.dossier.uid, done=409),
+    "listLeaves": Call(ALL, done=200),
+    "listCheckpoints": Call(ALL, done=200),
+    "listNotices": Call(ALL, done=200),
+}
