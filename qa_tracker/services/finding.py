@@ -16,6 +16,7 @@ from qa_tracker.records.models import (
     Instrument,
     Location,
     Person,
+    Pool,
     Site,
     TestObject,
 )
@@ -55,6 +56,15 @@ def location(site_row: Site, uid: uuid.UUID | None) -> Location | None:
     found = Location.objects.filter(uid=uid, site=site_row).first()
     if found is None:
         raise NotFound("location.unknown")
+    return found
+
+
+def pool(actor: Person, uid: uuid.UUID, at: dt.datetime) -> Pool:
+    """A pool with a member site in the actor's sight."""
+    found = Pool.objects.filter(uid=uid).first()
+    seen = scope(actor, at)
+    if found is None or not any(seen.holds(each.site_id) for each in found.members.all()):
+        raise NotFound("pool.unknown")
     return found
 
 

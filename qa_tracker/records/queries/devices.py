@@ -134,12 +134,12 @@ def list_devices(
     most: int | None = None,
     **wanted: object,
 ) -> list[DeviceRow]:
-    """Devices in sight. ``wanted`` names columns such as ``kind``, ``site_id``, ``state``, ``scanner_id``.
-
-    ``after`` and ``most`` page by key.
+    """Devices in sight. ``wanted`` names columns such as ``kind``, ``site_id``, ``state``, ``scanner_id``;
+    a list means any of its values. ``after`` and ``most`` page by key.
     """
     if as_of is None:
-        found = Device.objects.filter(devices_in(scope), id__gt=after, **wanted).distinct().order_by("id")
+        columns = {f"{name}__in" if isinstance(value, list) else name: value for name, value in wanted.items()}
+        found = Device.objects.filter(devices_in(scope), id__gt=after, **columns).distinct().order_by("id")
         for word in text.split():
             found = found.filter(
                 Q(maker__icontains=word)

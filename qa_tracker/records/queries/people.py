@@ -53,7 +53,7 @@ def _row(person: Person, grants: list[RoleGrant], codes: dict[int, str]) -> Pers
 
 
 def list_people(scope: Scope, as_of: dt.datetime | None = None) -> list[PersonRow]:
-    """People with a grant at a site in sight or in the whole group, by name."""
+    """People who work or hold a role at a site in sight, or in the whole group, by name."""
     codes = dict(Site.objects.values_list("id", "code"))
     grants: dict[int, list[RoleGrant]] = {}
     for grant in nouns(RoleGrant, as_of):
@@ -64,7 +64,7 @@ def list_people(scope: Scope, as_of: dt.datetime | None = None) -> list[PersonRo
 
 
 def _in_sight(row: PersonRow, scope: Scope) -> bool:
-    return scope.whole_group or any(
+    return scope.holds(row.duties_site_id) or any(
         grant.site_id is None or scope.holds(grant.site_id) for grant in row.grants
     )
 

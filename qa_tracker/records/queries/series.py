@@ -20,6 +20,7 @@ class PointRow:
     places: int | None
     unit: str
     verdict: str
+    reference: str = ""
 
 
 def last_readings(device_id: int, codes: list[str]) -> dict[SeriesKey, PointRow]:
@@ -47,9 +48,23 @@ def series_of(device_id: int, code: str, until: dt.datetime | None = None) -> di
     return rows
 
 
+def every_series(
+    device_id: int, since: dt.datetime, until: dt.datetime | None = None
+) -> dict[SeriesKey, list[PointRow]]:
+    """The readings of a device that are numbers, by series, oldest first, from a moment on."""
+    found = Reading.objects.filter(device_id=device_id, measured_at__gte=since).exclude(scaled=None)
+    if until is not None:
+        found = found.filter(submission__recorded_at__lte=until)
+    rows: dict[SeriesKey, list[PointRow]] = {}
+    for reading in found.select_related("verdict", "measurand").order_by("measured_at", "id"):
+        key = (reading.measurand.code, reading.aperture_id, reading.condition_id)
+        rows.setdefault(key, []).append(_point(reading))
+    return rows
+
+
 def _point(reading: Reading) -> PointRow:
     verdict = getattr(reading, "verdict", None)
     return PointRow(
         reading.measured_at, reading.qualifier, reading.entered, reading.scaled, reading.places,
-        reading.unit, verdict.verdict if verdict else "",
+        reading.unit, verdict.verdict if verdict else "", verdict.reference if verdict else "",
     )  # fmt: skip
