@@ -204,4 +204,18 @@ INNER: Final = {
         "Stop, and restore from a backup."
     ),
 }
-VALUES: Final = NUMBERS | READINGS | SCHEDULES | CRITERIA | DOCUMENTS | INNER
+FORMS: Final = {
+    "form.day_wrong": N_("“%(entered)s” is no day. Choose one in the calendar, or write it as 2025-03-05."),
+    "form.whole_wrong": N_("“%(entered)s” is no whole number from 0 to %(most)s. Use digits only."),
+    "form.choice_missing": N_("Nothing was chosen. Choose one of those offered."),
+    "form.line_wrong": N_(
+        "The line “%(line)s” can't be read. Write one on each line, a name, a colon and a value, each name once."
+    ),
+    "form.aperture_wrong": N_(
+        "The line “%(line)s” can't be read. Write each aperture's name, a comma and its number of elements."
+    ),
+    "form.too_long": N_("This is %(length)s signs long, and at most %(most)s can be kept. Shorten it."),
+    "form.passwords_differ": N_("The two passwords differ. Type the new one twice, the same."),
+    "form.file_missing": N_("There is no file. Choose the dossier's file on this computer."),
+}
+VALUES: Final = FORMS | NUMBERS | READINGS | SCHEDULES | CRITERIA | DOCUMENTS | INNER
