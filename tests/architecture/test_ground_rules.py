@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import ast
 
-import pytest
 from sources import functions_in, names_called, python_files, shown, tree
 
 TESTS = python_files("tests")
@@ -92,10 +91,10 @@ def test_no_real_part_is_replaced_by_a_mock():
     assert imported == []
 
 
-@pytest.mark.parametrize("path", TESTS, ids=shown)
-def test_names_of_tests_are_told_once(path):
-    names = [node.name for node in functions_in(path) if node.name.startswith("test_")]
-    assert len(names) == len(set(names))
+def test_no_test_hides_an_earlier_one_of_its_name():
+    for path in TESTS:
+        names = [node.name for node in functions_in(path) if node.name.startswith("test_")]
+        assert len(names) == len(set(names)), shown(path)
 
 
 def test_no_two_test_files_have_the_same_name():
