@@ -11,12 +11,15 @@ from qa_tracker.core.errors import Conflict
 from qa_tracker.core.schedule import add_months
 from qa_tracker.records.models import Check, Device, Person, Reading
 from qa_tracker.services import history, library
+from qa_tracker.services.demo_background import Background
 from qa_tracker.services.demo_devices import accept, enter_probe, enter_scanner
 from qa_tracker.services.demo_fleet import PROBES, SCANNERS, WIRELESS_SITE, Transducer
 from qa_tracker.services.demo_follow_up import follow_up_document
 from qa_tracker.services.demo_ground import lay_ground
 from qa_tracker.services.demo_people import CAST, people
 from qa_tracker.services.demo_routine import FOLLOW_UP_RHYTHM, PROBE_RHYTHMS, SCANNER_RHYTHMS, Routine
+from qa_tracker.services.demo_stories import Cable, SlowLoss
+from qa_tracker.services.demo_stories_wide import Bite, DryingObject, Software
 from qa_tracker.services.demo_timeline import Timeline
 from qa_tracker.services.demo_world import MONTHS, World
 from qa_tracker.services.devices import Place
@@ -91,6 +94,8 @@ def live_through(world: World) -> None:
         day = days.get(each.scanner, -12)
         for rhythm in PROBE_RHYTHMS + ((FOLLOW_UP_RHYTHM,) if each.follow_up else ()):
             routine.plan(kept, rhythm, day, world.begun_at + dt.timedelta(hours=7))
+    for story in (SlowLoss, Cable, DryingObject, Software, Bite, Background):
+        story(routine).tell()
     world.timeline.play()
 
 

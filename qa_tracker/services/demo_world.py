@@ -5,17 +5,24 @@ from __future__ import annotations
 import datetime as dt
 import random
 from dataclasses import dataclass, field
+from typing import Any
 
 from qa_tracker.core.schedule import add_months
 from qa_tracker.records.models import Instrument, Location, Person, Pool, Site, TestObject
-from qa_tracker.services.demo_fleet import CLASSES
+from qa_tracker.services.demo_fleet import CLASSES, ProbeClass
 from qa_tracker.services.demo_people import CAST
 from qa_tracker.services.demo_timeline import Timeline
 from qa_tracker.services.demo_values import Nature
 from qa_tracker.services.history import Kept, Past
+from qa_tracker.services.judging import Entry
 from qa_tracker.services.recording import Facts
 
 MONTHS = 24
+ACCEPTED_MM = {
+    "C-4101": 150, "C-4102": 152, "C-4103": 149, "C-4105": 151, "C-4106": 148, "C-4107": 151, "C-4109": 153,
+    "L-5205": 63, "L-5206": 61, "P-2505": 152, "V-6502": 88, "M-6002": 92,
+}  # fmt: skip
+"""Depth at acceptance of the probes the stories are about, by serial."""
 ROLES = {each.username: each.role for each in CAST}
 
 
@@ -53,39 +60,50 @@ class World:
         """How a device reads."""
         return self.natures[kept.device.pk]
 
+    def class_of(self, kept: Kept) -> ProbeClass:
+        """The class of a probe."""
+        probe = self.nature(kept).probe
+        if probe is None:
+            raise ValueError("a scanner has no probe class")
+        return probe
+
+    def accepted(self, kept: Kept) -> int:
+        """The depth a probe was accepted with, in mm."""
+        return ACCEPTED_MM[kept.device.serial]
+
     def add_nature(self, kept: Kept, kind: str = "", protection_class: str = "I") -> Nature:
         """Draw how a new device reads: by its serial, so that no device hangs on another."""
         rng = random.Random(f"{self.seed}/{kept.device.serial}")
         nature = Nature(rng, CLASSES.get(kind), protection_class)
         self.natures[kept.device.pk] = nature
+        if kept.device.serial in ACCEPTED_MM:
+            nature.fixed["penetration"] = Entry(str(ACCEPTED_MM[kept.device.serial]))
         return nature
 
     def site_code(self, kept: Kept) -> str:
         """Where the people are who test a device; the pool is kept by the first site."""
         return kept.device.site.code if kept.device.site else next(iter(self.sites))
 
-    def facts(self, kept: Kept, *, port: str = "", remark: str = "", **more: object) -> Facts:
+    def facts(self, kept: Kept, **more: Any) -> Facts:
         """What a check is measured with: its console, and the object and tester of the site."""
         device, code = kept.device, self.site_code(kept)
         own = device.kind == "scanner" or device.handheld
         console = device if own else device.scanner
         facts = self.scanners_by_id().get(console.pk) if console else None
         software = facts.scanner_facts.software_version if facts and facts.scanner_facts else ""
-        told: dict[str, object] = {
+        told: dict[str, Any] = {
             "test_object": self.objects.get(code),
             "instrument": None,
             "console": console,
             "console_software": software,
-            "port": port,
             "cleaned_before": "Wiped with the ward's wipe, by the tester"
             if device.kind == "probe"
             else "Dusted",
             "cleaned_after": "Gel and fluid removed; awaiting decontamination"
             if device.kind == "probe"
             else "",
-            "remark": remark,
         }
-        return Facts(**(told | more))  # type: ignore[arg-type]
+        return Facts(**(told | more))
 
     def scanners_by_id(self) -> dict[int, Kept]:
         """Scanners by key."""

@@ -43,7 +43,7 @@ from qa_tracker.records.queries import library
 from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow, DeviceRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
-from qa_tracker.services import baselines, checks, faults, judging, plans, recording, states
+from qa_tracker.services import baselines, checks, judging, plans, recording
 from qa_tracker.services.items import Item, Surroundings, items_of
 from qa_tracker.services.judging import Entry, Instructions, Judged, MeasuredWith
 from qa_tracker.services.recording import Facts
@@ -181,9 +181,10 @@ def perform(
     role: str,
     at: dt.datetime,
     facts: Facts | None = None,
-    quarantine: bool = False,
 ) -> Done:
     """Do a check: ask for an entry for each item, judge, record and sign; the plan's next occurrence is opened.
+
+    A finding for which the procedure says so takes the device out of use at once.
 
     Refused as :func:`qa_tracker.services.judging.judge_all` refuses.
     """
@@ -208,7 +209,7 @@ def perform(
         codes={code: row.id for code, row in past.measurands.items()},
     )
     following = _open_following(past, act, check, at)
-    recording.open_faults(act, check, submission, judged, by, quarantine=quarantine)
+    recording.open_faults(act, check, submission, judged, by, quarantine=judged.suggests_quarantine())
     return Done(check, submission, judged, following)
 
 
@@ -321,35 +322,6 @@ def set_baselines(
     kept.items.clear()
     baselines.sign(act, kept.device, found, by, "physicist", reason)
     return found
-
-
-def move_state(
-    past: Past,
-    kept: Kept,
-    verb: str,
-    note: str,
-    *,
-    by: Person,
-    at: dt.datetime,
-    kind: str = "device.moved_on",
-) -> None:
-    """Move a device by a verb of its table."""
-    states.set_state(past.act(kind, by, at, note), kept.device, verb, note)
-
-
-def restore(
-    past: Past, kept: Kept, *, proof: Check | None, remark: str, by: Person, role: str, at: dt.datetime
-) -> None:
-    """Restore a device to use, signed; its open faults are closed by the proof."""
-    act = past.act("device.restored", by, at, remark)
-    states.restore_device(act, kept.device, by, role, remark, proof, past.open_faults(kept.device))
-
-
-def act_on_fault(
-    past: Past, fault: Fault, kind: str, text: str, *, by: Person, at: dt.datetime, job_number: str = ""
-) -> None:
-    """Record something done about a fault."""
-    faults.add_action(past.act("fault.acted_on", by, at), fault, kind, text, job_number, by)
 
 
 def _instructions(site: Site | None) -> Instructions:
