@@ -20,7 +20,14 @@ OPEN_IN_API = {
     "api-root": "answers that nothing is here",
     "api/v1/<path:rest>": "answers that nothing is here",
 }
-SAMPLES = {"uuid": str(uuid.UUID(int=7)), "int": "7", "slug": "x", "str": "x", "path": "x"}
+SAMPLES = {
+    "uuid": str(uuid.UUID(int=7)),
+    "uuidstr": str(uuid.UUID(int=7)),
+    "int": "7",
+    "slug": "x",
+    "str": "x",
+    "path": "x",
+}
 PARAMETER = re.compile(r"<(?:(?P<kind>\w+):)?\w+>")
 METHODS = ("get", "post", "put", "patch", "delete")
 
