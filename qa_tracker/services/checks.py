@@ -9,7 +9,6 @@ from dataclasses import dataclass, field, replace
 
 from django.db import IntegrityError
 
-from qa_tracker.core.canonical import canonical
 from qa_tracker.core.errors import Conflict, Forbidden, Invalid
 from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, target
 from qa_tracker.records import ledger
@@ -31,7 +30,6 @@ from qa_tracker.services.guards import (
     check_may,
     check_password,
     check_shown,
-    may,
     required,
     role_for,
 )
@@ -380,20 +378,6 @@ def could_not_test(
         return recording.not_tested(act, row, reason, remark, actor)
 
 
-def excuse(*, check: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> None:
-    """Excuse an occurrence with a reason and open the next. Writes Check; leaf ``check.excused``."""
-    row = finding.check(actor, check, at)
-    check_may(actor, "check.excuse", row.site_id or actor.duties_site_id, at)
-    reason = required(reason, "check.excuse_missing", "reason")
-    state = target(CHECK, row.state, "excuse")
-    with ledger.command("check.excused", actor=actor, at=at, reason=reason) as act:
-        act.change(row, state=state, excuse=reason[:300], next_notice_at=None, next_level="")
-        if row.plan is not None:
-            plans.open_next(act, row.plan, after_on=row.due_on, done_on=row.due_on)
-        act.about(row, device=row.device, site=row.site)
-        act.tell({"state": state, "due": row.due_on.isoformat() if row.due_on else None})
-
-
 def open_unplanned(*, device: uuid.UUID, procedure: str, actor: Person, at: dt.datetime) -> Check:
     """Begin a check that no plan asked for. Writes Check; leaf ``check.opened``.
 
@@ -414,13 +398,3 @@ def open_unplanned(*, device: uuid.UUID, procedure: str, actor: Person, at: dt.d
         act.about(check, device=row, site=row.site)
         act.tell({"procedure": procedure})
     return check
-
-
-def draft_content(typed: Mapping[str, str]) -> str:
-    """A draft as canonical text."""
-    return canonical(dict(typed)).decode()
-
-
-def may_excuse(check_site_id: int | None, *, actor: Person, at: dt.datetime) -> bool:
-    """Whether the actor may excuse a check of this site."""
-    return may(actor, "check.excuse", check_site_id or actor.duties_site_id, at)

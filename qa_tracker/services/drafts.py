@@ -11,11 +11,11 @@ import uuid
 from collections.abc import Mapping
 from dataclasses import dataclass
 
+from qa_tracker.core.canonical import canonical
 from qa_tracker.core.errors import Conflict
 from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records.models import Check, Draft, Person
 from qa_tracker.services import finding
-from qa_tracker.services.checks import draft_content
 
 
 @dataclass(frozen=True)
@@ -61,7 +61,7 @@ def keep(
     row = finding.check(actor, check, at)
     if row.state not in CHECK_AWAITED:
         raise Conflict("check.wrong_state", state=row.state, verb="submit")
-    content = draft_content(typed)
+    content = canonical(dict(typed)).decode()
     found, is_new = Draft.objects.get_or_create(
         check_of=row,
         person=actor,

@@ -28,12 +28,13 @@ class ShownSubmission:
 def shown_submission(row: SubmissionRow, edition: EditionRow) -> ShownSubmission:
     """Every item of a submission: read, or with the reason it was not."""
     reasons = {(one.measurand, one.aperture, one.condition): one for one in row.not_tested}
+    several = len({reading.aperture_id for reading in row.readings if reading.aperture_id}) > 1
     readings = []
     for reading in row.readings:
         untested = None
         if reading.id is None:
             untested = reasons.pop((reading.measurand, reading.aperture, reading.condition), None)
-        shown = recorded(reading, edition.spec)
+        shown = recorded(reading, edition.spec, name_aperture=several)
         readings.append(_with_reason(shown, untested) if untested else shown)
     readings += [_untested(one, edition.spec) for one in reasons.values()]
     reason = wording.reason_word(row.partial_reason) if row.partial_reason else ""

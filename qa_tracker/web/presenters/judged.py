@@ -104,14 +104,14 @@ def where_words(aperture: str, condition: str, repeat: int, repeats: int = 1) ->
     return ", ".join(part for part in (aperture, condition, number) if part)
 
 
-def about_to_be_signed(one: JudgedItem) -> ShownReading:
+def about_to_be_signed(one: JudgedItem, *, name_aperture: bool = True) -> ShownReading:
     """An item of the signing page, exactly as it will be recorded."""
     item, entry = one.item, one.entry
     return ShownReading(
         item.key,
         item.spec.name,
         where_words(
-            item.aperture.name if item.aperture else "",
+            item.aperture.name if item.aperture and name_aperture else "",
             item.condition.name if item.condition else "",
             item.repeat,
             item.spec.repeats,
@@ -124,13 +124,15 @@ def about_to_be_signed(one: JudgedItem) -> ShownReading:
     )
 
 
-def recorded(row: ReadingRow, spec: ProcedureSpec) -> ShownReading:
-    """A reading of a submission."""
+def recorded(row: ReadingRow, spec: ProcedureSpec, *, name_aperture: bool = True) -> ShownReading:
+    """A reading of a submission; the only aperture of a probe needs no name."""
     of = next((each for each in spec.measurands if each.code == row.measurand), None)
     return ShownReading(
         str(row.id or ""),
         of.name if of else row.measurand,
-        where_words(row.aperture, row.condition, row.repeat, of.repeats if of else 1),
+        where_words(
+            row.aperture if name_aperture else "", row.condition, row.repeat, of.repeats if of else 1
+        ),
         value_words(of, row.qualifier, row.entered, row.unit) if row.id is not None else "",
         "",
         "",

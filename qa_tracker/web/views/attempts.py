@@ -16,7 +16,7 @@ from qa_tracker.core.errors import DomainError, NotFound
 from qa_tracker.records.queries import checks as queries
 from qa_tracker.records.queries import submissions
 from qa_tracker.records.queries.checks import CheckRow
-from qa_tracker.services import checks, guards, wording
+from qa_tracker.services import checks, excuses, guards, wording
 from qa_tracker.services.judging import REASONS
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.presenters.entry import Choice
@@ -64,7 +64,7 @@ def excuse(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
     at, refused = now(), None
     if request.method == "POST":
         try:
-            checks.excuse(check=uid, reason=request.POST.get("reason", ""), actor=request.user, at=at)
+            excuses.excuse(check=uid, reason=request.POST.get("reason", ""), actor=request.user, at=at)
             messages.success(request, _("Excused. It is counted apart from what was done."))
             return redirect("check", uid=uid)
         except NotFound:

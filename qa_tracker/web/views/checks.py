@@ -21,7 +21,7 @@ from qa_tracker.records.queries import devices, library, notices, sites, submiss
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.records.queries.scope import Scope
-from qa_tracker.services import checks, guards, wording
+from qa_tracker.services import checks, excuses, guards, wording
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.presenters.check import shown_submission, to_countersign
 from qa_tracker.web.presenters.due import zone_at
@@ -67,7 +67,7 @@ def _page(
         "remark": request.POST.get("remark", ""),
         "may_enter": row.state in CHECK_AWAITED and bool(enterable(request.user, [row], at)),
         "may_excuse": row.state in ("scheduled", "started")
-        and checks.may_excuse(row.site_id, actor=request.user, at=at),
+        and excuses.may_excuse(row.site_id, actor=request.user, at=at),
         "next": _next_here(request, scope, row, at) if "signed" in request.GET else None,
     }
     return render(request, "check.html", context | _second(request, row, done, at), status=status)

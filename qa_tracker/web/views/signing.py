@@ -102,12 +102,13 @@ def _page(
 def _shown(seen: Preview) -> dict[str, object]:
     """The preview in the words of the page."""
     judged, facts = seen.judged, seen.facts
-    worst = about_to_be_signed(judged.worst) if judged.worst else None
+    several = len({one.item.aperture.id for one in judged.items if one.item.aperture}) > 1
+    worst = about_to_be_signed(judged.worst, name_aperture=several) if judged.worst else None
     return {
         "sheet": seen.sheet,
         "facts": facts,
         "readings": [
-            about_to_be_signed(one)
+            about_to_be_signed(one, name_aperture=several)
             for one in judged.items
             if one.is_read or one.entry.not_tested or one.judgement
         ],

@@ -34,7 +34,10 @@
   const freshBody = () => {
     turn += 1;
     turnInput.value = String(turn);
-    return new URLSearchParams(new FormData(form));
+    const body = new URLSearchParams(new FormData(form));
+    // The form's token is that of an earlier sign-in once somebody signed in again; the header carries today's.
+    body.delete("csrfmiddlewaretoken");
+    return body;
   };
   const post = (keepalive) => fetch(form.action, {
     method: "POST",
