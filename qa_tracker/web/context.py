@@ -9,7 +9,7 @@ from typing import Any
 
 from django.conf import settings
 from django.http import HttpRequest
-from django.urls import NoReverseMatch, reverse
+from django.urls import reverse
 from django.utils.functional import SimpleLazyObject
 from django.utils.timezone import now
 from django.utils.translation import gettext_lazy as _
@@ -50,7 +50,6 @@ class Frame:
 
     pages: tuple[PageName, ...] = ()
     name: str = ""
-    password: str = ""
     notices: int = 0
     unhealthy: str = ""
     demonstration: bool = False
@@ -70,7 +69,6 @@ def _frame(request: HttpRequest) -> Frame:
     return Frame(
         _pages(request.path, grants_of(person.pk), at.date()),
         person.name,
-        address_of("password"),
         notices.unseen_count(person.pk),
         wording.health_sentence(known) if known.status == "unhealthy" else "",
         holds_demonstration(),
@@ -79,20 +77,10 @@ def _frame(request: HttpRequest) -> Frame:
 
 def _pages(path: str, grants: Sequence[Grant], day: dt.date) -> tuple[PageName, ...]:
     return tuple(
-        PageName(address, str(title), _is_here(path, address))
+        PageName(reverse(name), str(title), _is_here(path, reverse(name)))
         for name, title, verb in PAGES
-        if may_somewhere(grants, verb, day)
-        and (name != "mailbox" or settings.DEMO_MAILBOX)
-        and (address := address_of(name))
+        if may_somewhere(grants, verb, day) and (name != "mailbox" or settings.DEMO_MAILBOX)
     )
-
-
-def address_of(name: str) -> str:
-    """The address of a page; empty where this installation has none of that name."""
-    try:
-        return reverse(name)
-    except NoReverseMatch:
-        return ""
 
 
 def _is_here(path: str, address: str) -> bool:

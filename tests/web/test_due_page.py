@@ -69,3 +69,18 @@ def test_an_empty_installation_says_what_to_do_first():
     builders.publish()
     builders.adopt_everything(physicist)
     assert "Register the first scanner" in due(physicist)
+
+
+def test_the_page_costs_the_same_with_more_checks(ward, django_assert_max_num_queries):
+    client = builders.signed_in(ward.technician)
+    with django_assert_max_num_queries(60) as few:
+        client.get("/")
+    for number in range(4):
+        held = builders.probe(
+            ward.physicist,
+            builders.Place(site=ward.site, location=ward.room, scanner=ward.scanner),
+            serial=f"C5-30{number}",
+        )
+        builders.plan(held, builders.MONTHLY, ward.technician, ward.physicist)
+    with django_assert_max_num_queries(len(few)):
+        client.get("/")

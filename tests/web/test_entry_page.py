@@ -220,3 +220,48 @@ def test_a_late_entry_is_read_by_the_sites_clock(ward, client, address):
     assert local.strftime("%H:%M") in page
     assert "entered late" in page
     assert not Submission.objects.exists()
+
+
+def test_a_form_sent_after_the_web_session_ended_is_carried_through_the_sign_in(ward, address):
+    browser = builders.Client()
+    typed = {"remark": "Gel & <lens>", "typed_by": str(ward.technician.uid), "revision": "0"}
+    answer = browser.post(f"{address}/draft/", typed)
+    assert answer.status_code == 401
+    assert 'name="carried.remark" value="Gel &amp; &lt;lens&gt;"' in answer.content.decode()
+    form = {f"carried.{name}": value for name, value in typed.items()} | {"carried_check": ward.check.uid}
+    form |= {"username": "castellane", "password": builders.PASSWORD, "next": f"{address}/enter/"}
+    page = browser.post("/sign-in/", form, follow=True).content.decode()
+    assert "Gel &amp; &lt;lens&gt;</textarea>" in page
+
+
+def test_what_is_carried_becomes_nobody_elses_draft(ward, address):
+    form = {"carried.remark": "x", "carried.typed_by": str(ward.technician.uid)}
+    form |= {"carried_check": ward.check.uid, "username": "oduya", "password": builders.PASSWORD}
+    assert builders.Client().post("/sign-in/", form).status_code == 302
+    assert not Draft.objects.exists()
+
+
+def test_a_wrong_password_keeps_what_is_carried(ward):
+    form = {
+        "carried.remark": "still here",
+        "carried_check": ward.check.uid,
+        "username": "oduya",
+        "password": "no",
+    }
+    page = builders.Client().post("/sign-in/", form).content.decode()
+    assert 'name="carried.remark" value="still here"' in page
+
+
+def test_what_was_sent_back_is_filled_in_with_what_is_to_be_done(ward, client, address):
+    done = builders.submitted(ward.check, ward.technician, reverberation_depth="42,5")
+    builders.checks.send_back(
+        check=ward.check.uid,
+        shown_sha256=done.shown_sha256,
+        remark="Zone 3 again, please",
+        password=builders.PASSWORD,
+        actor=ward.physicist,
+        at=now(),
+    )
+    page = client.get(f"{address}/enter/").content.decode()
+    assert "Zone 3 again, please" in page
+    assert 'value="42,5"' in page

@@ -13,6 +13,7 @@ from collections.abc import Iterable, Mapping
 
 from qa_tracker.core.errors import DomainError, Invalid, NotFound
 from qa_tracker.core.schedule_days import zone_of
+from qa_tracker.records.queries.submissions import SubmissionRow
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.items import Item
 from qa_tracker.services.judging import Entry
@@ -115,3 +116,15 @@ def typed_of(items: Iterable[Item], typed: Mapping[str, str], zone: str) -> Type
         partial_reason=typed.get("partial_reason", ""),
         remark=typed.get("remark", "").strip(),
     )
+
+
+def inputs_of(row: SubmissionRow) -> dict[str, str]:
+    """The inputs a submission was made from, as far as it holds them; to put a check right that was sent back."""
+    typed: dict[str, str] = {"port": row.port, "remark": row.remark, "cleaned_after": row.cleaned_after}
+    for reading in row.readings:
+        if reading.id is None:
+            continue
+        place = (reading.measurand, reading.aperture_id or 0, reading.condition_id or 0, reading.repeat)
+        key = ".".join(str(part) for part in place)
+        typed |= {key: reading.entered, f"q-{key}": reading.qualifier}
+    return {name: value for name, value in typed.items() if value}

@@ -8,7 +8,8 @@ from collections.abc import Mapping
 from typing import Any
 
 from django.contrib.auth.decorators import login_not_required
-from django.http import HttpRequest, HttpResponse, HttpResponseRedirect, JsonResponse
+from django.contrib.auth.forms import AuthenticationForm
+from django.http import HttpRequest, HttpResponse, JsonResponse
 from django.shortcuts import redirect, render
 from django.template.loader import render_to_string
 from django.urls import reverse
@@ -20,7 +21,8 @@ from qa_tracker.core.errors import Conflict, DomainError, SeveralInvalid
 from qa_tracker.core.schedule_days import zone_of
 from qa_tracker.core.workflow import DEVICE_USABLE
 from qa_tracker.records.queries import checks as check_queries
-from qa_tracker.records.queries import objects
+from qa_tracker.records.queries import objects, submissions
+from qa_tracker.records.queries.submissions import SignatureRow
 from qa_tracker.services import cautions, checks, drafts, guards, live, wording
 from qa_tracker.services.checks import Sheet
 from qa_tracker.services.drafts import Kept, KeptMeanwhile
@@ -34,8 +36,19 @@ from qa_tracker.web.refused import Refused
 @require_GET
 def enter(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
     """The page with what was kept before, judged as far as it can be."""
-    kept = drafts.find(check=uid, actor=request.user, at=now())
-    return page(request, uid, kept.typed if kept else {}, kept.revision if kept else 0)
+    at = now()
+    kept = drafts.find(check=uid, actor=request.user, at=at)
+    if kept is not None:
+        return page(request, uid, kept.typed, kept.revision)
+    return page(request, uid, _typed_before(request, uid, at), 0)
+
+
+def _typed_before(request: HttpRequest, uid: uuid.UUID, at: dt.datetime) -> dict[str, str]:
+    """What a check that was sent back held, so that only what was asked for is put right."""
+    row = check_queries.find_check(guards.scope(request.user, at), uid)
+    if row is None or row.state != "sent_back":
+        return {}
+    return inputs.inputs_of(submissions.submissions_of([row.id])[row.id][-1])
 
 
 @login_not_required
@@ -44,7 +57,7 @@ def draft(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
     """Keep what is typed; a script is answered with verdicts, a form with the page or the signing page."""
     by_script = request.headers.get("Accept") == "application/json"
     if not request.user.is_authenticated:
-        return _signed_out(uid, by_script)
+        return _signed_out(request, uid, by_script)
     typed = inputs.typed_inputs(request.POST)
     try:
         _check_same_person(request)
@@ -60,12 +73,14 @@ def draft(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
     return _next_page(request, uid, kept)
 
 
-def _signed_out(uid: uuid.UUID, by_script: bool) -> HttpResponse:
-    """Tell a script to keep what is typed and to ask for a sign-in; lead a form there."""
-    address = f"{reverse('sign-in')}?{urlencode({'next': reverse('check-enter', args=[uid])})}"
+def _signed_out(request: HttpRequest, uid: uuid.UUID, by_script: bool) -> HttpResponse:
+    """Tell a script to keep what is typed and to ask for a sign-in; a form is carried through the sign-in."""
+    back = reverse("check-enter", args=[uid])
     if by_script:
-        return JsonResponse({"sign_in": address}, status=401)
-    return HttpResponseRedirect(address)
+        return JsonResponse({"sign_in": f"{reverse('sign-in')}?{urlencode({'next': back})}"}, status=401)
+    carried = inputs.typed_inputs(request.POST) | {"typed_by": request.POST.get("typed_by", "")}
+    context = {"form": AuthenticationForm(), "next": back, "carried": carried, "carried_check": uid}
+    return render(request, "sign_in.html", context, status=401)
 
 
 def _revision(request: HttpRequest) -> int:
@@ -190,10 +205,19 @@ def page(
             Choice(each, wording.reason_word(each), typed.get("partial_reason") == each) for each in REASONS
         ],
         "barred": "" if laid.check.device.state in DEVICE_USABLE else laid.check.device.state,
+        "sent_back": _sent_back(laid),
         "zone": zone_of_sheet(laid),
         "at": at,
     }
     return render(request, "check_enter.html", context, status=status)
+
+
+def _sent_back(laid: Sheet) -> SignatureRow | None:
+    """Who sent the check back, and what is to be done."""
+    if laid.check.state != "sent_back":
+        return None
+    newest = submissions.submissions_of([laid.check.id])[laid.check.id][-1]
+    return next((each for each in reversed(newest.signatures) if each.meaning == "sent back"), None)
 
 
 def _other_lines(others: Mapping[str, str], laid: Sheet) -> list[tuple[str, str]]:
