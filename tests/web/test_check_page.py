@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 import builders
 import pytest
 
@@ -119,3 +121,20 @@ def test_an_unplanned_check_leads_to_its_entry_page(ward):
     answer = page(ward.technician, address, go="1")
     assert answer["Location"].endswith("/enter/")
     assert page(ward.technician, answer["Location"]).status_code == 200
+
+
+def test_the_list_is_paged_by_moment_and_key(ward, address, done, monkeypatch):
+    other = builders.probe(ward.physicist, builders.Place(site=ward.site), serial="C5-3301")
+    following = builders.plan(other, builders.MONTHLY, ward.technician, ward.physicist)
+    builders.submitted(following, ward.technician)
+    monkeypatch.setattr("qa_tracker.web.views.checks.PAGE", 1)
+    first = page(ward.user, "/checks/").content.decode()
+    assert f"/checks/{following.uid}/" in first
+    assert f"{address}/" not in first
+    later = re.search(r'href="(\?before=[^"]+)"', first)
+    assert f"{address}/" in page(ward.user, f"/checks/{later[1]}").content.decode()
+
+
+@pytest.mark.parametrize("before", ["x", "1-", "9" * 40 + "-1", "１-１"])
+def test_a_page_key_that_is_none_begins_at_the_first_page(ward, address, done, before):
+    assert f"{address}/" in page(ward.user, f"/checks/?before={before}").content.decode()

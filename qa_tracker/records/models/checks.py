@@ -54,6 +54,7 @@ class Check(Noun):
             models.Index(fields=["next_notice_at"], name="check_by_notice"),
             models.Index(fields=["state", "due_on"], name="check_by_due"),
             models.Index(fields=["device", "-id"], name="check_by_device"),
+            models.Index(fields=["submitted_at", "id"], name="check_by_done"),
         ]
 
 

@@ -129,6 +129,18 @@ def done_checks(scope: Scope, *, before: int | None = None, most: int = 50) -> l
     return list_checks(scope, before=before, most=most, state__in=CHECK_DONE | {"sent_back"})
 
 
+def latest_done(
+    scope: Scope, *, before: tuple[dt.datetime, int] | None = None, most: int = 50, **wanted: object
+) -> list[CheckRow]:
+    """Checks that were submitted, the latest first; ``before`` is moment and key of the last one seen."""
+    found = _joined().filter(checks_in(scope), state__in=CHECK_DONE | {"sent_back"}, **wanted)
+    if before is not None:
+        moment, key = before
+        found = found.filter(Q(submitted_at__lt=moment) | Q(submitted_at=moment, id__lt=key))
+    found = found if scope.whole_group else found.distinct()
+    return [_row(check) for check in found.order_by("-submitted_at", "-id")[:most]]
+
+
 def submitted_checks(scope: Scope, most: int = 200) -> list[CheckRow]:
     """Checks that wait for a countersignature or need none, oldest first."""
     found = _joined().filter(checks_in(scope), state="submitted").distinct().order_by("submitted_at", "id")

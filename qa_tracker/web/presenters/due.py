@@ -45,7 +45,8 @@ class DueSite:
 def due_sites(
     rows: list[CheckRow], sites: Mapping[int, SiteRow], enterable: set[uuid.UUID], at: dt.datetime
 ) -> tuple[DueSite, ...]:
-    """Group checks that come sorted by site, room and scanner."""
+    """Group checks that come sorted by site, room and scanner; what sites share comes last."""
+    rows = sorted(rows, key=lambda row: not row.site_code)
     return tuple(
         DueSite(code, _name(sites, code), _rooms(list(group), sites, enterable, at))
         for code, group in groupby(rows, key=lambda row: row.site_code)

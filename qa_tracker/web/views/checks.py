@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+import re
 import uuid
 from typing import Any
 
@@ -15,7 +16,7 @@ from django.views.decorators.debug import sensitive_post_parameters
 from django.views.decorators.http import require_GET, require_POST
 
 from qa_tracker.core.errors import DomainError, NotFound
-from qa_tracker.core.workflow import CHECK_AWAITED, CHECK_DONE
+from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records.queries import checks as queries
 from qa_tracker.records.queries import devices, library, notices, sites, submissions
 from qa_tracker.records.queries.checks import CheckRow
@@ -29,6 +30,8 @@ from qa_tracker.web.refused import Refused
 from qa_tracker.web.views.due import enterable
 
 PAGE = 50
+EPOCH = dt.datetime(1970, 1, 1, tzinfo=dt.UTC)
+MICROSECOND = dt.timedelta(microseconds=1)
 VERDICTS = ("suspension", "remedial", "indeterminate", "not_assessable", "conforming")
 
 
@@ -138,14 +141,14 @@ def index(request: HttpRequest) -> HttpResponse:
     scope = guards.scope(request.user, at)
     before = _key(request.GET.get("before", ""))
     wanted = {name: request.GET.get(name, "") for name in ("verdict", "procedure", "site")}
-    done = queries.list_checks(scope, before=before, most=PAGE + 1, **_columns(wanted))
+    done = queries.latest_done(scope, before=before, most=PAGE + 1, **_columns(wanted))
     known = {site.id: site for site in sites.list_sites(scope)}
     second = guards.may_somewhere(request.user, "check.countersign", at) and before is None
     context = {
         "waiting": to_countersign(queries.submitted_checks(scope), _editions()) if second else [],
         "asks_second": second,
         "done": [(row, zone_at(known, row.site_id)) for row in done[:PAGE]],
-        "before": done[PAGE - 1].id if len(done) > PAGE else None,
+        "before": _key_of(done[PAGE - 1]) if len(done) > PAGE else "",
         "wanted": wanted,
         "query": "&".join(f"{name}={value}" for name, value in wanted.items() if value.isidentifier()),
         "filtered": any(wanted.values()),
@@ -159,12 +162,19 @@ def index(request: HttpRequest) -> HttpResponse:
 def _columns(wanted: dict[str, str]) -> dict[str, object]:
     """The filters as columns; an unknown value finds nothing."""
     columns = {"verdict": "verdict", "procedure": "procedure__code", "site": "site__code"}
-    chosen = {columns[name]: value for name, value in wanted.items() if value}
-    return {"state__in": CHECK_DONE | {"sent_back"}} | chosen
+    return {columns[name]: value for name, value in wanted.items() if value}
 
 
-def _key(text: str) -> int | None:
-    return int(text) if text.isascii() and text.isdigit() and len(text) < 19 else None
+def _key_of(row: CheckRow) -> str:
+    """Moment and key of a row, for the address of the page after it."""
+    moment = row.submitted_at or EPOCH
+    return f"{(moment - EPOCH) // MICROSECOND}-{row.id}"
+
+
+def _key(text: str) -> tuple[dt.datetime, int] | None:
+    """The same, read; anything else begins at the first page."""
+    found = re.fullmatch(r"([0-9]{1,17})-([0-9]{1,18})", text, re.ASCII)
+    return (EPOCH + int(found[1]) * MICROSECOND, int(found[2])) if found else None
 
 
 def _editions() -> Any:
