@@ -15,7 +15,7 @@ from qa_tracker.web.forms.fields import Field, Option
 from qa_tracker.web.forms.typed import Typed
 
 
-def adopting(request: HttpRequest, verb: str, back: str, back_to: str, at: dt.datetime) -> Asked | None:
+def adopting(request: HttpRequest, verb: str, back: str, at: dt.datetime) -> Asked | None:
     """The form, with the places where the person may adopt; none where there is no such place."""
     options = _places(request, verb, at)
     if not options:
@@ -24,7 +24,7 @@ def adopting(request: HttpRequest, verb: str, back: str, back_to: str, at: dt.da
         _("Adopt"),
         _("Adopt under my name"),
         back,
-        back_to,
+        "",
         (
             Field("place", _("Where"), "radio", options=options, values=(options[0][0],)),
             Field(

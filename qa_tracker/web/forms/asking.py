@@ -15,7 +15,6 @@ from qa_tracker.web.forms.fields import Field, Words, keep
 from qa_tracker.web.forms.typed import Typed
 from qa_tracker.web.refused import Refused
 
-
 NOTHING = Refused()
 
 

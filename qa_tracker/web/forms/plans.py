@@ -38,8 +38,10 @@ def plan_fields(edition: EditionRow, people: list[PersonRow], today: dt.date, me
     rule = schedule.parse_rule(given.rule if given else "FREQ=YEARLY")
     responsible = [("", _("choose a person")), *((str(each.uid), each.name) for each in people)]
     return (
-        Field("every", _("Every"), "whole", values=(str(rule.interval),)),
-        Field("period", _("of"), "select", options=PERIODS, values=(rule.frequency,)),
+        Field("every", _("Every how many"), "whole", values=(str(rule.interval),)),
+        Field(
+            "period", _("Days, weeks, months or years"), "select", options=PERIODS, values=(rule.frequency,)
+        ),
         Field(
             "rule",
             _("Or another rule"),

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from itertools import pairwise
 
@@ -27,6 +27,7 @@ WIDTH, HEIGHT = 360.0, 168.0
 LEFT, RIGHT, TOP, BOTTOM = 8.0, 262.0, 12.0, 142.0
 MARK = 10.0
 LABEL_GAP = 12.0
+SEVERITY = ("suspension", "remedial", "indeterminate", "conforming", "not_assessable")
 
 
 @dataclass(frozen=True)
@@ -112,13 +113,22 @@ def charts_of(
     until: dt.datetime,
 ) -> tuple[Chart, ...]:
     """A chart for every series, by the names of their measurands."""
-    found = [
-        Series(*names[key], rows[-1].unit, tuple(rows), lines.get(key, ()))
-        for key, rows in points.items()
-        if key in names
-    ]
-    ordered = sorted(found, key=lambda series: (series.name, series.where))
+    found = [_series(names[key], rows, lines.get(key, ())) for key, rows in points.items() if key in names]
+    ordered = sorted(found, key=_worst_first)
     return tuple(Chart(each, drawn(each, until), each.points[::-1]) for each in ordered)
+
+
+def _series(name: tuple[str, str], rows: Sequence[PointRow], lines: tuple[Line, ...]) -> Series:
+    found = Series(*name, rows[-1].unit, tuple(rows), lines)
+    return replace(found, lines=_possible(found))
+
+
+def _worst_first(series: Series) -> tuple[int, bool, str, str]:
+    """By the newest verdict, then those that moved, then by name."""
+    newest = series.points[-1].verdict
+    rank = SEVERITY.index(newest) if newest in SEVERITY else len(SEVERITY)
+    moved = len({value_of(each) for each in series.points}) > 1
+    return rank, not moved, series.name, series.where
 
 
 def drawn(series: Series, until: dt.datetime) -> SafeString:
@@ -137,6 +147,13 @@ def drawn(series: Series, until: dt.datetime) -> SafeString:
     marks = [mark_at(each.verdict, x, at, MARK) for x, at, each in spots]
     words = (*_ends(time), *_beside(series, y))
     return svg(WIDTH, HEIGHT, label_of(series), (svg_shapes(shapes), *marks, labels(words)))
+
+
+def _possible(series: Series) -> tuple[Line, ...]:
+    """The lines readings can come near: no level below zero for what is never negative."""
+    if any(value_of(each) < 0 for each in series.points):
+        return series.lines
+    return tuple(each for each in series.lines if each.value >= 0)
 
 
 def value_of(point: PointRow) -> Decimal:

@@ -67,31 +67,24 @@ def _place(adoption: AdoptionRow, sites: Mapping[int, SiteRow]) -> str:
 
 @dataclass(frozen=True)
 class ShownCriterion:
-    """A limit in words, with its source and how well each number is known."""
+    """A limit in words, with its source, which says how well each number is known."""
 
     spec: CriterionSpec
     words: str
     source: str
     where: str
-    standings: tuple[str, ...]
     from_memory: bool
 
 
 def criterion_in_words(row: CriterionRow) -> ShownCriterion:
     """A criterion for reading before it is adopted."""
     spec = row.spec
-    levels = [("remedial", spec.standing.remedial), ("suspension", spec.standing.suspension)]
     return ShownCriterion(
         spec,
         wording.criterion_words(spec),
         wording.source_line(row, ""),
         str(MEDIA.get(spec.medium, spec.medium)),
-        tuple(
-            f"{wording.level_word(level)}: {wording.standing_word(standing)}"
-            for level, standing in levels
-            if standing
-        ),
-        any(standing == "memory" for _level, standing in levels),
+        "memory" in (spec.standing.remedial, spec.standing.suspension),
     )
 
 

@@ -36,10 +36,9 @@ def months_before(moment: dt.datetime) -> dt.datetime:
 
 def placements_line(placements: Sequence[PlacementRow], until: dt.datetime) -> SafeString:
     """Where a device was: a stroke for each placement, numbered as in the table."""
-    if not placements:
+    if not placements or until - placements[0].started_at < dt.timedelta(days=1):
         return SafeString("")
-    start = min(placements[0].started_at, until - dt.timedelta(days=30))
-    time = TimeLine(start, until, 6.0, WIDTH - 6)
+    time = TimeLine(placements[0].started_at, until, 6.0, WIDTH - 6)
     strokes, years = year_ticks(time, 6.0, 38.0)
     shapes, words = list(strokes), list(years)
     for number, each in enumerate(placements, start=1):
@@ -82,11 +81,9 @@ def _strip(procedure: str, found: Sequence[tuple[dt.datetime, CheckRow]], time: 
             shapes.append(line(x, 8, x, 22, INK, 1.6))
         else:
             marks.append(mark_at(each.verdict, x, 15.0, 11.0))
-    words = (
-        *years,
-        Label(4, 36, month_words(time.start)),
-        Label(WIDTH - 4, 36, month_words(time.end), "end"),
-    )
+    first = Label(4, 36, month_words(time.start))
+    last = Label(WIDTH - 4, 36, month_words(time.end), "end")
+    words = (first, *(each for each in years if 60 < each.x < WIDTH - 90), last)
     label = _("%(procedure)s: %(count)d checks in 24 months; the list has every one") % {
         "procedure": procedure,
         "count": len(found),

@@ -11,6 +11,7 @@ from django.urls import reverse
 from django.utils.timezone import now
 from django.utils.translation import gettext as _
 
+from qa_tracker.core.library import asked_of
 from qa_tracker.core.library_specs import MeasurandSpec
 from qa_tracker.core.workflow import CHECK_DONE
 from qa_tracker.records.queries import baselines as rows
@@ -136,7 +137,7 @@ def _values_asked(row: DeviceRow) -> list[tuple[Field, Value]]:
         (_value_field(spec, aperture, condition, in_force), _value(spec, aperture, condition))
         for spec in baselines.known_measurands(row.site_id).values()
         if spec.kind in DIGITS and baselines.wants_baseline(spec, row.site_id)
-        if spec.kinds is None or row.kind in spec.kinds
+        if asked_of(spec, device_kind=row.kind, array_kind=row.array_kind or None)
         for aperture in (apertures if spec.per == "aperture" and apertures else [None])
         for condition in (conditions if spec.by_condition and conditions else [None])
     ]

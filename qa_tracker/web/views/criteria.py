@@ -51,7 +51,7 @@ def _set(uid: uuid.UUID) -> CriteriaSetRow:
 
 def _form(request: HttpRequest, row: CriteriaSetRow, at: dt.datetime) -> Asked | None:
     back = reverse("criteria-set", args=[row.uid])
-    asked = adopting(request, "criteria.adopt", back, row.title, at)
+    asked = adopting(request, "criteria.adopt", back, at)
     return asked and replace(asked, action=reverse("adopt-criteria", args=[row.uid]))
 
 

@@ -91,7 +91,7 @@ def _action_form(fault: FaultRow) -> Asked:
         _("Record what was done"),
         _("Record"),
         reverse("fault", args=[fault.uid]),
-        _("Faults"),
+        "",
         (
             Field(
                 "kind",
@@ -111,7 +111,7 @@ def _look_back_form(fault: FaultRow) -> Asked:
         _("Look back"),
         _("Keep the statement"),
         reverse("fault", args=[fault.uid]),
-        _("Faults"),
+        "",
         (
             Field(
                 "look_back",
@@ -130,7 +130,7 @@ def _dismiss_form(fault: FaultRow) -> Asked:
         _("Dismiss"),
         _("Dismiss"),
         reverse("fault", args=[fault.uid]),
-        _("Faults"),
+        "",
         (Field("remark", _("Why it proved to be none"), "area"),),
         action=reverse("fault-dismiss", args=[fault.uid]),
     )

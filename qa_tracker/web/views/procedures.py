@@ -59,7 +59,7 @@ def _edition(uid: uuid.UUID) -> EditionRow:
 
 def _form(request: HttpRequest, row: EditionRow, at: dt.datetime) -> Asked | None:
     back = reverse("edition", args=[row.uid])
-    asked = adopting(request, "procedure.adopt", back, row.title, at)
+    asked = adopting(request, "procedure.adopt", back, at)
     return asked and replace(asked, action=reverse("adopt-edition", args=[row.uid]))
 
 
