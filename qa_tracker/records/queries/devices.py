@@ -181,7 +181,9 @@ def find_device(scope: Scope, uid: uuid.UUID, as_of: dt.datetime | None = None) 
 
 def _last_seen(scope: Scope, device: Device) -> dt.datetime | None:
     ended = Placement.objects.filter(device=device, site_id__in=scope.site_ids()).exclude(ended_at=None)
-    return ended.order_by("-ended_at").values_list("ended_at", flat=True).first()
+    moved_at = ended.order_by("-ended_at").values_list("ended_at", flat=True).first()
+    # At the moment of the move the device is known at its new place already, which is not theirs to see.
+    return moved_at - dt.timedelta(microseconds=1) if moved_at else None
 
 
 def by_serial(scope: Scope, serial: str) -> list[DeviceRow]:
