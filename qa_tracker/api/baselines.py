@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import uuid
+from typing import TYPE_CHECKING
 
 from qa_tracker.api.authentication import ApiRequest
 from qa_tracker.api.device_shapes import BaselineOut
@@ -11,6 +12,9 @@ from qa_tracker.api.schemas import Given, Mark, Secret, Words
 from qa_tracker.records.queries import baselines as rows
 from qa_tracker.services import baselines
 from qa_tracker.services.baselines import Value
+
+if TYPE_CHECKING:
+    from qa_tracker.records.models import Baseline
 
 router = NounRouter(tags=["baselines"])
 
@@ -42,7 +46,7 @@ class FromSubmissionIn(Given):
 
 
 @router.makes("/devices/{uuid:uid}/baselines", list[BaselineOut], "setBaselines")
-def set_baselines(request: ApiRequest, uid: uuid.UUID, body: BaselinesIn) -> list[object]:
+def set_baselines(request: ApiRequest, uid: uuid.UUID, body: BaselinesIn) -> list[rows.BaselineRow]:
     """Set baselines by value; each begins a new epoch of its series."""
     caller = request.auth
     made = baselines.set_values(
@@ -58,7 +62,7 @@ def set_baselines(request: ApiRequest, uid: uuid.UUID, body: BaselinesIn) -> lis
 
 
 @router.makes("/submissions/{uuid:uid}/baselines", list[BaselineOut], "takeBaselines")
-def take_baselines(request: ApiRequest, uid: uuid.UUID, body: FromSubmissionIn) -> list[object]:
+def take_baselines(request: ApiRequest, uid: uuid.UUID, body: FromSubmissionIn) -> list[rows.BaselineRow]:
     """Make the numbers of a submission the baselines of their series, as at acceptance."""
     caller = request.auth
     made = baselines.adopt_submission(
@@ -67,7 +71,7 @@ def take_baselines(request: ApiRequest, uid: uuid.UUID, body: FromSubmissionIn) 
     return _rows(made)
 
 
-def _rows(made: list[object]) -> list[object]:
-    uids = {each.uid for each in made}  # type: ignore[attr-defined]
-    known = rows.baselines_of(made[0].device_id)  # type: ignore[attr-defined]
+def _rows(made: list[Baseline]) -> list[rows.BaselineRow]:
+    uids = {each.uid for each in made}
+    known = rows.baselines_of(made[0].device_id)
     return [row for row in known if row.uid in uids]

@@ -33,15 +33,12 @@ TITLES = {
 ALWAYS = (HTTPStatus.UNAUTHORIZED, HTTPStatus.FORBIDDEN, HTTPStatus.UNPROCESSABLE_ENTITY)
 PLACES = ("body", "query", "path", "header", "data", "content")
 
-_FINDING = {
-    "type": "object",
-    "required": ["code", "field", "detail"],
-    "properties": {
-        "code": {"type": "string", "description": "Stable dotted name of the refusal."},
-        "field": {"type": "string", "description": "The input it belongs to; empty for the whole."},
-        "detail": {"type": "string", "description": "What, why and what to do, for a person."},
-    },
+_SAID: dict[str, Any] = {
+    "code": {"type": "string", "description": "Stable dotted name of the refusal."},
+    "field": {"type": "string", "description": "The input it belongs to; empty for the whole."},
+    "detail": {"type": "string", "description": "What, why and what to do, for a person."},
 }
+_FINDING = {"type": "object", "required": [*_SAID], "properties": _SAID}
 PROBLEM_SCHEMA: dict[str, Any] = {
     "title": "Problem",
     "description": "Problem details of RFC 9457, with the refusal's own code.",
@@ -51,7 +48,7 @@ PROBLEM_SCHEMA: dict[str, Any] = {
         "type": {"type": "string", "const": "about:blank"},
         "title": {"type": "string"},
         "status": {"type": "integer"},
-        **_FINDING["properties"],
+        **_SAID,
         "errors": {"type": "array", "items": _FINDING, "description": "One for each input to mend."},
     },
 }
