@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+from collections.abc import Collection
 
 import rfc8785
 
@@ -62,12 +63,20 @@ def _check_exact_form(value: object, depth: int) -> bool:
             raise Invalid("canonical.integer_too_large", value=str(value), most=LARGEST_INTEGER)
         return type(value) in (int, bool)
     if isinstance(value, dict):
-        plain = all([_check_exact_form(member, depth + 1) for member in value.values()])
-        named = all([_check_exact_form(name, depth + 1) for name in value])
-        return plain and named and all([type(name) is str and name.isascii() for name in value])
+        named = _check_members(value, depth + 1)
+        plain_names = named and all([type(name) is str and name.isascii() for name in value])
+        return _check_members(value.values(), depth + 1) and plain_names
     if isinstance(value, list | tuple):
-        return all([_check_exact_form(member, depth + 1) for member in value])
+        return _check_members(value, depth + 1)
     return False
 
 
+def _check_members(members: Collection[object], depth: int) -> bool:
+    """The same of members; most are texts, which need no look at each."""
+    if _TEXTS.issuperset(map(type, members)):
+        return True
+    return all([_check_exact_form(member, depth) for member in members])
+
+
+_TEXTS = frozenset({str, type(None)})
 _PLAIN = json.JSONEncoder(ensure_ascii=False, check_circular=False, sort_keys=True, separators=(",", ":"))

@@ -5,16 +5,20 @@ from __future__ import annotations
 import datetime as dt
 import hashlib
 import uuid
-from collections.abc import Iterable
-from functools import cache
-from typing import Any
+from collections.abc import Iterable, Sequence
+from functools import cache, lru_cache
+from operator import attrgetter
+from typing import Any, TypeAlias
 
 from django.db import models
 
 from qa_tracker.core.canonical import canonical
 from qa_tracker.records.models.base import Fact
 
+AnyField: TypeAlias = "models.Field[Any, Any]"
 
+
+@lru_cache(maxsize=4096)
 def moment_text(moment: dt.datetime) -> str:
     """A moment as UTC text with microseconds, the way leaves write it."""
     return moment.astimezone(dt.UTC).strftime("%Y-%m-%dT%H:%M:%S.%fZ")
@@ -38,8 +42,8 @@ def cell(value: object) -> str | None:
 def columns_of(noun: models.Model) -> dict[str, str | None]:
     """Every column of a noun but its leaf, as text."""
     return {
-        field.attname: cell(field.to_python(getattr(noun, field.attname)))
-        for field in noun._meta.concrete_fields
+        field.attname: _text(getattr(noun, field.attname), kind, field)
+        for field, kind in _kinds(noun._meta.concrete_fields)
         if field.attname != "leaf_id"
     }
 
@@ -63,7 +67,7 @@ def newest_form(model: type[Fact]) -> int:
 
 
 @cache
-def form_fields(model: type[Fact], form: int) -> tuple[models.Field[Any, Any], ...]:
+def form_fields(model: type[Fact], form: int) -> tuple[AnyField, ...]:
     """The fields of a form, which names them by their columns."""
     by_column = {field.column: field for field in model._meta.concrete_fields}
     return tuple(by_column[column] for column in model.LEDGER_FORMS[form])
@@ -71,14 +75,52 @@ def form_fields(model: type[Fact], form: int) -> tuple[models.Field[Any, Any], .
 
 def fact_line(row: Fact, form: int) -> bytes:
     """One fact as a canonical line, the same before it is written and after it is read back."""
-    fields = form_fields(type(row), form)
-    return canonical([cell(field.to_python(getattr(row, field.attname))) for field in fields]) + b"\n"
+    return fact_lines([row], form)[0]
+
+
+def fact_lines(rows: Sequence[Fact], form: int) -> list[bytes]:
+    """Facts of one table as canonical lines; read by column, which is quicker for many."""
+    if not rows:
+        return []
+    columns = [_column(rows, field, kind) for field, kind in _kinds(form_fields(type(rows[0]), form))]
+    return [canonical(cells) + b"\n" for cells in zip(*columns, strict=True)]
+
+
+def _column(rows: Sequence[Fact], field: AnyField, kind: type | None) -> list[str | None]:
+    values = list(map(attrgetter(field.attname), rows))
+    if {*map(type, values)} == {kind}:
+        return values if kind is str else list(map(str, values))
+    return [_text(value, kind, field) for value in values]
+
+
+@cache
+def _kinds(fields: tuple[AnyField, ...]) -> tuple[tuple[AnyField, type | None], ...]:
+    """Fields with the type whose values are as the database would give them back, where there is one."""
+    return tuple((field, _kind(field)) for field in fields)
+
+
+def _kind(field: AnyField) -> type | None:
+    while isinstance(field, models.ForeignKey):
+        field = field.target_field
+    if isinstance(field, models.CharField | models.TextField):
+        return str
+    whole = isinstance(field, models.IntegerField) and not isinstance(field, models.BooleanField)
+    return int if whole else None
+
+
+def _text(value: object, kind: type | None, field: AnyField) -> str | None:
+    """One column's value as text, the same before it is written and after it is read back."""
+    if value is None:
+        return None
+    if type(value) is kind:
+        return str(value)
+    return cell(field.to_python(value))
 
 
 def digest_of(rows: Iterable[Fact], form: int) -> dict[str, object]:
     """Count and SHA-256 of facts of one table, in the order of their ids."""
     ordered = sorted(rows, key=lambda row: row.pk)
     total = hashlib.sha256()
-    for row in ordered:
-        total.update(fact_line(row, form))
+    for line in fact_lines(ordered, form):
+        total.update(line)
     return {"n": len(ordered), "sha256": total.hexdigest()}

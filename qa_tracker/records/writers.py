@@ -6,13 +6,16 @@ of history.
 
 from __future__ import annotations
 
-from typing import Protocol
+from functools import cache
+from operator import attrgetter
+from typing import Any, Protocol
 
 from django.core.management.color import no_style
-from django.db import connection, models
+from django.db import DEFAULT_DB_ALIAS, connection, connections, models
 
 from qa_tracker.core.errors import Conflict
 from qa_tracker.records.models.base import Noun
+from qa_tracker.records.models.ledger import Leaf
 
 
 class Writer(Protocol):
@@ -68,12 +71,16 @@ class HistoryWriter:
             self.changed.setdefault(type(noun), {})[noun.pk] = noun
 
     def flush(self) -> None:
-        """Write all that was gathered; foreign keys are deferred, so the order of tables doesn't matter."""
+        """Write all that was gathered, and what is pointed to before what points to it.
+
+        Keys may be missing until the transaction ends, but each one that arrives late is looked for in every
+        table that could have been waiting for it.
+        """
         for nouns in self.changed.values():
             for noun in nouns.values():
                 noun.save(force_update=True)
-        for model, rows in self.new.items():
-            insert_rows(model, list(rows.values()))
+        for model in sorted(self.new, key=_depth):
+            insert_rows(model, list(self.new[model].values()))
         self.new, self.changed = {}, {}
 
 
@@ -82,14 +89,46 @@ def insert_rows(model: type[models.Model], rows: list[models.Model]) -> None:
     if not rows:
         return
     fields = model._meta.concrete_fields
-    quote = connection.ops.quote_name
+    quote = connections[DEFAULT_DB_ALIAS].ops.quote_name
     names = ", ".join(quote(field.column) for field in fields)
     marks = ", ".join(["%s"] * len(fields))
     sql = f"INSERT INTO {quote(model._meta.db_table)} ({names}) VALUES ({marks})"
-    cells = [
-        [field.get_db_prep_save(getattr(row, field.attname), connection) for field in fields] for row in rows
-    ]
+    cells = zip(*(_stored(field, rows) for field in fields), strict=True)
     with connection.cursor() as cursor:
-        cursor.executemany(sql, cells)
+        cursor.executemany(sql, list(cells))
         for statement in connection.ops.sequence_reset_sql(no_style(), [model]):
             cursor.execute(statement)
+
+
+@cache
+def _depth(model: type[models.Model]) -> int:
+    """How many tables stand before one by its foreign keys; the ledger always comes last."""
+    above = {field.related_model for field in model._meta.concrete_fields if field.is_relation}
+    above -= {model, Leaf}
+    return max((_depth(each) + 1 for each in above if isinstance(each, type)), default=0)
+
+
+AS_IT_IS = (str, int, type(None))
+
+
+def _stored(field: models.Field[Any, Any], rows: list[models.Model]) -> list[Any]:
+    """One column's values as the engine stores them; texts and whole numbers are stored as they are."""
+    engine = connections[DEFAULT_DB_ALIAS]
+    values = list(map(attrgetter(field.attname), rows))
+    kinds = {*map(type, values)}
+    if is_plain(field) and kinds.issubset(AS_IT_IS):
+        return values
+    known: dict[Any, Any] = {}
+    for value in values:
+        if value not in known:
+            known[value] = field.get_db_prep_save(value, engine)
+    return [known[value] for value in values]
+
+
+def is_plain(field: models.Field[Any, Any]) -> bool:
+    """Whether a field holds a text or a whole number, itself or by the key it points to."""
+    while isinstance(field, models.ForeignKey):
+        field = field.target_field
+    if isinstance(field, models.BooleanField):
+        return False
+    return isinstance(field, models.CharField | models.TextField | models.IntegerField)

@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 import hashlib
+import uuid
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from decimal import Decimal
+from functools import lru_cache
 
 from qa_tracker.core import conformity, decimals
 from qa_tracker.core.canonical import canonical
 from qa_tracker.core.conformity import Judgement
+from qa_tracker.core.criteria import Criterion
 from qa_tracker.core.decimals import Exact
 from qa_tracker.core.errors import DomainError, Invalid, SeveralInvalid
 from qa_tracker.core.sentence_codes import SentenceCode
@@ -31,6 +34,10 @@ class Entry:
     condition_note: str = ""
     confirmed: bool = False
     origin: str = "typed"
+
+
+EMPTY = Entry()
+"""What an item has for which nothing was typed."""
 
 
 @dataclass(frozen=True)
@@ -124,7 +131,7 @@ def judge_all(
     exact: dict[str, Exact | None] = {}
     for item in items:
         try:
-            exact[item.key] = read_entry(item, entries.get(item.key, Entry()))
+            exact[item.key] = read_entry(item, entries.get(item.key, EMPTY))
         except DomainError as error:
             errors.append(error)
     if whole:
@@ -132,11 +139,9 @@ def judge_all(
     if errors:
         raise SeveralInvalid(tuple(errors))
     judged = [
-        _judge_item(item, entries.get(item.key, Entry()), exact, instructions, measured_with)
+        _judge_item(item, entries.get(item.key, EMPTY), exact, instructions, measured_with)
         for item in items
-        if whole
-        or entries.get(item.key, Entry()).text
-        or entries.get(item.key, Entry()).qualifier == "not_seen"
+        if whole or entries.get(item.key, EMPTY).text or entries.get(item.key, EMPTY).qualifier == "not_seen"
     ]
     return Judged(tuple(judged), worst_of(judged))
 
@@ -205,13 +210,13 @@ def _lacking(items: Sequence[Item], entries: Mapping[str, Entry]) -> list[Domain
     answered = {
         (item.spec.one_of, item.series[1:])
         for item in items
-        if item.spec.one_of and _answered(entries.get(item.key, Entry()))
+        if item.spec.one_of and _answered(entries.get(item.key, EMPTY))
     }
     return [
         Invalid("reading.missing", field=item.key)
         for item in items
         if (item.spec.required or item.spec.one_of)
-        and not _answered(entries.get(item.key, Entry()))
+        and not _answered(entries.get(item.key, EMPTY))
         and (item.spec.one_of is None or (item.spec.one_of, item.series[1:]) not in answered)
     ]
 
@@ -222,7 +227,7 @@ def _doubtful(
     """Values that look mistyped and were not confirmed."""
     found: list[DomainError] = []
     for item in items:
-        value, entry = exact.get(item.key), entries.get(item.key, Entry())
+        value, entry = exact.get(item.key), entries.get(item.key, EMPTY)
         if value is None or entry.confirmed:
             continue
         last = item.last
@@ -285,13 +290,14 @@ def _judge(
 ) -> Judgement | None:
     if item.criterion is None:
         return None
-    judgement = conformity.judge(
+    judgement = _verdict_on(
+        item.criterion.uid,
         item.criterion.spec.criterion,
-        value=value.decimal if value else (entry.text or None),
+        value=decimals.plain(value.decimal) if value else (entry.text or None),
         kind=item.spec.kind,
         qualifier=entry.qualifier,
         nominal=reference or None,
-        baseline=item.baseline.value if item.baseline else None,
+        baseline=decimals.plain(item.baseline.value) if item.baseline else None,
         baseline_qualifier=item.baseline.qualifier if item.baseline else "=",
         reference=reference or None,
         quantity=item.quantity or None,
@@ -300,6 +306,15 @@ def _judge(
     )
     flags = baseline_flags(item, measured_with)
     return replace(judgement, parameters=judgement.parameters | flags) if flags else judgement
+
+
+@lru_cache(maxsize=8192)
+def _verdict_on(criterion_uid: uuid.UUID, criterion: Criterion, **question: str | None) -> Judgement:
+    """The same question has the same answer, and most readings of a fleet ask one that was asked before.
+
+    Numbers are asked as texts, since 146 and 146.0 are equal and yet not the same sentence.
+    """
+    return conformity.judge(criterion, **question)  # type: ignore[arg-type]
 
 
 def baseline_flags(item: Item, measured_with: MeasuredWith) -> dict[str, str]:

@@ -145,8 +145,8 @@ def _record_item(
     if one.is_read:
         reading = act.insert(
             Reading(
-                submission=submission,
-                device=check.device,
+                submission_id=submission.pk,
+                device_id=check.device_id,
                 repeat=item.repeat,
                 qualifier=entry.qualifier,
                 entered=one.exact.entered if one.exact else entry.text,
@@ -183,8 +183,8 @@ def _verdict(
         raise ValueError("only a judged item has a verdict row")
     basis = item.criterion.spec.criterion.basis
     return Verdict(
-        submission=submission,
-        reading=reading,
+        submission_id=submission.pk,
+        reading_id=reading.pk if reading else None,
         repeat=item.repeat,
         verdict=judgement.verdict,
         level=judgement.level or "",
