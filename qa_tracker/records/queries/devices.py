@@ -138,7 +138,9 @@ def list_devices(
     a list means any of its values. ``after`` and ``most`` page by key.
     """
     if as_of is None:
-        columns = {f"{name}__in" if isinstance(value, list) else name: value for name, value in wanted.items()}
+        columns = {
+            f"{name}__in" if isinstance(value, list) else name: value for name, value in wanted.items()
+        }
         found = Device.objects.filter(devices_in(scope), id__gt=after, **columns).distinct().order_by("id")
         for word in text.split():
             found = found.filter(
