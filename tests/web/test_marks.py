@@ -9,6 +9,7 @@ import pytest
 
 from qa_tracker.core.figures import Judged
 from qa_tracker.web import marks
+from qa_tracker.web.presenters.entry import settings_of
 from qa_tracker.web.refused import Refusal, Refused
 
 VERDICTS = ("conforming", "remedial", "suspension", "indeterminate", "not_assessable")
@@ -68,3 +69,8 @@ def test_a_refusal_stands_beside_its_field_and_is_escaped():
     assert "&lt;b&gt;" in marks.refusal_at(refused, "depth")
     assert marks.refusal_at(refused, "other") == ""
     assert 'aria-invalid="true"' in marks.described_by(refused, "depth")
+
+
+def test_recorded_settings_are_told_with_their_unit():
+    told = settings_of('{"depth_mm": "170", "dynamic_range": "60 dB", "gain": "52 %"}')
+    assert told == (("depth (mm)", "170"), ("dynamic range", "60 dB"), ("gain", "52 %"))

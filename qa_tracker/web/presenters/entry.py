@@ -10,6 +10,7 @@ from itertools import groupby
 from django.utils.formats import date_format
 from django.utils.translation import gettext as _
 
+from qa_tracker.core.units import UNITS
 from qa_tracker.services import wording
 from qa_tracker.services.items import Item
 from qa_tracker.services.judging import REASONS, Judged, JudgedItem
@@ -125,13 +126,23 @@ def _section(
         ", ".join(title for title in titles if title),
         condition.id if condition else None,
         condition.name if condition else "",
-        tuple(sorted(json.loads(condition.settings).items())) if condition and condition.settings else (),
+        settings_of(condition.settings) if condition else (),
         condition is not None and condition.id not in known,
         typed.get(name, ""),
         typed.get(f"{name}-note", ""),
         refused.at(name) if name else "",
         fields,
     )
+
+
+def settings_of(text: str) -> tuple[tuple[str, str], ...]:
+    """Recorded settings for reading: ``depth_mm`` as "depth (mm)"."""
+    return tuple((_setting_name(name), value) for name, value in sorted(json.loads(text or "{}").items()))
+
+
+def _setting_name(name: str) -> str:
+    words, _sign, unit = name.rpartition("_")
+    return f"{words.replace('_', ' ')} ({unit})" if words and unit in UNITS else name.replace("_", " ")
 
 
 def _field(item: Item, typed: Mapping[str, str], one: JudgedItem | None, refused: Refused) -> Field:
@@ -155,7 +166,7 @@ def _field(item: Item, typed: Mapping[str, str], one: JudgedItem | None, refused
 
 def qualifier_choice(qualifier: str) -> str:
     """How a qualifier is offered in a list: "=" as "is"."""
-    return {"=": _("is"), ">": _("more than"), "<": _("less than")}.get(
+    return {"=": _("is"), ">": _("more than (>)"), "<": _("less than (<)")}.get(
         qualifier, wording.qualifier_word(qualifier)
     )
 
