@@ -206,6 +206,7 @@ INNER: Final = {
 }
 FORMS: Final = {
     "form.day_wrong": N_("“%(entered)s” is no day. Choose one in the calendar, or write it as 2025-03-05."),
+    "form.unanswered": N_("Nothing stands here yet. Fill it in."),
     "form.whole_wrong": N_("“%(entered)s” is no whole number from 0 to %(most)s. Use digits only."),
     "form.choice_missing": N_("Nothing was chosen. Choose one of those offered."),
     "form.line_wrong": N_(

@@ -75,6 +75,12 @@ def test_probe_when_refused_keeps_what_was_typed(ward, physicist, change, senten
     assert not Device.objects.filter(serial="FL-9").exists()
 
 
+def test_probe_with_several_things_missing_says_all_of_them_at_once(ward, physicist):
+    answer = physicist.post(reverse("probe-new"), {"maker": "", "model": "", "serial": " "})
+    refused = answer.context["asked"].refused
+    assert all(refused.at(name) for name in ("maker", "model", "serial", "place", "apertures"))
+
+
 def test_scanner_when_registered_leads_to_its_page(ward, physicist):
     typed = {"maker": "Pellantis", "model": "PX", "serial": "PX-1", "software_version": "1.0",
              "protection_class": "I", "place": f"room {ward.room.uid}"}  # fmt: skip

@@ -9,9 +9,9 @@ from django.contrib import messages
 from django.http import HttpRequest, HttpResponse, HttpResponseRedirect
 from django.shortcuts import render
 
-from qa_tracker.core.errors import DomainError, Forbidden, NotFound
+from qa_tracker.core.errors import DomainError, Forbidden, Invalid, NotFound, SeveralInvalid
 from qa_tracker.web import refused
-from qa_tracker.web.forms.fields import Field, Words, keep
+from qa_tracker.web.forms.fields import Field, Words, keep, unanswered
 from qa_tracker.web.forms.typed import Typed
 from qa_tracker.web.refused import Refused
 
@@ -77,5 +77,14 @@ def show_again(
     request: HttpRequest, asked: Asked, answer: Refused, template: str = "ask.html", **context: object
 ) -> HttpResponse:
     """The page as it was typed, with what was refused."""
-    kept = replace(asked, fields=keep(asked.fields, request.POST), refused=answer)
+    whole = _with_unanswered(answer, unanswered(asked.fields, request.POST))
+    kept = replace(asked, fields=keep(asked.fields, request.POST), refused=whole)
     return render(request, template, {"asked": kept, **context}, status=422)
+
+
+def _with_unanswered(answer: Refused, names: tuple[str, ...]) -> Refused:
+    """What was refused, and every further question that was left open, so that all are mended at once."""
+    open_ones = tuple(Invalid("form.unanswered", field=name) for name in names if not answer.at(name))
+    if not open_ones:
+        return answer
+    return Refused((*answer.refusals, *refused.of(SeveralInvalid(open_ones)).refusals))

@@ -10,6 +10,8 @@ from django.utils.functional import Promise
 
 Words = str | Promise
 Option = tuple[str, Words]
+# A choice among radios and places may well mean "none" or "the whole group" by an empty value.
+MAY_BE_EMPTY = ("select", "radio", "tick", "ticks", "file")
 
 
 @dataclass(frozen=True)
@@ -49,12 +51,21 @@ class Field:
         return replace(self, values=(str(value),) if value not in (None, "") else ())
 
 
+def unanswered(fields: Iterable[Field], typed: QueryDict) -> tuple[str, ...]:
+    """The names of the questions that need an answer and got none."""
+    return tuple(
+        each.name
+        for each in fields
+        if each.required and each.kind not in MAY_BE_EMPTY and not str(typed.get(each.name, "")).strip()
+    )
+
+
 def keep(fields: Iterable[Field], typed: QueryDict) -> tuple[Field, ...]:
     """The fields with what was typed, save passwords."""
     return tuple(
         each
         if each.kind in ("password", "new_password", "file")
-        else replace(each, values=_typed(each, typed))
+        else replace(each, values=_typed(each, typed), focus=False)
         for each in fields
     )
 
