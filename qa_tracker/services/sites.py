@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 import zoneinfo
+from collections.abc import Collection
 
 from qa_tracker.core.errors import Invalid
 from qa_tracker.records import ledger
@@ -11,21 +12,45 @@ from qa_tracker.records.models import Holiday, Location, Person, Pool, PoolMembe
 from qa_tracker.services.guards import check_may, required
 
 
-def create(*, code: str, name: str, time_zone: str, actor: Person, at: dt.datetime, **words: str) -> Site:
-    """Make a site. Writes Site; leaf ``site.created``. Refused: not a group administrator, a taken code,
-    an unknown time zone. ``words`` may hold the site's two instructions."""
+def create(
+    *,
+    code: str,
+    name: str,
+    time_zone: str,
+    weekend: Collection[int] = (6, 7),
+    digest_hour: int = 7,
+    actor: Person,
+    at: dt.datetime,
+    **instructions: str,
+) -> Site:
+    """Make a site. Writes Site; leaf ``site.created``. Refused: not a group administrator, a taken code, an
+    unknown time zone, no working day, an hour that is none.
+
+    ``weekend`` holds ISO weekdays (7 = Sunday); ``instructions`` the site's two instructions.
+    """
     check_may(actor, "site.manage", None, at)
     code = required(code, "site.code_missing", "code").upper()
     if Site.objects.filter(code=code).exists():
         raise Invalid("site.code_taken", field="code", taken=code)
     if time_zone not in zoneinfo.available_timezones():
         raise Invalid("site.time_zone_unknown", field="time_zone", zone=time_zone)
+    if not set(weekend) < set(range(1, 8)):
+        raise Invalid("site.no_working_day", field="weekend")
+    if digest_hour not in range(24):
+        raise Invalid("site.digest_hour_wrong", field="digest_hour", hour=digest_hour)
     with ledger.command("site.created", actor=actor, at=at) as act:
         site = act.insert(
-            Site(code=code, name=required(name, "site.name_missing", "name"), time_zone=time_zone, **words)
+            Site(
+                code=code,
+                name=required(name, "site.name_missing", "name"),
+                time_zone=time_zone,
+                weekend=",".join(str(day) for day in sorted(weekend)),
+                digest_hour=digest_hour,
+                **instructions,
+            )
         )
         act.about(site, site=site)
-        act.tell({"code": code, "name": name, "time_zone": time_zone})
+        act.tell({"code": code, "name": name, "time_zone": time_zone, "weekend": site.weekend})
     return site
 
 

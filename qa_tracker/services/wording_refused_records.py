@@ -140,6 +140,8 @@ PEOPLE: Final = {
 SITES: Final = {
     "site.unknown": N_("There is no such site in your sight. Choose one of yours."),
     "site.code_missing": N_("The site has no code. Enter a short one, such as AG."),
+    "site.no_working_day": N_("A site works on at least one day of the week. Leave one day unticked."),
+    "site.digest_hour_wrong": N_("%(hour)s is no hour of the day. Give a whole number from 0 to 23."),
     "site.code_taken": N_("The code %(taken)s belongs to another site. Choose another."),
     "site.name_missing": N_("The site has no name. Enter it."),
     "site.time_zone_unknown": N_("“%(zone)s” is no time zone. Use a name such as Europe/London."),

@@ -5,11 +5,13 @@ from __future__ import annotations
 import datetime as dt
 import uuid
 import zoneinfo
+from collections.abc import Iterable
 from dataclasses import replace
 
 from django.http import HttpRequest, HttpResponse
 from django.shortcuts import render
 from django.urls import reverse
+from django.utils.dates import WEEKDAYS
 from django.utils.timezone import now
 from django.utils.translation import gettext as _
 
@@ -56,6 +58,7 @@ def new(request: HttpRequest) -> HttpResponse:
             Field("code", _("Short name"), hint=_("A few capitals, such as AG."), focus=True),
             Field("name", _("Name")),
             Field("time_zone", _("Time zone"), "select", options=zones, values=("Europe/London",)),
+            *week_fields((6, 7), 7),
             *instruction_fields("", ""),
         ),
     )
@@ -65,6 +68,8 @@ def new(request: HttpRequest) -> HttpResponse:
             code=typed.text("code", 12),
             name=typed.text("name", 120),
             time_zone=typed.text("time_zone"),
+            weekend=[int(day) for day in typed.several("weekend") if day.isdecimal()],
+            digest_hour=typed.whole("digest_hour", 23),
             remedial_instruction=typed.words("remedial_instruction"),
             suspension_instruction=typed.words("suspension_instruction"),
             actor=request.user,
@@ -73,6 +78,27 @@ def new(request: HttpRequest) -> HttpResponse:
         return Done(_("The site is made. Next: its rooms and days off."), reverse("site", args=[made.uid]))
 
     return ask(request, asked, act)
+
+
+def week_fields(weekend: Iterable[int], digest_hour: int) -> tuple[Field, ...]:
+    """The days of each week nobody works, and from which hour the day's mail may come."""
+    days = tuple((str(number), WEEKDAYS[number - 1].capitalize()) for number in range(1, 8))
+    return (
+        Field(
+            "weekend",
+            _("Days off each week"),
+            "ticks",
+            options=days,
+            required=False,
+            values=tuple(str(day) for day in weekend),
+        ),
+        Field(
+            "digest_hour",
+            _("Mail from this hour"),
+            "whole",
+            _("The day's one mail comes from this hour on, on working days; 0 to 23."),
+        ).starting(digest_hour),
+    )
 
 
 def instruction_fields(remedial: str, suspension: str) -> tuple[Field, ...]:
