@@ -64,12 +64,13 @@ def new(request: HttpRequest) -> HttpResponse:
     )
 
     def act(typed: Typed) -> Done:
+        hour = typed.whole_or_none("digest_hour", 23)
         made = sites.create(
             code=typed.text("code", 12),
             name=typed.text("name", 120),
             time_zone=typed.text("time_zone"),
             weekend=[int(day) for day in typed.several("weekend") if day.isdecimal()],
-            digest_hour=typed.whole("digest_hour", 23),
+            digest_hour=7 if hour is None else hour,
             remedial_instruction=typed.words("remedial_instruction"),
             suspension_instruction=typed.words("suspension_instruction"),
             actor=request.user,
