@@ -65,14 +65,19 @@ def strips(checks: Sequence[CheckRow], until: dt.datetime) -> tuple[Strip, ...]:
         moment = each.submitted_at or (each.due_at if each.state in UNDONE else None)
         if moment is not None and since <= moment <= until:
             by_procedure.setdefault(each.procedure, []).append((moment, each))
+    time = TimeLine(since, until, 8.0, WIDTH - 8)
+    ordered = sorted(by_procedure.items())
     return tuple(
-        Strip(procedure, _strip(procedure, found, TimeLine(since, until, 8.0, WIDTH - 8)))
-        for procedure, found in sorted(by_procedure.items())
+        Strip(procedure, _strip(procedure, found, time, dated=number == len(ordered)))
+        for number, (procedure, found) in enumerate(ordered, start=1)
     )
 
 
-def _strip(procedure: str, found: Sequence[tuple[dt.datetime, CheckRow]], time: TimeLine) -> SafeString:
-    strokes, years = year_ticks(time, 4.0, 36.0)
+def _strip(
+    procedure: str, found: Sequence[tuple[dt.datetime, CheckRow]], time: TimeLine, *, dated: bool
+) -> SafeString:
+    """Marks along a line; only the last of several strips bears the dates they all share."""
+    strokes, years = year_ticks(time, 4.0, 36.0 if dated else 26.0)
     shapes = [*strokes, line(4, 15, WIDTH - 4, 15, BORDER, 0.6)]
     marks = []
     for moment, each in found:
@@ -88,4 +93,5 @@ def _strip(procedure: str, found: Sequence[tuple[dt.datetime, CheckRow]], time: 
         "procedure": procedure,
         "count": len(found),
     }
-    return svg(WIDTH, 40, label, (svg_shapes(shapes), *marks, labels(words)))
+    figure = (svg_shapes(shapes), *marks, labels(words if dated else ()))
+    return svg(WIDTH, 40 if dated else 28, label, figure)
