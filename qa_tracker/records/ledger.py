@@ -29,7 +29,7 @@ from qa_tracker.records.models.ledger import Checkpoint, Leaf, LedgerHead
 from qa_tracker.records.models.people import Person
 from qa_tracker.records.models.versions import Version
 from qa_tracker.records.rows import columns_of, digest_of, moment_text, newest_form
-from qa_tracker.records.writers import HistoryWriter, LiveWriter, Writer, insert_rows
+from qa_tracker.records.writers import HistoryWriter, LiveWriter, Writer, insert_rows, new_row
 
 Row = TypeVar("Row", bound=Audited)
 SCHEMA = 1
@@ -104,7 +104,8 @@ class Act:
         if noun is self.subject:
             # Kept now: in a history the noun goes on changing before this leaf is written.
             self.subject_version = noun.version
-        version = Version(
+        version = new_row(
+            Version,
             noun=noun._meta.model_name,
             subject_id=noun.pk,
             number=noun.version,

@@ -8,14 +8,17 @@ from __future__ import annotations
 
 from functools import cache
 from operator import attrgetter
-from typing import Any, Protocol
+from typing import Any, Protocol, TypeVar
 
 from django.core.management.color import no_style
 from django.db import DEFAULT_DB_ALIAS, connection, connections, models
+from django.db.models.base import ModelState
 
 from qa_tracker.core.errors import Conflict
 from qa_tracker.records.models.base import Noun
 from qa_tracker.records.models.ledger import Leaf
+
+M = TypeVar("M", bound=models.Model)
 
 
 class Writer(Protocol):
@@ -98,6 +101,24 @@ def insert_rows(model: type[models.Model], rows: list[models.Model]) -> None:
         cursor.executemany(sql, list(cells))
         for statement in connection.ops.sequence_reset_sql(no_style(), [model]):
             cursor.execute(statement)
+
+
+def new_row(model: type[M], **columns: Any) -> M:
+    """Build an unsaved row from its columns (``device_id``, not ``device``); what is left out has its default.
+
+    The same row as calling the model, without its descriptors and signals: many are built for each check. Only
+    for models whose defaults are values.
+    """
+    row = model.__new__(model)
+    row.__dict__ |= _defaults(model)
+    row.__dict__ |= columns
+    row._state = ModelState()
+    return row
+
+
+@cache
+def _defaults(model: type[models.Model]) -> dict[str, Any]:
+    return {name: value for name, value in vars(model()).items() if name != "_state"}
 
 
 @cache

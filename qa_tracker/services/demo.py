@@ -16,6 +16,7 @@ from qa_tracker.services.demo_devices import accept, enter_probe, enter_scanner
 from qa_tracker.services.demo_fleet import PROBES, SCANNERS, WIRELESS_SITE, Transducer
 from qa_tracker.services.demo_follow_up import follow_up_document
 from qa_tracker.services.demo_ground import lay_ground
+from qa_tracker.services.demo_large import Size, load_fleet
 from qa_tracker.services.demo_people import CAST, people
 from qa_tracker.services.demo_routine import FOLLOW_UP_RHYTHM, PROBE_RHYTHMS, SCANNER_RHYTHMS, Routine
 from qa_tracker.services.demo_stories import Cable, SlowLoss
@@ -25,7 +26,7 @@ from qa_tracker.services.demo_world import MONTHS, World
 from qa_tracker.services.devices import Place
 from qa_tracker.services.shipped import publish_shipped
 
-__all__ = ["Loaded", "load", "people"]
+__all__ = ["Loaded", "Size", "load", "people"]
 
 SEED = 1985
 
@@ -40,28 +41,32 @@ class Loaded:
     readings: int
 
 
-def load(*, at: dt.datetime, seed: int = SEED) -> Loaded:
-    """Load the demo up to a moment: all of it or nothing.
+def load(*, at: dt.datetime, seed: int = SEED, size: Size | None = None) -> Loaded:
+    """Load the demo up to a moment; with a size a larger fleet instead of the stories' one.
 
+    The demo itself is all or nothing; a larger fleet is written a part at a time, so that memory is bounded.
     Refused: a database that holds the demo already, or people who are not the demo's.
     """
+    size = size or Size()
     with transaction.atomic():
         check_may_load()
-        begun_at = begin(at)
-        publish_shipped(at=begun_at)
-        library.publish_procedure(document=follow_up_document(), actor=None, at=begun_at)
-        with history.past("demo") as past:
-            world = World(past, at, begun_at, seed, Timeline(at))
+        months = 12 * size.years
+        world = World(at, begin(at, months), seed, Timeline(at), months)
+        publish_shipped(at=world.begun_at)
+        library.publish_procedure(document=follow_up_document(), actor=None, at=world.begun_at)
+        with history.past("demo") as world.past:
             lay_ground(world)
-        with history.past("demo") as past:
-            world.past = past
-            live_through(world)
+        if not size.larger:
+            with history.past("demo") as world.past:
+                live_through(world)
+    if size.larger:
+        load_fleet(world, size)
     return sizes()
 
 
-def begin(at: dt.datetime) -> dt.datetime:
-    """The morning two years before."""
-    return dt.datetime.combine(add_months(at.date(), -MONTHS), dt.time(7), dt.UTC)
+def begin(at: dt.datetime, months: int = MONTHS) -> dt.datetime:
+    """The morning so many months before."""
+    return dt.datetime.combine(add_months(at.date(), -months), dt.time(7), dt.UTC)
 
 
 def check_may_load() -> None:

@@ -80,7 +80,8 @@ def _people(world: World) -> None:
         )
         act.writer.insert(Credential(person=person, password=hashed))
         act.about(person, site=site)
-        act.tell({"person": str(person.uid), "username": each.username})
+        first = {} if moss else {"role": each.role}
+        act.tell({"person": str(person.uid), "username": each.username} | first)
         world.people[each.username] = person
         _grant(world, each, person, site)
 

@@ -13,7 +13,7 @@ from qa_tracker.core.workflow import CHECK_AWAITED, DEVICE_USABLE
 from qa_tracker.records.models import Check, CheckPlan
 from qa_tracker.services import history, history_devices, plans
 from qa_tracker.services.demo_follow_up import CODE as FOLLOW_UP
-from qa_tracker.services.demo_world import MONTHS, World
+from qa_tracker.services.demo_world import World
 from qa_tracker.services.history import Done, Kept
 from qa_tracker.services.judging import Entry
 from qa_tracker.services.plans import Recurrence
@@ -47,7 +47,7 @@ PROBE_RHYTHMS = (
     Rhythm(ANNUAL, 12, 10, 30, 30, "forward"),
     Rhythm(ELECTRICAL, 12, 11, 30, 30, "forward"),
 )
-SCANNER_RHYTHMS = (Rhythm(DISPLAY, 1, 1, 7, 7, "none"), *PROBE_RHYTHMS[1:])
+SCANNER_RHYTHMS = (Rhythm(DISPLAY, 3, 2, 7, 7, "none"), *PROBE_RHYTHMS[1:])
 FOLLOW_UP_RHYTHM = Rhythm(FOLLOW_UP, 1, 1, 7, 7, "none")
 
 
@@ -67,7 +67,7 @@ class Routine:
         """Plan a procedure so that its last occurrence falls ``day`` days from now, and wait for the first."""
         oduya, _ = self.world.person("oduya")
         today = self.world.at.date()
-        behind = MONTHS - rhythm.first_month
+        behind = self.world.months - rhythm.first_month
         anchor = add_months(today + dt.timedelta(days=day), -behind)
         while anchor < at.date():
             behind -= rhythm.months
@@ -127,7 +127,7 @@ class Routine:
         if check.state not in CHECK_AWAITED or ended or kept.device.state not in DEVICE_USABLE:
             return
         month, code = self.month_of(check), check.procedure.code
-        if month == MONTHS and (kept.device.pk, code) in self.left_open:
+        if month == self.world.months and (kept.device.pk, code) in self.left_open:
             return
         reason = self.skipped.get((kept.device.pk, month))
         if reason is None or (reason != "not_found" and code != MONTHLY):

@@ -43,7 +43,6 @@ class SlowLoss:
         """Put what happens on the timeline."""
         world = self.routine.world
         self.kept = world.probes["C-4102"]
-        world.nature(self.kept).fixed["uniformity"] = Entry("1.6")
         for number in range(len(SLOW_SET_UPS)):
             world.timeline.put(world.begun_at + (number + 1) * 2 * DAY + 3 * HOUR, self.set_up(number))
         self.routine.before[self.kept.device.pk] = self.lose

@@ -34,7 +34,6 @@ class DryingObject:
         world = self.routine.world
         for serial in LOSSES_MM:
             kept = world.probes[serial]
-            world.nature(kept).fixed["reverberation_depth"] = Entry(world.class_of(kept).reverberation)
             self.routine.before[kept.device.pk] = self.reads(kept, serial)
         for month in range(DRIES_FROM, DRY_BY + 1):
             world.timeline.put(world.month(month - 0.5, 6), self.weighs(month))
@@ -176,9 +175,9 @@ class Bite:
         self.kept, other = world.probes["T-5501"], world.probes["T-5502"]
         world.nature(self.kept).fixed["toe_chassis_leakage"] = Entry("210")
         first_at = world.begun_at + 7 * DAY
-        for number in range(51):
+        for number in range(26):
             for kept, hours in ((self.kept, 7), (other, 9)):
-                world.timeline.put(first_at + number * 14 * DAY + hours * HOUR, self.log(kept))
+                world.timeline.put(first_at + number * 28 * DAY + hours * HOUR, self.log(kept))
         world.timeline.put(world.month(18.2, 15), self.hole)
 
     def log(self, kept: Kept) -> Event:

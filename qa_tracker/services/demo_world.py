@@ -9,7 +9,7 @@ from typing import Any
 
 from qa_tracker.core.schedule import add_months
 from qa_tracker.records.models import Instrument, Location, Person, Pool, Site, TestObject
-from qa_tracker.services.demo_fleet import CLASSES, ProbeClass
+from qa_tracker.services.demo_fleet import CLASSES
 from qa_tracker.services.demo_people import CAST
 from qa_tracker.services.demo_timeline import Timeline
 from qa_tracker.services.demo_values import Nature
@@ -23,6 +23,14 @@ ACCEPTED_MM = {
     "L-5205": 63, "L-5206": 61, "P-2505": 152, "V-6502": 88, "M-6002": 92,
 }  # fmt: skip
 """Depth at acceptance of the probes the stories are about, by serial."""
+STEADY = {
+    "C-4102": {"uniformity": "1.6"},
+    "C-4105": {"reverberation_depth": "12.0"}, "C-4106": {"reverberation_depth": "12.0"},
+    "L-5205": {"reverberation_depth": "8.5"}, "L-5206": {"reverberation_depth": "8.5"},
+    "P-2505": {"reverberation_depth": "15.0"}, "V-6502": {"reverberation_depth": "9.0"},
+    "M-6002": {"reverberation_depth": "9.5"},
+}  # fmt: skip
+"""What never moves on a story's probe, whatever else does."""
 ROLES = {each.username: each.role for each in CAST}
 
 
@@ -30,11 +38,12 @@ ROLES = {each.username: each.role for each in CAST}
 class World:
     """The group as it is at the moment reached, by the names the demo's tables use."""
 
-    past: Past
     at: dt.datetime
     begun_at: dt.datetime
     seed: int
     timeline: Timeline
+    months: int = MONTHS
+    past: Past = field(init=False)
     people: dict[str, Person] = field(default_factory=dict)
     sites: dict[str, Site] = field(default_factory=dict)
     rooms: dict[tuple[str, str], Location] = field(default_factory=dict)
@@ -60,13 +69,6 @@ class World:
         """How a device reads."""
         return self.natures[kept.device.pk]
 
-    def class_of(self, kept: Kept) -> ProbeClass:
-        """The class of a probe."""
-        probe = self.nature(kept).probe
-        if probe is None:
-            raise ValueError("a scanner has no probe class")
-        return probe
-
     def accepted(self, kept: Kept) -> int:
         """The depth a probe was accepted with, in mm."""
         return ACCEPTED_MM[kept.device.serial]
@@ -76,8 +78,10 @@ class World:
         rng = random.Random(f"{self.seed}/{kept.device.serial}")
         nature = Nature(rng, CLASSES.get(kind), protection_class)
         self.natures[kept.device.pk] = nature
-        if kept.device.serial in ACCEPTED_MM:
-            nature.fixed["penetration"] = Entry(str(ACCEPTED_MM[kept.device.serial]))
+        serial = kept.device.serial
+        if serial in ACCEPTED_MM:
+            nature.fixed["penetration"] = Entry(str(ACCEPTED_MM[serial]))
+        nature.fixed |= {code: Entry(text) for code, text in STEADY.get(serial, {}).items()}
         return nature
 
     def site_code(self, kept: Kept) -> str:

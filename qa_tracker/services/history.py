@@ -30,8 +30,10 @@ from qa_tracker.records.models import (
     Device,
     Fault,
     Measurand,
+    NotTested,
     Person,
     Placement,
+    ProbeFacts,
     Procedure,
     ScannerFacts,
     Site,
@@ -112,9 +114,15 @@ class Past:
         ]
 
     def open_faults(self, device: Device) -> list[Fault]:
-        """Faults of a device that are not closed."""
-        found = self._rows(Fault)
-        return [each for each in found if each.device_id == device.pk and each.state != "closed"]
+        """Faults of a device that are not closed: those known before, and those of this stretch."""
+        meanwhile = self.batch.writer.changed.get(Fault, {})
+        known = [each for each in Fault.objects.filter(device=device) if each.pk not in meanwhile]
+        found = [*known, *self._rows(Fault), *meanwhile.values()]
+        return [
+            each
+            for each in found
+            if isinstance(each, Fault) and each.device_id == device.pk and each.state != "closed"
+        ]
 
     def _rows(self, model: type[M]) -> list[M]:
         rows: dict[int, M] = self.batch.writer.new.get(model, {})  # type: ignore[assignment]
@@ -142,6 +150,25 @@ def past(origin: str) -> Iterator[Past]:
             {row.code: row for row in Measurand.objects.all()},
             library.adopted_criteria(None),
         )
+
+
+def keep(device: Device) -> Kept:
+    """What is known of a device that is there already."""
+    in_force = Baseline.objects.filter(device=device, ended_at=None).select_related(
+        "measurand", "test_object"
+    )
+    probe = ProbeFacts.objects.filter(device=device).first()
+    attempts = NotTested.objects.filter(check_of__device=device, submission=None, reason="not_found")
+    return Kept(
+        device,
+        Placement.objects.get(device=device, ended_at=None),
+        ScannerFacts.objects.filter(device=device).first(),
+        {row.pk: row for row in Aperture.objects.filter(device=device).order_by("id")},
+        {row.pk: row for row in Condition.objects.filter(device=device).order_by("id")},
+        probe.array_kind if probe else "",
+        {(row.measurand.code, row.aperture_id, row.condition_id): row for row in in_force},
+        attempts.count(),
+    )
 
 
 def plan(

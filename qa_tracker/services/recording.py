@@ -26,6 +26,7 @@ from qa_tracker.records.models import (
     Verdict,
 )
 from qa_tracker.records.queries.library import EditionRow, measurand_ids
+from qa_tracker.records.writers import new_row
 from qa_tracker.services import faults
 from qa_tracker.services.judging import Judged, JudgedItem
 from qa_tracker.services.states import set_state
@@ -144,7 +145,8 @@ def _record_item(
     reading = None
     if one.is_read:
         reading = act.insert(
-            Reading(
+            new_row(
+                Reading,
                 submission_id=submission.pk,
                 device_id=check.device_id,
                 repeat=item.repeat,
@@ -182,7 +184,8 @@ def _verdict(
     if judgement is None or item.criterion is None:
         raise ValueError("only a judged item has a verdict row")
     basis = item.criterion.spec.criterion.basis
-    return Verdict(
+    return new_row(
+        Verdict,
         submission_id=submission.pk,
         reading_id=reading.pk if reading else None,
         repeat=item.repeat,

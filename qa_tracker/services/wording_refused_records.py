@@ -114,6 +114,14 @@ FAULTS: Final = {
     ),
 }
 PEOPLE: Final = {
+    "demo.loaded": N_(
+        "The demo is already in this database, so nothing was loaded. Use it, or load it into an empty database."
+    ),
+    "demo.others": N_(
+        "There are people in this database who are not the demo's, so nothing was loaded: invented records must not "
+        "stand among real ones. Load the demo into an empty database."
+    ),
+    "demo.size": N_("%(number)s is no size for a fleet. Ask for at least 1 and at most %(most)s."),
     "person.unknown": N_("There is no such person. Choose one from the list."),
     "person.not_first": N_(
         "There are already accounts, so this is not the first. Ask an administrator for yours."

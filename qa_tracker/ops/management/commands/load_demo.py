@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import time
 from dataclasses import asdict
 from typing import Any
 
@@ -10,22 +11,41 @@ from django.core.management.base import BaseCommand, CommandError, CommandParser
 from django.utils.timezone import now
 
 from qa_tracker.core.errors import DomainError
+from qa_tracker.ops.people_table import people_table
 from qa_tracker.services import demo
 from qa_tracker.services.wording_refusals import refusal
 
 
 class Command(BaseCommand):
-    """Load the demo and say what there is."""
+    """Load the demo and say what there is and who can sign in."""
 
     help = "Load an invented hospital group with two years of checks into an empty database."
 
     def add_arguments(self, parser: CommandParser) -> None:
-        parser.add_argument("--seed", type=int, default=demo.SEED)
-        parser.add_argument("--json", action="store_true")
+        parser.add_argument("--scanners", type=int, metavar="N", help="a larger fleet: so many scanners")
+        parser.add_argument("--probes", type=int, metavar="N", help="a larger fleet: so many probes")
+        parser.add_argument("--years", type=int, metavar="N", default=2, help="years of checks (2)")
+        parser.add_argument(
+            "--seed", type=int, metavar="N", default=demo.SEED, help="the same seed draws the same readings"
+        )
+        parser.add_argument("--json", action="store_true", help="say what was loaded as one line of JSON")
 
     def handle(self, *args: Any, **options: Any) -> None:
+        began = time.perf_counter()
+        if not options["json"]:
+            self.stderr.write("Loading the demo ...")
         try:
-            loaded = demo.load(at=now(), seed=options["seed"])
+            size = demo.Size(options["scanners"], options["probes"], options["years"])
+            loaded = demo.load(at=now(), seed=options["seed"], size=size)
         except DomainError as error:
             raise CommandError(refusal(error)) from error
-        self.stdout.write(json.dumps(asdict(loaded)))
+        self.say(asdict(loaded) | {"seconds": round(time.perf_counter() - began, 1)}, options["json"])
+
+    def say(self, loaded: dict[str, Any], as_json: bool) -> None:
+        """What was loaded, for a program or for a person."""
+        if as_json:
+            self.stdout.write(json.dumps(loaded))
+            return
+        told = "{scanners} scanners, {probes} probes, {checks} checks and {readings} readings in {seconds} s."
+        self.stdout.write(told.format(**loaded))
+        self.stdout.write(people_table(demo.people()))
