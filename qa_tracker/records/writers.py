@@ -16,7 +16,6 @@ from django.db.models.base import ModelState
 
 from qa_tracker.core.errors import Conflict
 from qa_tracker.records.models.base import Noun
-from qa_tracker.records.models.ledger import Leaf
 
 M = TypeVar("M", bound=models.Model)
 
@@ -124,9 +123,8 @@ def _defaults(model: type[models.Model]) -> dict[str, Any]:
 @cache
 def _depth(model: type[models.Model]) -> int:
     """How many tables stand before one by its foreign keys; the ledger always comes last."""
-    above = {field.related_model for field in model._meta.concrete_fields if field.is_relation}
-    above -= {model, Leaf}
-    return max((_depth(each) + 1 for each in above if isinstance(each, type)), default=0)
+    above = {field.related_model for field in model._meta.concrete_fields if field.name != "leaf"}
+    return max((_depth(each) + 1 for each in above - {model} if isinstance(each, type)), default=0)
 
 
 AS_IT_IS = (str, int, type(None))

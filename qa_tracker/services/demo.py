@@ -16,7 +16,7 @@ from qa_tracker.services.demo_devices import accept, enter_probe, enter_scanner
 from qa_tracker.services.demo_fleet import PROBES, SCANNERS, WIRELESS_SITE, Transducer
 from qa_tracker.services.demo_follow_up import follow_up_document
 from qa_tracker.services.demo_ground import lay_ground
-from qa_tracker.services.demo_large import Size, load_fleet
+from qa_tracker.services.demo_large import Size, live_in_part, parts
 from qa_tracker.services.demo_people import CAST, people
 from qa_tracker.services.demo_routine import FOLLOW_UP_RHYTHM, PROBE_RHYTHMS, SCANNER_RHYTHMS, Routine
 from qa_tracker.services.demo_stories import Cable, SlowLoss
@@ -60,7 +60,9 @@ def load(*, at: dt.datetime, seed: int = SEED, size: Size | None = None) -> Load
             with history.past("demo") as world.past:
                 live_through(world)
     if size.larger:
-        load_fleet(world, size)
+        for part in parts(size, seed):
+            with history.past("demo") as world.past:
+                live_in_part(world, part)
     return sizes()
 
 

@@ -9,7 +9,6 @@ from collections.abc import Iterator
 from dataclasses import dataclass, field, replace
 
 from qa_tracker.core.errors import Invalid
-from qa_tracker.services import history
 from qa_tracker.services.demo_devices import accept, enter_probe, enter_scanner
 from qa_tracker.services.demo_fleet import PROBES, SCANNERS, Console, Transducer
 from qa_tracker.services.demo_routine import PROBE_RHYTHMS, SCANNER_RHYTHMS, Rhythm, Routine
@@ -52,17 +51,19 @@ def _within(name: str, number: int | None, most: int) -> None:
         raise Invalid("demo.size", field=name, number=number, most=most)
 
 
-def load_fleet(world: World, size: Size) -> None:
-    """Write the fleet a part at a time: some scanners with their probes in each transaction."""
-    scanners, probes = size.counts()
-    part: list[tuple[Console, list[Transducer]]] = []
-    for each in consoles(scanners, probes, world.seed):
+Part = list[tuple[Console, list[Transducer]]]
+
+
+def parts(size: Size, seed: int) -> Iterator[Part]:
+    """The fleet a part at a time: some scanners with their probes, for one transaction each."""
+    part: Part = []
+    for each in consoles(*size.counts(), seed):
         part.append(each)
-        if sum(1 + len(with_it) for _, with_it in part) >= PART:
-            write_part(world, part)
+        if sum(1 + len(probes) for _, probes in part) >= PART:
+            yield part
             part = []
     if part:
-        write_part(world, part)
+        yield part
 
 
 def consoles(scanners: int, probes: int, seed: int) -> Iterator[tuple[Console, list[Transducer]]]:
@@ -87,21 +88,20 @@ def consoles(scanners: int, probes: int, seed: int) -> Iterator[tuple[Console, l
         )
 
 
-def write_part(world: World, part: list[tuple[Console, list[Transducer]]]) -> None:
-    """One transaction: enter the devices of a part and let the years pass for them."""
+def live_in_part(world: World, part: Part) -> None:
+    """Enter the devices of a part and let the years pass for them; what went before is forgotten."""
     world.scanners, world.probes, world.natures = {}, {}, {}
     world.timeline = Timeline(world.at)
-    with history.past("demo") as world.past:
-        routine = Routine(world)
-        for console, probes in part:
-            scanner = enter_scanner(world, console, world.begun_at)
-            begin_with(routine, scanner, console.day, SCANNER_RHYTHMS)
-            for probe in probes:
-                held = scanner.device
-                place = Place(held.site, held.location, held)
-                kept = enter_probe(world, probe, place, console.maker, world.begun_at)
-                begin_with(routine, kept, console.day, PROBE_RHYTHMS)
-        world.timeline.play()
+    routine = Routine(world)
+    for console, probes in part:
+        scanner = enter_scanner(world, console, world.begun_at)
+        begin_with(routine, scanner, console.day, SCANNER_RHYTHMS)
+        for probe in probes:
+            held = scanner.device
+            place = Place(held.site, held.location, held)
+            kept = enter_probe(world, probe, place, console.maker, world.begun_at)
+            begin_with(routine, kept, console.day, PROBE_RHYTHMS)
+    world.timeline.play()
 
 
 def begin_with(routine: Routine, kept: Kept, day: int, rhythms: tuple[Rhythm, ...]) -> None:
