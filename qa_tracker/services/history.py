@@ -8,6 +8,7 @@ since rows are written only when the transaction ends. Nobody is asked again abo
 from __future__ import annotations
 
 import datetime as dt
+import gc
 import itertools
 from collections.abc import Callable, Iterator, Sequence
 from contextlib import contextmanager
@@ -16,7 +17,6 @@ from typing import TypeVar
 
 from django.db import models
 
-from qa_tracker.core.decimals import from_scaled
 from qa_tracker.core.schedule import SiteDays, local_day
 from qa_tracker.core.workflow import CHECK, target
 from qa_tracker.records import ledger
@@ -42,10 +42,11 @@ from qa_tracker.records.models import (
 )
 from qa_tracker.records.models.base import Audited
 from qa_tracker.records.queries import library
-from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey
-from qa_tracker.records.queries.devices import ApertureRow, ConditionRow, DeviceRow
+from qa_tracker.records.queries.baselines import SeriesKey
+from qa_tracker.records.queries.devices import ApertureRow, ConditionRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.services import baselines, checks, judging, plans, recording
+from qa_tracker.services.history_rows import baseline_row, device_row
 from qa_tracker.services.items import Item, Surroundings, items_of
 from qa_tracker.services.judging import Entry, Instructions, Judged, MeasuredWith
 from qa_tracker.services.recording import Facts
@@ -142,7 +143,7 @@ def past(origin: str) -> Iterator[Past]:
 
     The library and the adoptions have to be there, adopted by the group; a site's own adoptions are not asked.
     """
-    with ledger.history(origin) as batch:
+    with _without_collecting(), ledger.history(origin) as batch:
         yield Past(
             batch,
             {row.code: row for row in library.adopted_procedures(None)},
@@ -150,6 +151,18 @@ def past(origin: str) -> Iterator[Past]:
             {row.code: row for row in Measurand.objects.all()},
             library.adopted_criteria(None),
         )
+
+
+@contextmanager
+def _without_collecting() -> Iterator[None]:
+    """Leave the garbage alone meanwhile: hundreds of thousands of rows live on, and are looked at in vain."""
+    collecting = gc.isenabled()
+    gc.disable()
+    try:
+        yield
+    finally:
+        if collecting:
+            gc.enable()
 
 
 def keep(device: Device) -> Kept:
@@ -247,7 +260,7 @@ def items_for(
     key = (edition.id, test_object.id if test_object else 0)
     if key not in kept.items:
         around = Surroundings(
-            _device_row(kept),
+            device_row(kept.device, kept.array_kind),
             edition,
             [ApertureRow(a.id, a.uid, a.name, a.elements, a.pitch_um) for a in kept.apertures.values()],
             [
@@ -255,7 +268,7 @@ def items_for(
                 for c in kept.conditions.values()
             ],
             past.criteria,
-            {key: _baseline_row(key, baseline) for key, baseline in kept.baselines.items()},
+            {key: baseline_row(key, baseline) for key, baseline in kept.baselines.items()},
             {},
             checks.nominals_of(test_object),
         )
@@ -361,28 +374,3 @@ def _measured_with(facts: Facts) -> MeasuredWith:
         facts.console_software,
         facts.test_object.id if facts.test_object else None,
     )
-
-
-def _device_row(kept: Kept) -> DeviceRow:
-    """What the items of a check need to know of a device."""
-    d = kept.device
-    return DeviceRow(
-        id=d.id, uid=d.uid, version=d.version, kind=d.kind, maker=d.maker, model=d.model, serial=d.serial,
-        inventory_number=d.inventory_number, handheld=d.handheld, state=d.state, state_note=d.state_note,
-        state_since=d.state_since, site_id=d.site_id, site_code="", site_name="", pool_id=d.pool_id,
-        pool_name="", scanner_id=d.scanner_id, scanner_uid=None, scanner_label="", location_id=d.location_id,
-        location="", location_position=0, array_kind=kept.array_kind, contact_class="", applied_part="",
-        protection_class="", software_version="", register={},
-    )  # fmt: skip
-
-
-def _baseline_row(key: SeriesKey, row: Baseline) -> BaselineRow:
-    return BaselineRow(
-        id=row.id, uid=row.uid, device_id=row.device_id, measurand=key[0], aperture_id=key[1], aperture="",
-        condition_id=key[2], condition="", epoch=row.epoch, qualifier=row.qualifier, entered=row.entered,
-        value=from_scaled(row.scaled, row.places), unit=row.unit, console_model=row.console_model,
-        console_software=row.console_software, test_object_id=row.test_object_id,
-        test_object=f"{row.test_object.name} {row.test_object.serial}" if row.test_object else "",
-        method=row.method, reason=row.reason, set_by="", valid_from=row.valid_from, ended_at=row.ended_at,
-        under_review=row.under_review,
-    )  # fmt: skip

@@ -1,0 +1,33 @@
+"""Rows of the past as judging meets them, made from what is in memory."""
+
+from __future__ import annotations
+
+from qa_tracker.core.decimals import from_scaled
+from qa_tracker.records.models import Baseline, Device
+from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey
+from qa_tracker.records.queries.devices import DeviceRow
+
+
+def device_row(d: Device, array_kind: str) -> DeviceRow:
+    """What the items of a check need to know of a device."""
+    return DeviceRow(
+        id=d.id, uid=d.uid, version=d.version, kind=d.kind, maker=d.maker, model=d.model, serial=d.serial,
+        inventory_number=d.inventory_number, handheld=d.handheld, state=d.state, state_note=d.state_note,
+        state_since=d.state_since, site_id=d.site_id, site_code="", site_name="", pool_id=d.pool_id,
+        pool_name="", scanner_id=d.scanner_id, scanner_uid=None, scanner_label="", location_id=d.location_id,
+        location="", location_position=0, array_kind=array_kind, contact_class="", applied_part="",
+        protection_class="", software_version="", register={},
+    )  # fmt: skip
+
+
+def baseline_row(key: SeriesKey, row: Baseline) -> BaselineRow:
+    """A baseline that is not yet in the database, as judging meets it."""
+    return BaselineRow(
+        id=row.id, uid=row.uid, device_id=row.device_id, measurand=key[0], aperture_id=key[1], aperture="",
+        condition_id=key[2], condition="", epoch=row.epoch, qualifier=row.qualifier, entered=row.entered,
+        value=from_scaled(row.scaled, row.places), unit=row.unit, console_model=row.console_model,
+        console_software=row.console_software, test_object_id=row.test_object_id,
+        test_object=f"{row.test_object.name} {row.test_object.serial}" if row.test_object else "",
+        method=row.method, reason=row.reason, set_by="", valid_from=row.valid_from, ended_at=row.ended_at,
+        under_review=row.under_review,
+    )  # fmt: skip
