@@ -1,0 +1,173 @@
+"""The demonstration as its visitors see it: every page of three people, in both widths, and the five stories.
+
+With LEADLINE_SHOTS naming a folder it keeps the pictures of the README.
+"""
+
+from __future__ import annotations
+
+import json
+import os
+import re
+import shutil
+import signal
+import subprocess
+import sys
+from collections.abc import Iterator
+from pathlib import Path
+
+import pytest
+from playwright.sync_api import Browser, Page, sync_playwright
+
+from config.env import BASE_DIR
+
+CHROMIUM = shutil.which("chromium") or shutil.which("chromium-browser")
+pytestmark = [
+    pytest.mark.journey,
+    pytest.mark.skipif(
+        CHROMIUM is None and os.environ.get("CI") != "true",
+        reason="no Chromium on this machine: install Debian's package chromium to walk the browser journey",
+    ),
+]
+WIDE, NARROW = {"width": 1280, "height": 900}, {"width": 390, "height": 844}
+PAGES = {
+    "castellane": (
+        "/",
+        "/checks/",
+        "/register/",
+        "/faults/",
+        "/notices/",
+        "/dossiers/",
+        "/ledger/",
+        "/criteria/",
+    ),
+    "oduya": ("/", "/checks/", "/register/", "/criteria/procedures/", "/register/test-objects/", "/faults/"),
+    "fairweather": ("/register/", "/checks/", "/dossiers/", "/dossiers/verify/", "/ledger/", "/criteria/"),
+    "moss": ("/people/", "/sites/", "/mailbox/", "/tokens/"),
+}
+
+
+@pytest.fixture(scope="module")
+def demo(tmp_path_factory: pytest.TempPathFactory) -> Iterator[dict[str, object]]:
+    env = {name: value for name, value in os.environ.items() if not name.startswith("DJANGO_")}
+    env["DATA_DIR"] = str(tmp_path_factory.mktemp("demo"))
+    for name in ("DATABASE_URL", "REDIS_URL", "SECRET_KEY", "BASE_URL", "EMAIL_HOST"):
+        env.pop(name, None)
+    argv = (
+        sys.executable,
+        str(BASE_DIR / "manage.py"),
+        "standalone",
+        "--demo",
+        "--bind",
+        "127.0.0.1:0",
+        "--json",
+    )
+    with subprocess.Popen(argv, env=env, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True) as child:
+        line = child.stdout.readline() if child.stdout else ""
+        assert line, child.stderr.read() if child.stderr else ""
+        yield json.loads(line)
+        child.send_signal(signal.SIGTERM)
+        child.wait(60)
+
+
+@pytest.fixture(scope="module")
+def chromium() -> Iterator[Browser]:
+    flags = ["--no-sandbox", "--disable-gpu", "--disable-background-networking"]
+    with sync_playwright() as driver:
+        browser = driver.chromium.launch(executable_path=CHROMIUM, args=flags)
+        yield browser
+        browser.close()
+
+
+@pytest.fixture
+def visit(demo, chromium):
+    """Sign in as somebody; what the page asked of other hosts, or complained of, is kept with it."""
+    password = {person["username"]: person["password"] for person in demo["people"]}
+
+    def signed_in(username: str, viewport: dict[str, int] = WIDE) -> Page:
+        page = chromium.new_context(base_url=demo["address"], viewport=viewport).new_page()
+        page.set_default_timeout(15_000)
+        page.troubles = []  # type: ignore[attr-defined]
+        page.on("console", lambda said: said.type == "error" and page.troubles.append(said.text))
+        page.on(
+            "request", lambda asked: asked.url.startswith(demo["address"]) or page.troubles.append(asked.url)
+        )
+        page.goto("/sign-in/")
+        page.fill("#id_username", username)
+        page.fill("#id_password", password[username])
+        page.press("#id_password", "Enter")
+        page.wait_for_url(lambda url: "/sign-in/" not in url)
+        return page
+
+    return signed_in
+
+
+def shot(page: Page, name: str) -> None:
+    folder = os.environ.get("LEADLINE_SHOTS")
+    if folder:
+        page.evaluate("window.scrollTo(0, 0)")
+        page.screenshot(path=str(Path(folder) / f"{name}.png"))
+
+
+def device_page(page: Page, serial: str) -> str:
+    page.goto(f"/register/?text={serial}")
+    page.locator("main a[href*='/devices/']").filter(has_text=serial).first.click()
+    page.wait_for_load_state()
+    return page.inner_text("main")
+
+
+@pytest.mark.parametrize("viewport", [WIDE, NARROW], ids=["1280", "390"])
+@pytest.mark.parametrize("username", PAGES)
+def test_every_page_fits_and_asks_no_other_host(visit, username, viewport):
+    page = visit(username, viewport)
+    for address in PAGES[username]:
+        answer = page.goto(address)
+        assert answer is not None
+        assert answer.status == 200, address
+        wider = page.evaluate("document.documentElement.scrollWidth - window.innerWidth")
+        assert wider <= 0, f"{address} is {wider} px wider than the window"
+        policy = answer.headers["content-security-policy"]
+        assert "unsafe" not in policy
+    assert page.troubles == []
+
+
+@pytest.mark.parametrize(
+    ("serial", "words"),
+    [
+        ("C-4102", ["Penetration follow-up", "suspension", "Replaced by C-4109"]),
+        ("L-5204", ["suspension", "Elements 61-62 dead"]),
+        ("T-5501", ["Sheath"]),
+        ("WH-0042", ["Lost", "Not found twice"]),
+    ],
+    ids=["A slow loss", "B cable", "E bite", "wireless not found"],
+)
+def test_story_is_told_on_the_devices_page(visit, serial, words):
+    text = device_page(visit("oduya"), serial)
+    for word in words:
+        assert re.search(re.escape(word), text, re.IGNORECASE), word
+
+
+def test_pictures_for_the_readme(visit):
+    page = visit("castellane", NARROW)
+    shot(page, "due-390")
+    page.locator("main li, main article, main tr").filter(has_text="Monthly in-air").locator(
+        "a[href*='/enter/']"
+    ).first.click()
+    page.locator("main input[name^='lens_grade'][value=amber]").check()
+    page.get_by_text("The grade is “amber”: remedial.").first.wait_for()
+    page.locator("main input[name^='lens_grade']").first.scroll_into_view_if_needed()
+    if folder := os.environ.get("LEADLINE_SHOTS"):
+        page.screenshot(path=str(Path(folder) / "enter-390.png"))
+    page = visit("oduya")
+    device_page(page, "C-4102")
+    shot(page, "device-1280")
+    page.locator("main a").filter(has_text="Penetration follow-up").nth(1).click()
+    page.wait_for_load_state()
+    assert "Performed by" in page.inner_text("main")
+    page.get_by_text("Depth of penetration").first.scroll_into_view_if_needed()
+    if folder:
+        page.mouse.wheel(0, 500)
+        page.wait_for_timeout(300)
+        page.screenshot(path=str(Path(folder) / "check-1280.png"))
+    page.goto("/ledger/")
+    shot(page, "ledger-1280")
+    assert page.troubles == []
