@@ -82,7 +82,7 @@ def database(url: str) -> dict[str, object]:
             "timeout": 20,
             "init_command": (
                 "PRAGMA journal_mode=WAL; PRAGMA synchronous=FULL; "
-                "PRAGMA recursive_triggers=ON; PRAGMA foreign_keys=ON;"
+                "PRAGMA recursive_triggers=ON; PRAGMA foreign_keys=ON; PRAGMA cache_size=-65536;"
             ),
         }
     return chosen

@@ -10,13 +10,13 @@ from socketserver import ThreadingMixIn
 from typing import Any
 from wsgiref.simple_server import WSGIRequestHandler, WSGIServer, make_server
 
-import builders
 import pytest
 from django.contrib.staticfiles.handlers import StaticFilesHandler
 from django.core.handlers.wsgi import WSGIHandler
 from django.db import connections
 from playwright.sync_api import BrowserContext, Page, sync_playwright
 
+import builders
 from qa_tracker.records.models import Draft, Submission
 
 pytestmark = pytest.mark.journey

@@ -6,13 +6,13 @@ import uuid
 
 import pytest
 from django.utils.timezone import now
-from tests import builders
 
 from qa_tracker.core.errors import Conflict, Forbidden, Invalid, NotFound, SeveralInvalid
 from qa_tracker.records.models import Check, Device, Fault, Signature
 from qa_tracker.services import checks, dossiers, states, upkeep
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.judging import Entry
+from tests import builders
 
 pytestmark = pytest.mark.django_db
 
@@ -42,7 +42,11 @@ def sign(ward, done, form_uid=None, shown=None, password=builders.PASSWORD, **mo
 def test_conforming_check_opens_the_next_occurrence_when_signed(ward):
     submission = sign(ward, typed(ward))
     ward.check.refresh_from_db()
-    assert (ward.check.state, ward.check.verdict, submission.verdict) == ("submitted", "conforming", "conforming")
+    assert (ward.check.state, ward.check.verdict, submission.verdict) == (
+        "submitted",
+        "conforming",
+        "conforming",
+    )
     following = Check.objects.get(plan=ward.check.plan, state="scheduled")
     assert following.due_on > ward.check.due_on
 
@@ -66,7 +70,9 @@ def test_one_dangerous_finding_alone_is_taken_when_the_rest_has_a_reason(ward):
     preview = checks.preview(
         check=ward.check.uid,
         typed=Typed(
-            entries={"lens_grade.0.0.1": Entry(text="red")}, cleaned_before=CLEANED, partial_reason="in_theatre"
+            entries={"lens_grade.0.0.1": Entry(text="red")},
+            cleaned_before=CLEANED,
+            partial_reason="in_theatre",
         ),
         whole=True,
         actor=ward.technician,

@@ -6,10 +6,10 @@ import threading
 import uuid
 from concurrent.futures import ThreadPoolExecutor
 
-import builders
 from django.db import connections
 from django.utils.timezone import now
 
+import builders
 from qa_tracker.records.models import Submission
 from qa_tracker.records.models.ledger import Leaf
 from qa_tracker.services import checks

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import re
 
-import builders
 import pytest
+
+import builders
 
 pytestmark = pytest.mark.django_db
 

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import datetime as dt
 
-import builders
 import pytest
 from django.utils.timezone import now
 
+import builders
 from qa_tracker.records.models import Draft, Submission
 from qa_tracker.services import states
 

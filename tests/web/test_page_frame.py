@@ -4,11 +4,11 @@ from __future__ import annotations
 
 import datetime as dt
 
-import builders
 import pytest
 from django.test import Client
 from django.utils.timezone import now
 
+import builders
 from qa_tracker.records.models import Heartbeat
 
 pytestmark = pytest.mark.django_db

@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-import builders
 import pytest
 from django.test import Client
+
+import builders
 
 pytestmark = pytest.mark.django_db
 ADDRESS = "/sign-in/"

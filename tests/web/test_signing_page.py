@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import re
 
-import builders
 import pytest
 
+import builders
 from qa_tracker.records.models import Draft, Fault, Submission
 
 pytestmark = pytest.mark.django_db

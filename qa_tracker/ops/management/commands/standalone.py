@@ -21,6 +21,8 @@ from qa_tracker.ops.people_table import people_table
 from qa_tracker.ops.serving import listen, listened, read_bind, web_child
 from qa_tracker.ops.static_files import collect_when_stale
 from qa_tracker.ops.supervisor import Refused, Supervisor
+from qa_tracker.tasks.beat import SWEEP
+from qa_tracker.tasks.hints import send_hint
 
 
 class Command(BaseCommand):
@@ -58,7 +60,7 @@ class Command(BaseCommand):
             env = environment(broker_url, address, mail)
             if not settings.REDIS_URL:
                 supervisor.start(broker_child(settings.DATA_DIR, socket_path))
-            self.prepare(demo)
+            self.prepare()
             if not settings.REDIS_URL:
                 supervisor.wait_ready("broker")
             if mail is not None:
@@ -66,11 +68,15 @@ class Command(BaseCommand):
             supervisor.start(web_child(pages, host_header(), env))
             supervisor.start(worker_child(broker_url, env, own_broker=not settings.REDIS_URL))
             supervisor.start(beat_child(env))
+            if demo:
+                # The parts come up meanwhile; what they would write waits for the demo's transaction.
+                load_when_empty(progress())
             supervisor.wait_ready(*supervisor.children)
+            send_hint(SWEEP)
             self.announce(address, demo_people() if demo else [], as_json)
             supervisor.watch()
 
-    def prepare(self, demo: bool) -> None:
+    def prepare(self) -> None:
         """Bring the database and the static files to this version."""
         progress().write("Preparing the database and the pages ...")
         try:
@@ -81,8 +87,6 @@ class Command(BaseCommand):
                 "server or folder can be reached and written to."
             ) from error
         collect_when_stale(settings.DATA_DIR / "static.sha256")
-        if demo:
-            load_when_empty(progress())
 
     def announce(self, address: str, people: list[dict[str, str]], as_json: bool) -> None:
         """Say where the pages are and, in the demo, who can sign in."""
