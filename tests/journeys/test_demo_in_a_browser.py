@@ -5,29 +5,17 @@ With LEADLINE_SHOTS naming a folder it keeps the pictures of the README.
 
 from __future__ import annotations
 
-import json
 import os
 import re
-import shutil
-import signal
-import subprocess
-import sys
 from collections.abc import Iterator
 from pathlib import Path
 
 import pytest
-from playwright.sync_api import Browser, Page, sync_playwright
+from playwright.sync_api import Page
 
-from config.env import BASE_DIR
+from tests.journeys.conftest import clean_environment, standalone
 
-CHROMIUM = shutil.which("chromium") or shutil.which("chromium-browser")
-pytestmark = [
-    pytest.mark.journey,
-    pytest.mark.skipif(
-        CHROMIUM is None and os.environ.get("CI") != "true",
-        reason="no Chromium on this machine: install Debian's package chromium to walk the browser journey",
-    ),
-]
+pytestmark = pytest.mark.journey
 WIDE, NARROW = {"width": 1280, "height": 900}, {"width": 390, "height": 844}
 PAGES = {
     "castellane": (
@@ -47,35 +35,9 @@ PAGES = {
 
 
 @pytest.fixture(scope="module")
-def demo(tmp_path_factory: pytest.TempPathFactory) -> Iterator[dict[str, object]]:
-    env = {name: value for name, value in os.environ.items() if not name.startswith("DJANGO_")}
-    env["DATA_DIR"] = str(tmp_path_factory.mktemp("demo"))
-    for name in ("DATABASE_URL", "REDIS_URL", "SECRET_KEY", "BASE_URL", "EMAIL_HOST"):
-        env.pop(name, None)
-    argv = (
-        sys.executable,
-        str(BASE_DIR / "manage.py"),
-        "standalone",
-        "--demo",
-        "--bind",
-        "127.0.0.1:0",
-        "--json",
-    )
-    with subprocess.Popen(argv, env=env, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True) as child:
-        line = child.stdout.readline() if child.stdout else ""
-        assert line, child.stderr.read() if child.stderr else ""
-        yield json.loads(line)
-        child.send_signal(signal.SIGTERM)
-        child.wait(60)
-
-
-@pytest.fixture(scope="module")
-def chromium() -> Iterator[Browser]:
-    flags = ["--no-sandbox", "--disable-gpu", "--disable-background-networking"]
-    with sync_playwright() as driver:
-        browser = driver.chromium.launch(executable_path=CHROMIUM, args=flags)
-        yield browser
-        browser.close()
+def demo(chromium_path: str, tmp_path_factory: pytest.TempPathFactory) -> Iterator[dict[str, object]]:
+    with standalone(clean_environment(tmp_path_factory.mktemp("demo")), "--demo") as ready:
+        yield ready
 
 
 @pytest.fixture

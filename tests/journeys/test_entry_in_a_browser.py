@@ -18,12 +18,9 @@ from playwright.sync_api import BrowserContext, Page, sync_playwright
 
 import builders
 from qa_tracker.records.models import Draft, Submission
+from tests.journeys.conftest import FLAGS
 
 pytestmark = pytest.mark.journey
-CHROMIUM = {
-    "executable_path": "/usr/bin/chromium",
-    "args": ["--no-sandbox", "--disable-gpu", "--disable-background-networking"],
-}
 DEPTH = "input[name^='reverberation_depth']"
 TROUBLE = "#trouble:not([hidden])"
 
@@ -64,9 +61,9 @@ def ward(served):
 
 
 @pytest.fixture
-def browser(served) -> Iterator[BrowserContext]:
+def browser(served, chromium_path) -> Iterator[BrowserContext]:
     with sync_playwright() as driver:
-        chromium = driver.chromium.launch(**CHROMIUM)
+        chromium = driver.chromium.launch(executable_path=chromium_path, args=FLAGS)
         yield chromium.new_context(viewport={"width": 390, "height": 844}, base_url=served)
         chromium.close()
 

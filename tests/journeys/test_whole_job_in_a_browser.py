@@ -6,11 +6,8 @@ The pictures it takes are those of the README (``fixtures/images``, with LEADLIN
 from __future__ import annotations
 
 import datetime as dt
-import json
 import os
 import re
-import shutil
-import signal
 import subprocess
 import sys
 import time
@@ -20,19 +17,13 @@ from dataclasses import dataclass
 from pathlib import Path
 
 import pytest
-from playwright.sync_api import Browser, Page, sync_playwright
+from playwright.sync_api import Browser, Page
 
 from config.env import BASE_DIR
+from tests.journeys.conftest import clean_environment, standalone
 from tests.mail_server import MailServer, serving
 
-CHROMIUM = shutil.which("chromium") or shutil.which("chromium-browser")
-pytestmark = [
-    pytest.mark.journey,
-    pytest.mark.skipif(
-        CHROMIUM is None and os.environ.get("CI") != "true",
-        reason="no Chromium on this machine: install Debian's package chromium to walk the browser journey",
-    ),
-]
+pytestmark = pytest.mark.journey
 PASSWORD = "plumb line and water bath"
 LONDON = "Europe/London"
 WIDE, NARROW = {"width": 1280, "height": 900}, {"width": 390, "height": 844}
@@ -53,30 +44,11 @@ class Program:
 
 
 @pytest.fixture
-def program(tmp_path: Path) -> Iterator[Program]:
+def program(chromium_path: str, tmp_path: Path) -> Iterator[Program]:
     with serving() as mail:
-        env = {name: value for name, value in os.environ.items() if not name.startswith("DJANGO_")}
-        env |= {"DATA_DIR": str(tmp_path), "EMAIL_HOST": "127.0.0.1", "EMAIL_PORT": str(mail.port)}
-        for name in ("DATABASE_URL", "REDIS_URL", "SECRET_KEY", "BASE_URL"):
-            env.pop(name, None)
-        argv = (sys.executable, str(BASE_DIR / "manage.py"), "standalone", "--bind", "127.0.0.1:0", "--json")
-        with subprocess.Popen(
-            argv, env=env, stdout=subprocess.PIPE, stderr=subprocess.PIPE, text=True
-        ) as child:
-            line = child.stdout.readline() if child.stdout else ""
-            assert line, child.stderr.read() if child.stderr else ""
-            yield Program(json.loads(line)["address"], tmp_path, env, mail)
-            child.send_signal(signal.SIGTERM)
-            child.wait(60)
-
-
-@pytest.fixture
-def chromium() -> Iterator[Browser]:
-    flags = ["--no-sandbox", "--disable-gpu", "--disable-background-networking"]
-    with sync_playwright() as driver:
-        browser = driver.chromium.launch(executable_path=CHROMIUM, args=flags)
-        yield browser
-        browser.close()
+        env = clean_environment(tmp_path, EMAIL_HOST="127.0.0.1", EMAIL_PORT=str(mail.port))
+        with standalone(env) as ready:
+            yield Program(str(ready["address"]), tmp_path, env, mail)
 
 
 class Someone:

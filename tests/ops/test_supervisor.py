@@ -133,9 +133,10 @@ def test_supervisor_sweeps_the_group_when_its_leader_is_killed(start: Start) -> 
     family(supervisor)
     assert eventually(lambda: len(psutil.Process(supervisor.pid).children(recursive=True)) == 3)
     below = psutil.Process(supervisor.pid).children(recursive=True)
+    sleeper = of_child(below, "sleep 600")
     of_child(below, "subprocess").kill()
 
-    assert all_gone([of_child(below, "sleep 600")])
+    assert all_gone([sleeper])
 
 
 def test_supervisor_stops_the_broker_last_when_it_ends(start: Start, tmp_path: Path) -> None:
