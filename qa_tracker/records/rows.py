@@ -73,17 +73,15 @@ def form_fields(model: type[Fact], form: int) -> tuple[AnyField, ...]:
     return tuple(by_column[column] for column in model.LEDGER_FORMS[form])
 
 
-def fact_line(row: Fact, form: int) -> bytes:
-    """One fact as a canonical line, the same before it is written and after it is read back."""
-    return fact_lines([row], form)[0]
+def fact_cells(rows: Sequence[Fact], form: int) -> list[tuple[str | None, ...]]:
+    """Facts of one table as texts, the same before they are written and after they are read back.
 
-
-def fact_lines(rows: Sequence[Fact], form: int) -> list[bytes]:
-    """Facts of one table as canonical lines; read by column, which is quicker for many."""
+    Read by column, which is quicker for many.
+    """
     if not rows:
         return []
     columns = [_column(rows, field, kind) for field, kind in _kinds(form_fields(type(rows[0]), form))]
-    return [canonical(cells) + b"\n" for cells in zip(*columns, strict=True)]
+    return list(zip(*columns, strict=True))
 
 
 def _column(rows: Sequence[Fact], field: AnyField, kind: type | None) -> list[str | None]:
@@ -118,9 +116,6 @@ def _text(value: object, kind: type | None, field: AnyField) -> str | None:
 
 
 def digest_of(rows: Iterable[Fact], form: int) -> dict[str, object]:
-    """Count and SHA-256 of facts of one table, in the order of their ids."""
-    ordered = sorted(rows, key=lambda row: row.pk)
-    total = hashlib.sha256()
-    for line in fact_lines(ordered, form):
-        total.update(line)
-    return {"n": len(ordered), "sha256": total.hexdigest()}
+    """Count, and SHA-256 of the canonical JSON list, of facts of one table in the order of their ids."""
+    cells = fact_cells(sorted(rows, key=attrgetter("pk")), form)
+    return {"n": len(cells), "sha256": hashlib.sha256(canonical(cells)).hexdigest()}

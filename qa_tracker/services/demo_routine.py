@@ -41,13 +41,14 @@ class Rhythm:
     roll: str
 
 
-PROBE_RHYTHMS = (
-    Rhythm(MONTHLY, 1, 1, 7, 7, "none"),
+YEARLY = (Rhythm(ANNUAL, 12, 10, 30, 30, "forward"), Rhythm(ELECTRICAL, 12, 11, 30, 30, "forward"))
+# A probe's monthly check holds all that its quarterly one would, but for the phantom, which the survey reads.
+PROBE_RHYTHMS = (Rhythm(MONTHLY, 1, 1, 7, 7, "none"), *YEARLY)
+SCANNER_RHYTHMS = (
+    Rhythm(DISPLAY, 3, 2, 7, 7, "none"),
     Rhythm(QUARTERLY, 3, 2, 10, 10, "forward"),
-    Rhythm(ANNUAL, 12, 10, 30, 30, "forward"),
-    Rhythm(ELECTRICAL, 12, 11, 30, 30, "forward"),
+    *YEARLY,
 )
-SCANNER_RHYTHMS = (Rhythm(DISPLAY, 3, 2, 7, 7, "none"), *PROBE_RHYTHMS[1:])
 FOLLOW_UP_RHYTHM = Rhythm(FOLLOW_UP, 1, 1, 7, 7, "none")
 
 

@@ -11,7 +11,7 @@ from qa_tracker.core.canonical import canonical
 from qa_tracker.records import guards
 from qa_tracker.records.models import Holiday
 from qa_tracker.records.models.base import Fact
-from qa_tracker.records.rows import digest_of, fact_line, newest_form
+from qa_tracker.records.rows import digest_of, fact_cells, newest_form
 
 FACTS = {model._meta.model_name: model for model in guards.audited_models() if issubclass(model, Fact)}
 
@@ -28,7 +28,8 @@ def test_newest_form_covers_every_column_but_the_leaf(name):
 def test_fact_hashes_the_same_when_it_is_read_back(db, name):
     written = make(FACTS[name])
     form = newest_form(FACTS[name])
-    assert fact_line(FACTS[name].objects.get(pk=written.pk), form) == fact_line(written, form)
+    kept = FACTS[name].objects.get(pk=written.pk)
+    assert fact_cells([kept], form) == fact_cells([written], form)
 
 
 def test_fact_hashes_the_same_when_a_day_was_given_as_text():
@@ -37,10 +38,10 @@ def test_fact_hashes_the_same_when_a_day_was_given_as_text():
         Holiday(pk=1, site_id=4, day_on="2026-03-02"),
     )
     kept.day_on = Holiday._meta.get_field("day_on").to_python("2026-03-02")
-    assert fact_line(said, 1) == fact_line(kept, 1) == b'["1","4","2026-03-02",""]\n'
+    assert fact_cells([said], 1) == fact_cells([kept], 1) == [("1", "4", "2026-03-02", "")]
 
 
-def test_digest_is_over_the_lines_in_the_order_of_ids():
+def test_digest_is_over_the_rows_in_the_order_of_ids():
     rows = [Holiday(pk=pk, site_id=1, day_on="2026-03-02", name=str(pk)) for pk in (10, 9)]
-    lines = b"".join(canonical([str(pk), "1", "2026-03-02", str(pk)]) + b"\n" for pk in (9, 10))
-    assert digest_of(rows, 1) == {"n": 2, "sha256": hashlib.sha256(lines).hexdigest()}
+    listed = canonical([[str(pk), "1", "2026-03-02", str(pk)] for pk in (9, 10)])
+    assert digest_of(rows, 1) == {"n": 2, "sha256": hashlib.sha256(listed).hexdigest()}

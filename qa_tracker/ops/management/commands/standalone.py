@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import sys
+from concurrent.futures import ThreadPoolExecutor
 from contextlib import ExitStack
 from typing import Any
 
@@ -29,6 +30,8 @@ class Command(BaseCommand):
     """Serve until Ctrl-C or SIGTERM; everything that was started ends with it."""
 
     help = "Run everything on this computer: pages, worker, timetable and, without REDIS_URL, a broker."
+    # The pages' own process meets every address and setting as it starts; twice would cost a second.
+    requires_system_checks = ()
 
     def add_arguments(self, parser: CommandParser) -> None:
         parser.add_argument(
@@ -68,13 +71,18 @@ class Command(BaseCommand):
             supervisor.start(web_child(pages, host_header(), env))
             supervisor.start(worker_child(broker_url, env, own_broker=not settings.REDIS_URL))
             supervisor.start(beat_child(env))
-            if demo:
-                # The parts come up meanwhile; what they would write waits for the demo's transaction.
-                load_when_empty(progress())
-            supervisor.wait_ready(*supervisor.children)
+            self.come_up(supervisor, demo)
             send_hint(SWEEP)
             self.announce(address, demo_people() if demo else [], as_json)
             supervisor.watch()
+
+    def come_up(self, supervisor: Supervisor, demo: bool) -> None:
+        """Wait for the parts, and load the demo meanwhile; what they would write waits for its transaction."""
+        with ThreadPoolExecutor(max_workers=1) as beside:
+            waiting = beside.submit(supervisor.wait_ready, *supervisor.children)
+            if demo:
+                load_when_empty(progress())
+            waiting.result()
 
     def prepare(self) -> None:
         """Bring the database and the static files to this version."""
