@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import json
 import uuid
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any
 
 from django.apps import apps
-from django.db.models import OuterRef, Q, Subquery
+from django.db.models import Exists, OuterRef, Q, Subquery
 
 from qa_tracker.core import conformity, decimals
 from qa_tracker.core.canonical import canonical
@@ -18,10 +18,10 @@ from qa_tracker.core.errors import DomainError
 from qa_tracker.core.merkle import Frontier, leaf_hash
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Baseline, Criterion, Verdict, Version
-from qa_tracker.records.models.base import Fact, Noun
-from qa_tracker.records.queries.ledger import LeafRow, every_leaf, list_checkpoints
+from qa_tracker.records.models.base import Audited, Fact, Noun
+from qa_tracker.records.queries.ledger import LeafRow, every_leaf, list_checkpoints, rows_without_leaf
 from qa_tracker.records.queries.library import criterion_spec
-from qa_tracker.records.rows import columns_of, digest_of
+from qa_tracker.records.rows import columns_of, digest_of, moment_text
 from qa_tracker.seals.notes import open_checkpoint
 from qa_tracker.services import checkpoints
 from qa_tracker.services.keys import ledger_key
@@ -50,9 +50,8 @@ class LedgerFinding:
 
 def verify_ledger() -> LedgerFinding:
     """Rehash every leaf, compare every row with its leaf, and check every checkpoint. Reads only."""
-    problems = [*_verify_leaves(), *_verify_nouns()]
     size, root = ledger.state()
-    problems += _verify_checkpoints()
+    problems = [*_verify_leaves(), *_verify_orphans(), *_verify_nouns(), *_verify_checkpoints(size)]
     return LedgerFinding(size, root.hex(), len(list_checkpoints()), tuple(problems))
 
 
@@ -91,9 +90,22 @@ def _verify_bytes(leaf: LeafRow) -> Iterator[Problem]:
         yield Problem(leaf.seq, "leaf_changed", str(leaf.uid))
         return
     said = json.loads(content)
-    columns = (leaf.seq, str(leaf.uid), leaf.kind)
-    if canonical(said) != content or (said["seq"], said["uid"], said["kind"]) != columns:
+    if canonical(said) != content or _columns_said(said) != _columns(leaf):
         yield Problem(leaf.seq, "leaf_columns_differ", str(leaf.uid))
+
+
+def _columns_said(said: Mapping[str, Any]) -> list[object]:
+    subject, actor = said["subject"] or {}, said["actor"] or {}
+    found = [said[name] for name in ("seq", "uid", "kind", "device", "site", "at")]
+    return [*found, actor.get("uid"), subject.get("type", ""), subject.get("uid")]
+
+
+def _columns(leaf: LeafRow) -> list[object]:
+    uids = [None if uid is None else str(uid) for uid in (leaf.device_uid, leaf.site_uid)]
+    subject = None if leaf.subject_uid is None else str(leaf.subject_uid)
+    actor = None if leaf.actor_uid is None else str(leaf.actor_uid)
+    own = [leaf.seq, str(leaf.uid), leaf.kind, *uids, moment_text(leaf.at)]
+    return [*own, actor, leaf.subject_type, subject]
 
 
 def fact_models() -> list[type[Fact]]:
@@ -120,11 +132,28 @@ def _verify_rows(batch: list[LeafRow]) -> Iterator[Problem]:
                 yield Problem(leaf.seq, "rows_differ", f"{name} {[row.pk for row in rows][:20]}")
 
 
+def _verify_orphans() -> Iterator[Problem]:
+    """Rows that name a leaf which is not there."""
+    for model in apps.get_app_config("leadline").get_models():
+        if issubclass(model, Audited):
+            for pk in rows_without_leaf(model):
+                yield Problem(None, "row_without_leaf", f"{model._meta.model_name} {pk}")
+
+
 def _verify_nouns() -> Iterator[Problem]:
-    """Compare each noun's current row with its newest version."""
+    """Compare each noun's current row with its newest version, and find the versions that have no row."""
     for model in apps.get_app_config("leadline").get_models():
         if issubclass(model, Noun):
             yield from _verify_noun_table(model)
+            yield from _verify_no_noun_is_gone(model)
+
+
+def _verify_no_noun_is_gone(model: type[Noun]) -> Iterator[Problem]:
+    name = str(model._meta.model_name)
+    present = model._base_manager.filter(pk=OuterRef("subject_id"))
+    first = Version.objects.filter(~Exists(present), noun=name, number=1)
+    for pk in first.order_by("subject_id").values_list("subject_id", flat=True):
+        yield Problem(None, "current_row_missing", f"{name} {pk}")
 
 
 def _verify_noun_table(model: type[Noun]) -> Iterator[Problem]:
@@ -141,11 +170,13 @@ def _verify_noun_table(model: type[Noun]) -> Iterator[Problem]:
             yield Problem(None, "current_row_differs", f"{name} {row.pk}")
 
 
-def _verify_checkpoints() -> list[Problem]:
+def _verify_checkpoints(size: int) -> list[Problem]:
     problems, verifier = [], ledger_key().verifier
     roots = {}
     for row in list_checkpoints():
         roots[row.size] = row.root
+        if row.size > size:
+            problems.append(Problem(None, "checkpoint_beyond", str(row.size)))
         try:
             said = open_checkpoint(row.note, verifier)
         except DomainError as error:

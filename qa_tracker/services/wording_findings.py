@@ -55,9 +55,12 @@ PROBLEMS: Final = {
     "head_differs": N_("the ledger's head doesn't fit its leaves"),
     "row_added": N_("a row is there that the leaf doesn't cover"),
     "rows_differ": N_("rows differ from what the leaf covers"),
+    "row_without_leaf": N_("a row belongs to no leaf of the ledger"),
+    "current_row_missing": N_("a row is gone whose versions are there"),
     "current_row_differs": N_("a row differs from its newest version"),
     "verdict_differs": N_("a verdict differs from what judging its parts again gives"),
     "checkpoint_differs": N_("a checkpoint doesn't fit the leaves"),
+    "checkpoint_beyond": N_("a checkpoint tells of more leaves than there are"),
     "checkpoint_unsigned": N_("a checkpoint has no good signature"),
     "checkpoint_outside_differs": N_("a copy of a checkpoint kept outside doesn't fit"),
 }

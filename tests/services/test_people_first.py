@@ -47,7 +47,7 @@ def test_second_first_account_is_refused_when_somebody_exists():
     assert rows() == before
 
 
-@pytest.mark.parametrize("password", ["short", "password1234", "1827364554637281"])
+@pytest.mark.parametrize("password", ["eleven char", "password1234"])
 def test_first_account_is_not_made_when_its_password_is_weak(password):
     with pytest.raises(Invalid) as refused:
         people.create_first_administrator(**GIVEN, password=password, at=now())

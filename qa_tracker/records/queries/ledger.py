@@ -9,9 +9,10 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import Any
 
-from django.db.models import Q
+from django.db.models import Exists, OuterRef, Q
 
 from qa_tracker.records.models import Device, Person, Site
+from qa_tracker.records.models.base import Audited
 from qa_tracker.records.models.ledger import Checkpoint, Leaf
 from qa_tracker.records.queries.scope import Scope
 
@@ -30,6 +31,9 @@ class LeafRow:
     leaf_hash: bytes
     actor: str = ""
     device: str = ""
+    subject_type: str = ""
+    subject_uid: uuid.UUID | None = None
+    site_uid: uuid.UUID | None = None
 
     @property
     def said(self) -> dict[str, Any]:
@@ -52,6 +56,7 @@ def _row(leaf: Leaf, people: dict[Any, str], devices: dict[Any, str]) -> LeafRow
     return LeafRow(
         leaf.seq, leaf.uid, leaf.kind, leaf.at, leaf.actor_uid, leaf.device_uid, leaf.content,
         bytes(leaf.leaf_hash), people.get(leaf.actor_uid, ""), devices.get(leaf.device_uid, ""),
+        leaf.subject_type, leaf.subject_uid, leaf.site_uid,
     )  # fmt: skip
 
 
@@ -91,6 +96,12 @@ def leaf_hashes(size: int) -> list[bytes]:
     """Hashes of the first leaves, in order."""
     found = Leaf.objects.filter(seq__lt=size).order_by("seq").values_list("leaf_hash", flat=True)
     return [bytes(each) for each in found.iterator(chunk_size=10000)]
+
+
+def rows_without_leaf(model: type[Audited]) -> list[int]:
+    """Keys of the rows of a table that name a leaf which is not there."""
+    own = Leaf.objects.filter(uid=OuterRef("leaf_id"))
+    return list(model._base_manager.filter(~Exists(own)).order_by("pk").values_list("pk", flat=True))
 
 
 def leaf_range_of(device_uid: uuid.UUID) -> tuple[int | None, int | None]:
