@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 import uuid
+from collections.abc import Iterable
 
 from qa_tracker.core.errors import Conflict, Invalid
 from qa_tracker.core.workflow import FAULT, target
@@ -121,6 +122,16 @@ def dismiss(*, fault: uuid.UUID, remark: str, actor: Person, at: dt.datetime) ->
         act.change(row, state=target(FAULT, row.state, "dismiss"), closed_at=at, close_remark=remark)
         act.about(row, device=row.device, site=row.device.site)
         act.tell({"state": "closed", "remark": remark})
+
+
+def close_by_disposal(act: ledger.Act, found: Iterable[Fault], reason: str) -> None:
+    """Close the faults of a device that is disposed of: no proof will come. Part of that command."""
+    for fault in found:
+        state = fault.state
+        if state == "awaiting_proof":
+            state = target(FAULT, state, "disprove")
+        closed = target(FAULT, state, "dismiss")
+        act.change(fault, state=closed, closed_at=act.at, close_remark=reason)
 
 
 def close_by_proof(act: ledger.Act, fault: Fault, proof: Check | None, remark: str) -> None:

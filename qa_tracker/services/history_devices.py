@@ -21,8 +21,11 @@ def move_state(
     at: dt.datetime,
     kind: str = "device.moved_on",
 ) -> None:
-    """Move a device by a verb of its table."""
-    states.set_state(past.act(kind, by, at, note), kept.device, verb, note)
+    """Move a device by a verb of its table; disposing of it closes its faults."""
+    act = past.act(kind, by, at, note)
+    if verb == "dispose":
+        faults.close_by_disposal(act, past.open_faults(kept.device), note)
+    states.set_state(act, kept.device, verb, note)
 
 
 def restore(

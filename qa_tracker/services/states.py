@@ -184,7 +184,8 @@ VERBS = {
 def move_on(*, device: uuid.UUID, verb: str, note: str, actor: Person, at: dt.datetime) -> None:
     """Move a device by one of the other verbs of the table; leaf ``device.moved_on``.
 
-    Refused: role, a verb the state does not allow, sending out without saying why.
+    Disposing of a device closes its faults with the same reason. Refused: role, a verb the state does not
+    allow, sending out without saying why.
     """
     row = find_device(actor, device, at)
     if verb not in VERBS:
@@ -192,4 +193,7 @@ def move_on(*, device: uuid.UUID, verb: str, note: str, actor: Person, at: dt.da
     check_may(actor, VERBS[verb], row.site_id, at)
     note = required(note, "device.note_missing", "note")
     with ledger.command("device.moved_on", actor=actor, at=at, reason=note) as act:
+        if verb == "dispose":
+            found = Fault.objects.filter(device=row).exclude(state="closed").select_related("device")
+            faults.close_by_disposal(act, found, note)
         set_state(act, row, verb, note)

@@ -27,7 +27,11 @@ def test_canonical_when_text_is_unusual(text):
     assert canonical([text, {"a": text, text: "b"}]) == rfc8785.dumps([text, {"a": text, text: "b"}])
 
 
-@pytest.mark.parametrize("value", ["\ud800", {"a": "\ud800"}, {1: "a"}, {"a": object()}], ids=str)
+@pytest.mark.parametrize(
+    "value",
+    ["\ud800", {"a": "\ud800"}, {1: "a"}, {"a": object()}],
+    ids=["half a pair", "half a pair inside", "a number as a name", "an object"],
+)
 def test_canonical_when_json_has_no_form(value):
     with pytest.raises(Invalid, match=r"canonical\.not_json"):
         canonical(value)
