@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import dataclasses
 import json
 import uuid
 
@@ -22,17 +21,22 @@ from qa_tracker.services.wording_findings import PROBLEMS
 from tests import builders
 
 
-@pytest.fixture
-def ward(shared_ward):
-    """The ward after a check, a countersigned look and a checkpoint, its guards dropped."""
-    builders.submitted(shared_ward.check, shared_ward.technician, lens_grade="amber")
-    checkpoints.make(at=now())
-    states.quarantine(device=shared_ward.scanner.uid, seen="Fan loud", actor=shared_ward.user, at=now())
+@pytest.fixture(scope="module")
+def unguarded(ward_of_the_module):
+    """The file's database without its guards."""
     connection.check_constraints()
     maker = {"sqlite": guards_sqlite, "postgresql": guards_postgresql}[connection.vendor]
     with connection.cursor() as cursor:
         for name in guards.statements(connection):
             cursor.execute(maker.drop(name))
+
+
+@pytest.fixture
+def ward(unguarded, shared_ward):
+    """The ward after a check, a checkpoint and a quarantine."""
+    builders.submitted(shared_ward.check, shared_ward.technician, lens_grade="amber")
+    checkpoints.make(at=now())
+    states.quarantine(device=shared_ward.scanner.uid, seen="Fan loud", actor=shared_ward.user, at=now())
     return shared_ward
 
 
@@ -83,9 +87,9 @@ def rebuilt_head():
 
 
 def cut_tail(ward):
-    """Everything after the check's plan is taken away, with its rows, and the head made to fit."""
+    """The quarantine and the check are taken away with their rows, and the head made to fit."""
     size = Leaf.objects.count() - 2
-    for model in (Fault, Verdict, Reading, Signature, Submission):
+    for model in (Fault, Verdict, Reading, Signature, Submission, Version):
         for pk in model.objects.filter(leaf__seq__gte=size).values_list("pk", flat=True):
             remove(model, pk)
     for seq in Leaf.objects.filter(seq__gte=size).values_list("seq", flat=True):
@@ -115,7 +119,7 @@ def leaf_and_head_before_the_checkpoint(ward):
 def forged_checkpoint(ward):
     size, root = ledger.state()
     said = checkpoints.Checkpoint(settings.LEDGER_ORIGIN, size, root)
-    note = sign_checkpoint(said, dataclasses.replace(make_note_key(keys.ledger_key().name)))
+    note = sign_checkpoint(said, make_note_key(keys.ledger_key().name))
     Checkpoint.objects.create(size=size, root=root, at=now(), note=note)
 
 
