@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+import hashlib
 import os
 from pathlib import Path
 
@@ -27,7 +28,6 @@ def make(*, at: dt.datetime) -> CheckpointRow:
         return newest
     check_continues(newest, size)
     note = sign_checkpoint(Checkpoint(settings.LEDGER_ORIGIN, size, root), ledger_key())
-    check_outside(size, note)
     ledger.keep_checkpoint(size=size, root=root, at=at, note=note)
     copy_out(size, note)
     return CheckpointRow(size, root, at, note)
@@ -41,24 +41,17 @@ def check_continues(newest: CheckpointRow | None, size: int) -> None:
         raise Conflict("ledger.checkpoint_contradicted", size=newest.size)
 
 
-def _place(size: int) -> Path:
-    return Path(settings.DATA_DIR) / "checkpoints" / f"{size:012d}.checkpoint"
-
-
-def check_outside(size: int, note: str) -> None:
-    """Refuse when another checkpoint of that size lies outside, as after an old backup was put back.
-
-    It is then the only witness of what was there, and is not written over.
-    """
-    path = _place(size)
-    if path.exists() and path.read_text(encoding="utf-8") != note:
-        raise Conflict("ledger.checkpoint_contradicted", size=size)
-
-
 def copy_out(size: int, note: str) -> Path:
-    """Copy a checkpoint to the folder outside the database, durably."""
-    path = _place(size)
-    path.parent.mkdir(parents=True, exist_ok=True)
+    """Copy a checkpoint to the folder outside the database, durably.
+
+    Another one of that size, as after an old backup was put back, is the only witness of what was there: it is
+    left as it is and the new one laid beside it.
+    """
+    folder = Path(settings.DATA_DIR) / "checkpoints"
+    folder.mkdir(parents=True, exist_ok=True)
+    path = folder / f"{size:012d}.checkpoint"
+    if path.exists() and path.read_text(encoding="utf-8") != note:
+        path = folder / f"{size:012d}-{hashlib.sha256(note.encode()).hexdigest()[:16]}.checkpoint"
     fresh = path.with_suffix(f".{os.getpid()}")
     with fresh.open("w", encoding="utf-8") as file:
         file.write(note)
