@@ -12,9 +12,11 @@ from qa_tracker.core import decimals
 from qa_tracker.core.canonical import canonical
 from qa_tracker.core.errors import Conflict, Invalid
 from qa_tracker.core.library_shapes import ARRAY_KINDS, CONTACT_CLASSES
+from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records import ledger
 from qa_tracker.records.models import (
     Aperture,
+    Check,
     Condition,
     Device,
     Location,
@@ -65,10 +67,11 @@ def register_scanner(
 ) -> Device:
     """Enter a scanner, awaiting acceptance. Writes Device, ScannerFacts, Placement; leaf ``device.registered``.
 
-    Refused: role, a serial already there, an unknown protection class.
+    Refused: role, a serial already there, an unknown protection class, a room of another site.
     """
     _one_of(protection_class, PROTECTION_CLASSES, "protection_class")
     check_may(actor, "device.register", _site_id(place), at)
+    _check_place(place)
     with ledger.command("device.registered", actor=actor, at=at) as act:
         return add_scanner(act, identity, place, software_version, protection_class)
 
@@ -110,14 +113,16 @@ def register_probe(
     """Enter a probe, awaiting acceptance. Writes Device, ProbeFacts, Aperture, Placement.
 
     Leaf ``device.registered``. ``apertures`` are names with numbers of elements. Refused: role, a serial
-    already there, an unknown class, no aperture.
+    already there, an unknown class, no aperture or two of one name, a room or scanner of another site.
     """
     _one_of(array_kind, ARRAY_KINDS, "array_kind")
     _one_of(contact_class, CONTACT_CLASSES, "contact_class")
     _one_of(applied_part, APPLIED_PARTS, "applied_part")
     if not apertures:
         raise Invalid("probe.aperture_missing", field="apertures")
+    _check_apertures([name for name, _elements in apertures])
     check_may(actor, "device.register", _site_id(place), at)
+    _check_place(place)
     facts = ProbeFacts(
         array_kind=array_kind, contact_class=contact_class, applied_part=applied_part, wireless=wireless
     )
@@ -179,6 +184,22 @@ def _site_id(place: Place) -> int | None:
     return place.site.id if place.site else None
 
 
+def _check_place(place: Place) -> None:
+    """Refuse a room or a scanner of another site, and a probe plugged to what is no scanner."""
+    room, scanner, site_id = place.location, place.scanner, _site_id(place)
+    if room is not None and site_id not in (None, room.site_id):
+        raise Invalid("device.place_mixed", field="location")
+    if scanner is not None and (scanner.kind != "scanner" or site_id not in (None, scanner.site_id)):
+        raise Invalid("device.place_mixed", field="scanner")
+
+
+def _check_apertures(names: list[str]) -> None:
+    for name in names:
+        required(name, "probe.aperture_missing", "apertures")
+        if names.count(name) > 1:
+            raise Invalid("probe.aperture_twice", field="apertures", name=name)
+
+
 def _one_of(value: str, known: tuple[str, ...], name: str) -> None:
     if value not in known:
         raise Invalid("device.unknown_word", field=name, value=value, known=", ".join(known))
@@ -199,17 +220,21 @@ def _told(identity: Identity, place: Place) -> dict[str, object]:
 def move(*, device: uuid.UUID, place: Place, reason: str, actor: Person, at: dt.datetime) -> None:
     """End a device's placement and begin the next. Writes Placement twice and Device; leaf ``device.placed``.
 
-    Refused: role at either end, the place it already has.
+    What is still to be done on the device is from then on the new site's to do. Refused: role at either end, the
+    place it already has, a room or scanner of another site.
     """
     row = find_device(actor, device, at)
     check_may(actor, "device.place", row.site_id, at)
     check_may(actor, "device.place", _site_id(place), at)
+    _check_place(place)
     open_placement = Placement.objects.get(device=row, ended_at=None)
     now_at = (row.site_id, row.location_id, row.scanner_id, row.pool_id)
     if now_at == tuple(getattr(each, "id", None) for each in _where(place).values()):
         raise Conflict("device.already_there", field="site")
     with ledger.command("device.placed", actor=actor, at=at, reason=reason) as act:
         place_device(act, row, open_placement, place, reason)
+        for check in Check.objects.filter(device=row, state__in=CHECK_AWAITED).exclude(site=place.site):
+            act.change(check, site=place.site)
 
 
 def place_device(

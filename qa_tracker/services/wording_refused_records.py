@@ -67,6 +67,10 @@ DEVICES: Final = {
     "device.software_missing": N_("The software version is missing. Enter it as the scanner shows it."),
     "device.note_missing": N_("Say why the device changes its state: whoever looks for it will read this."),
     "probe.aperture_missing": N_("A probe has at least one aperture. Enter its name and number of elements."),
+    "probe.aperture_twice": N_("Two apertures are called “%(name)s”. Give each a name of its own."),
+    "device.place_mixed": N_(
+        "That room or scanner is not at this site, or is no scanner. Choose one of the site the device goes to."
+    ),
     "condition.name_missing": N_(
         "The condition has no name. Name it as the preset is called on the scanner."
     ),
@@ -109,8 +113,11 @@ FAULTS: Final = {
     "restore.proof_suspends": N_(
         "That check itself gives suspension, so it proves no repair. Mend the fault and measure again."
     ),
+    "restore.proof_unread": N_(
+        "Nothing was read in that check, so it proves no repair. Measure, then restore the device."
+    ),
     "restore.proof_too_old": N_(
-        "That check was submitted before the fault was opened, so it proves nothing about it. Measure again."
+        "That check was measured before the fault was opened, so it proves nothing about it. Measure again."
     ),
 }
 PEOPLE: Final = {

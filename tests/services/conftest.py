@@ -18,10 +18,13 @@ def own_folder(settings, tmp_path):
 
 
 @pytest.fixture(scope="module")
-def ward_of_the_module(engine, django_db_setup, django_db_blocker):
-    """A ward built once for a file whose tests all take ``shared_ward``; gone after the last of them."""
+def ward_of_the_module(request, engine, django_db_setup, django_db_blocker):
+    """A ward built once for a file whose tests all take ``shared_ward``; gone after the last of them.
+
+    A file may name in ``WARD`` the procedures it is built with.
+    """
     with django_db_blocker.unblock(), transaction.atomic():
-        yield builders.ward()
+        yield builders.ward(*getattr(request.module, "WARD", ()))
         transaction.set_rollback(True)
 
 
