@@ -12,10 +12,12 @@ from django.contrib.auth.password_validation import validate_password
 from django.core.exceptions import ValidationError
 from django.core.validators import validate_email
 
+from qa_tracker.core import roles
 from qa_tracker.core.errors import Forbidden, Invalid, NotFound
 from qa_tracker.core.roles import Grant, check_grant
 from qa_tracker.records import ledger
 from qa_tracker.records.models import ApiToken, Credential, Person, RoleGrant, Site
+from qa_tracker.records.queries.scope import grants_of
 from qa_tracker.services import guards
 from qa_tracker.services.finding import person as find_person
 from qa_tracker.services.guards import check_may, required
@@ -136,10 +138,15 @@ def end_role(*, grant: uuid.UUID, until_on: dt.date, reason: str, actor: Person,
 
 
 def set_password(*, person: uuid.UUID, password: str, actor: Person, at: dt.datetime) -> None:
-    """Set a password: one's own, or as an administrator. Leaf ``person.password_set`` (never the password)."""
+    """Set a password: one's own, or as an administrator. Leaf ``person.password_set`` (never the password).
+
+    Refused: not an administrator wherever the person holds a role, since whoever sets it can sign in with it.
+    """
     holder = find_person(person)
     if holder.pk != actor.pk:
-        check_may(actor, "person.manage", holder.duties_site_id, at)
+        held = roles.grants_on(grants_of(holder.pk), at.date())
+        for site_id in {holder.duties_site_id, *(grant.site_id for grant in held)}:
+            check_may(actor, "person.manage", site_id, at)
     with ledger.command("person.password_set", actor=actor, at=at) as act:
         act.about(holder)
         act.tell({"person": str(holder.uid)})
