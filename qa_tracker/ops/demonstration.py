@@ -13,7 +13,7 @@ from qa_tracker.services.demo import people
 def load_when_empty(progress: OutputWrapper) -> None:
     """Load the demo into a database that nobody can sign in to yet; never into one that is in use."""
     if not any_person():
-        call_command("load_demo", stdout=progress)
+        call_command("load_demo", stdout=progress, verbosity=0)
 
 
 def demo_people() -> list[dict[str, str]]:

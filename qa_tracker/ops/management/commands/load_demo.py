@@ -39,13 +39,15 @@ class Command(BaseCommand):
             loaded = demo.load(at=now(), seed=options["seed"], size=size)
         except DomainError as error:
             raise CommandError(refusal(error)) from error
-        self.say(asdict(loaded) | {"seconds": round(time.perf_counter() - began, 1)}, options["json"])
+        told = asdict(loaded) | {"seconds": round(time.perf_counter() - began, 1)}
+        self.say(told, options["json"], with_people=options["verbosity"] > 0)
 
-    def say(self, loaded: dict[str, Any], as_json: bool) -> None:
+    def say(self, loaded: dict[str, Any], as_json: bool, *, with_people: bool) -> None:
         """What was loaded, for a program or for a person."""
         if as_json:
             self.stdout.write(json.dumps(loaded))
             return
         told = "{scanners} scanners, {probes} probes, {checks} checks and {readings} readings in {seconds} s."
         self.stdout.write(told.format(**loaded))
-        self.stdout.write(people_table(demo.people()))
+        if with_people:
+            self.stdout.write(people_table(demo.people()))
