@@ -89,8 +89,9 @@ def restore(
 ) -> None:
     """Restore a device to use, signed. Writes Device, Signature, and closes the faults the proof answers.
 
-    Leaf ``device.restored``. Refused: role, wrong password, state, a device never accepted, an open suspension fault without a proving
-    check, a proving check that is not of this device, not submitted, or itself beyond the suspension level.
+    Leaf ``device.restored``. Refused: role, wrong password, state, a device never accepted, an open suspension
+    fault without a proving check, a proving check that is not of this device, not submitted, without a reading,
+    measured before the fault was opened, or itself beyond the suspension level.
     """
     row = find_device(actor, device, at)
     check_may(actor, "device.restore", row.site_id, at)
@@ -139,11 +140,19 @@ def _proof(device: Device, uid: uuid.UUID | None) -> Check | None:
         raise Invalid("restore.proof_unknown", field="proving_check")
     if check.verdict == "suspension":
         raise Conflict("restore.proof_suspends", field="proving_check")
+    _check_proves(device, check)
+    return check
+
+
+def _check_proves(device: Device, check: Check) -> None:
+    """Refuse a check in which nothing was read, or that was measured or signed before the fault was opened."""
+    made = check.submissions.order_by("-number").first()
+    if made is None or not made.readings.exists():
+        raise Conflict("restore.proof_unread", field="proving_check")
     newest = Fault.objects.filter(device=device, grade="suspension").exclude(state="closed")
     opened = newest.order_by("-opened_at").first()
-    if opened is not None and check.submitted_at is not None and check.submitted_at <= opened.opened_at:
+    if opened is not None and min(made.measured_at, made.recorded_at) <= opened.opened_at:
         raise Conflict("restore.proof_too_old", field="proving_check")
-    return check
 
 
 def accept(*, device: uuid.UUID, remark: str, password: str, actor: Person, at: dt.datetime) -> None:
