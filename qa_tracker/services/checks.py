@@ -26,13 +26,7 @@ from qa_tracker.records.models import (
 from qa_tracker.records.queries import devices, library, submissions
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.services import finding, judging, owed, plans, recording
-from qa_tracker.services.guards import (
-    check_may,
-    check_password,
-    check_shown,
-    required,
-    role_for,
-)
+from qa_tracker.services.guards import check_may, check_password, check_shown, required, role_for
 from qa_tracker.services.items import Item, items_of, surroundings
 from qa_tracker.services.judging import Entry, Instructions, Judged, MeasuredWith
 from qa_tracker.services.recording import Facts
@@ -176,10 +170,8 @@ def _with_partial_reason(laid: Sheet, typed: Typed) -> dict[str, Entry]:
     """Items left empty take the reason given for all of them."""
     entries = dict(typed.entries)
     if typed.partial_reason:
-        for item in laid.items:
-            entry = entries.get(item.key, Entry())
-            if item.spec.required and not (entry.text or entry.not_tested or entry.qualifier == "not_seen"):
-                entries[item.key] = replace(entry, not_tested=typed.partial_reason)
+        for item in judging.left_empty(laid.items, entries):
+            entries[item.key] = replace(entries.get(item.key, Entry()), not_tested=typed.partial_reason)
     return entries
 
 
@@ -280,7 +272,8 @@ def _submit(
             role=role,
             shown_sha256=seen.shown_sha256,
         )
-        if row.plan is not None and row.plan.ended_at is None:
+        # Done again after it was sent back, it has opened the next occurrence already.
+        if row.plan is not None and row.plan.ended_at is None and submission.number == 1:
             done_on = recording.local_day(row, seen.facts.measured_at or at)
             plans.open_next(act, row.plan, after_on=row.due_on, done_on=done_on)
         recording.open_faults(act, row, submission, seen.judged, actor, quarantine=quarantine)

@@ -135,7 +135,8 @@ def judge_all(
         except DomainError as error:
             errors.append(error)
     if whole:
-        errors += list(_lacking(items, entries)) + list(_doubtful(items, entries, exact))
+        errors += [Invalid("reading.missing", field=item.key) for item in left_empty(items, entries)]
+        errors += list(_doubtful(items, entries, exact))
     if errors:
         raise SeveralInvalid(tuple(errors))
     judged = [
@@ -165,7 +166,7 @@ def read_entry(item: Item, entry: Entry) -> Exact | None:
     ------
     Invalid
         ``number.*``, ``reading.unit_wrong``, ``reading.qualifier_not_allowed``, ``reading.grade_unknown``,
-        ``reading.both``, ``reading.reason_unknown``
+        ``reading.seen_and_not_seen``, ``reading.both``, ``reading.reason_unknown``
     """
     if entry.not_tested:
         if entry.text:
@@ -175,6 +176,8 @@ def read_entry(item: Item, entry: Entry) -> Exact | None:
         return None
     if not entry.text and entry.qualifier != "not_seen":
         return None
+    if entry.text and entry.qualifier == "not_seen":
+        raise Invalid("reading.seen_and_not_seen", field=item.key)
     if entry.qualifier not in item.spec.qualifiers:
         raise Invalid(
             "reading.qualifier_not_allowed",
@@ -205,7 +208,7 @@ def _answered(entry: Entry) -> bool:
     return bool(entry.text or entry.not_tested or entry.qualifier == "not_seen")
 
 
-def _lacking(items: Sequence[Item], entries: Mapping[str, Entry]) -> list[DomainError]:
+def left_empty(items: Sequence[Item], entries: Mapping[str, Entry]) -> list[Item]:
     """Required items without a value or a reason; of items that share a group one answer is enough."""
     answered = {
         (item.spec.one_of, item.series[1:])
@@ -213,7 +216,7 @@ def _lacking(items: Sequence[Item], entries: Mapping[str, Entry]) -> list[Domain
         if item.spec.one_of and _answered(entries.get(item.key, EMPTY))
     }
     return [
-        Invalid("reading.missing", field=item.key)
+        item
         for item in items
         if (item.spec.required or item.spec.one_of)
         and not _answered(entries.get(item.key, EMPTY))

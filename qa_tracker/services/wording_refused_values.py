@@ -48,6 +48,7 @@ READINGS: Final = {
         "Nothing is said of the condition “%(condition)s”. Confirm that it is unchanged, or enter what differs."
     ),
     "reading.both": N_("There is a value and also a reason for not testing. Keep one of the two."),
+    "reading.seen_and_not_seen": N_("There is a value and also “not seen”. Keep one of the two."),
     "reading.reason_unknown": N_("“%(reason)s” is no reason for not testing. Choose one of those listed."),
     "reading.qualifier_not_allowed": N_(
         "“%(qualifier)s” can't be said of this measurand. It takes one of: %(allowed)s."
