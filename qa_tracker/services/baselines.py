@@ -76,6 +76,7 @@ def set_values(
         raise Invalid("baseline.values_missing", field="values")
     specs = known_measurands(row.site_id)
     read = [(value, _read(row, value, specs)) for value in values]
+    parts = {value: _part(row, value, specs[value.measurand]) for value in values}
     check_password(actor, password)
     source = _source(row, find_test_object(actor, test_object, at))
     role = role_for(actor, "baseline.set", row.site_id or actor.duties_site_id, at)
@@ -85,7 +86,7 @@ def set_values(
                 act,
                 row,
                 specs[value.measurand],
-                _part(row, value),
+                parts[value],
                 exact,
                 value.qualifier,
                 source,
@@ -193,11 +194,18 @@ def refuse_beyond_absolute(spec: MeasurandSpec, exact: Exact, site_id: int | Non
             )
 
 
-def _part(device: Device, value: Value) -> tuple[Aperture | None, Condition | None]:
+def _part(device: Device, value: Value, spec: MeasurandSpec) -> tuple[Aperture | None, Condition | None]:
+    """Where a value belongs. One that names no part, where checks ask at each, would be compared with nothing."""
     aperture = Aperture.objects.filter(device=device, uid=value.aperture or NO_UID).first()
     condition = Condition.objects.filter(device=device, uid=value.condition or NO_UID).first()
     if (value.aperture and aperture is None) or (value.condition and condition is None):
         raise Invalid("baseline.part_unknown", field=value.measurand)
+    asked = (
+        spec.per == "aperture" and Aperture.objects.filter(device=device).exists(),
+        spec.by_condition and Condition.objects.filter(device=device).exists(),
+    )
+    if asked != (aperture is not None, condition is not None):
+        raise Invalid("baseline.part_wrong", field=value.measurand, measurand=spec.name)
     return aperture, condition
 
 

@@ -79,6 +79,9 @@ DEVICES: Final = {
         "“%(measurand)s” is not a number that a procedure adopted here asks for. Choose one that is."
     ),
     "baseline.part_unknown": N_("This device has no such aperture or condition. Choose one of its own."),
+    "baseline.part_wrong": N_(
+        "“%(measurand)s” isn't read there. Name the aperture and condition at which checks of this device ask for it."
+    ),
     "baseline.reason_missing": N_("A baseline is set with a reason. Say why it is set now."),
     "baseline.beyond_limit": N_(
         "%(value)s is itself beyond the %(level)s of %(criterion)s, and no baseline may hide a fault. Mend the "

@@ -215,8 +215,8 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
     },
     "plans.end": lambda w: {"plan": check(w).plan.uid, "reason": "sold", "actor": w.physicist},
     "baselines.set_values": lambda w: {
-        "device": probe(w), "values": [Value("reverberation_depth", "8.5")], "test_object": None,
-        "reason": "acceptance", "password": PASSWORD, "actor": w.physicist,
+        **measured(w), "test_object": None, "reason": "acceptance", "password": PASSWORD,
+        "actor": w.physicist,
     },
     "baselines.adopt_submission": lambda w: {
         "submission": with_numbers(w), "reason": "acceptance", "password": PASSWORD, "actor": w.physicist,
@@ -276,6 +276,11 @@ WITHOUT_A_LEAF = {
     "mail.deliver_waiting": "the state of a mail is no record",
 }
 BULK_DOORS = ("history", "demo_")  # their leaves are appended together, by the door they come through
+
+
+def measured(ward: Ward) -> Given:
+    device = builders.probe(ward.physicist, place(ward), serial=f"C5-{next(numbers)}")
+    return {"device": device.uid, "values": [Value("reverberation_depth", "8.5", device.apertures.get().uid)]}
 
 
 def restorable(ward: Ward) -> uuid.UUID:
