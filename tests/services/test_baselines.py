@@ -76,7 +76,7 @@ REFUSED = {
         lambda w: [Value("penetration", "150")], {}, "baseline.part_wrong",
     ),
     "no condition where each is asked": (
-        without_its_condition, {}, "baseline.part_wrong",
+        lambda w: without_its_condition(w), {}, "baseline.part_wrong",
     ),
     "condition there is none of": (
         lambda w: [penetration(w, "150", condition=uuid.uuid4())], {}, "baseline.part_unknown",
