@@ -70,7 +70,9 @@ def device_content(
     made = submissions.submissions_of([row.id for row in done])
     first, last = leaf_range_of(device.uid)
     written = tuple(_check(writer, row, made.get(row.id, [])) for row in reversed(done) if _tells(row, made))
-    found = faults.faults_of_device(device.id)
+    signed = [_signature(writer, each) for each in submissions.signatures_of(device.uid)]
+    found = [(row, _fault(writer, row, signed)) for row in faults.faults_of_device(device.id)]
+    told_plans, told_baselines = _plans(writer, device, at), _baselines(writer, device)
     return frozen.DeviceDossier(
         uid=str(dossier_uid),
         title=_("Audit dossier of one device"),
@@ -90,7 +92,7 @@ def device_content(
         ),
         labels={key: _(text) for key, text in ENGLISH.items()},
         demo_key=demo_key,
-        identity=_identity(device),
+        identity=(*_identity(device), *_accepted(signed)),
         placements=tuple(
             frozen.Placement(each.place, writer.day(each.started_at), writer.day(each.ended_at), each.reason)
             for each in devices.placements_of(device.id)
@@ -100,12 +102,20 @@ def device_content(
             for each in devices.apertures_of(device.id)
         ),
         software=_software(device, writer),
-        plans=_plans(writer, device, at),
+        plans=told_plans,
         checks=written,
-        faults=tuple(_fault(writer, row) for row in found),
-        baselines=_baselines(writer, device),
+        faults=tuple(fault for _row, fault in found),
+        baselines=told_baselines,
         cautions=_cautions(writer),
-        people=_people(written, found),
+        people=_people(
+            {row.opened_by for row, _fault in found}
+            | {action.who for _row, fault in found for action in fault.actions}
+            | {each.name for check in written for each in check.signatures}
+            | {check.performer for check in written}
+            | {each.name for each in signed}
+            | {plan.who for plan in told_plans}
+            | {baseline.set_by for baseline in told_baselines}
+        ),
     )
 
 
@@ -134,6 +144,13 @@ def _identity(device: DeviceRow) -> tuple[frozen.Row, ...]:
         *((wording.register_word(name), device.register.get(name, "")) for name in REGISTER),
     ]
     return tuple(frozen.Row(label, value) for label, value in facts if value)
+
+
+def _accepted(signed: list[frozen.Signature]) -> list[frozen.Row]:
+    """Who accepted the device into use, each time."""
+    meaning = wording.meaning_word("accepted")
+    found = [each for each in signed if each.meaning == meaning]
+    return [frozen.Row(_("Accepted into use"), f"{each.at}, {each.name}, {each.role}") for each in found]
 
 
 def _software(device: DeviceRow, writer: Writer) -> tuple[frozen.SoftwareVersion, ...]:
@@ -284,7 +301,8 @@ def _signature(writer: Writer, row: SignatureRow) -> frozen.Signature:
     )
 
 
-def _fault(writer: Writer, row: FaultRow) -> frozen.Fault:
+def _fault(writer: Writer, row: FaultRow, signed: list[frozen.Signature]) -> frozen.Fault:
+    closed_at, meaning = writer.moment(row.closed_at), wording.meaning_word("restored to use")
     actions = tuple(
         frozen.Action(
             writer.moment(each.at),
@@ -298,12 +316,13 @@ def _fault(writer: Writer, row: FaultRow) -> frozen.Fault:
         grade=wording.level_word(row.grade),
         opened_at=writer.moment(row.opened_at),
         state=wording.fault_state_word(row.state),
-        closed_at=writer.moment(row.closed_at),
+        closed_at=closed_at,
         seen=row.seen,
         downtime=_downtime(row),
         look_back=row.look_back,
         proof=_proof(row),
         actions=actions,
+        signatures=tuple(each for each in signed if (each.at, each.meaning) == (closed_at, meaning)),
     )
 
 
@@ -359,10 +378,8 @@ def _cautions(writer: Writer) -> tuple[str, ...]:
     return cautions.texts(codes)
 
 
-def _people(written: tuple[frozen.Check, ...], found: list[FaultRow]) -> tuple[frozen.Person, ...]:
-    """Everybody named, with the roles they hold."""
-    named = {each.name for check in written for each in check.signatures}
-    named |= {check.performer for check in written if check.performer} | {row.opened_by for row in found}
+def _people(named: set[str]) -> tuple[frozen.Person, ...]:
+    """Everybody named, with the roles they hold or held."""
     rows = []
     for person in people.list_people(EVERYTHING):
         if person.name in named:
