@@ -80,6 +80,8 @@ def publish_criteria(*, document: Mapping[str, Any], actor: Person | None, at: d
     spec = library.criteria_set(document)
     known = CriteriaSet.objects.filter(code=spec.set, edition=spec.edition).first()
     if known is not None:
+        if not _is_as_published(known, document):
+            raise Conflict("edition.number_taken", number=spec.edition)
         return known
     with ledger.command("criteria.published", actor=actor, at=at) as act:
         row = act.insert(
@@ -102,6 +104,13 @@ def publish_criteria(*, document: Mapping[str, Any], actor: Person | None, at: d
         act.about(None)
         act.tell({"set": spec.set, "edition": spec.edition, "criteria": [c.id for c in spec.criteria]})
     return row
+
+
+def _is_as_published(row: CriteriaSet, document: Mapping[str, Any]) -> bool:
+    kept = dict(row.criteria.values_list("code", "content"))
+    given = {content["id"]: canonical(content).decode() for content in document["criteria"]}
+    words = (row.title, row.source, row.note)
+    return kept == given and words == tuple(document.get(name, "") for name in ("title", "source", "note"))
 
 
 def adopt_edition(

@@ -100,6 +100,7 @@ def add_holidays(*, site: Site, days: dict[dt.date, str], actor: Person, at: dt.
 def create_pool(*, name: str, sites: list[Site], actor: Person, at: dt.datetime) -> Pool:
     """Make a pool of devices shared by sites. Writes Pool and PoolMember; leaf ``pool.created``."""
     check_may(actor, "site.manage", None, at)
+    sites = list({site.pk: site for site in sites}.values())
     if len(sites) < 2:
         raise Invalid("pool.needs_two_sites", field="sites")
     with ledger.command("pool.created", actor=actor, at=at) as act:
