@@ -2,15 +2,27 @@
 
 from __future__ import annotations
 
+import copy
 import uuid
 
 import pytest
+from django.db import transaction
+from django.test import override_settings
 from django.utils.timezone import now
 
 from qa_tracker.documents.device_dossier import device_dossier_pdf
 from qa_tracker.documents.frozen import content_bytes, from_bytes
 from qa_tracker.records.models import Aperture
-from qa_tracker.services import baselines, checkpoints, checks, devices, dossier_content, faults, states
+from qa_tracker.services import (
+    baselines,
+    checkpoints,
+    checks,
+    devices,
+    dossier_content,
+    faults,
+    plans,
+    states,
+)
 from qa_tracker.services.baselines import Value
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Place
@@ -33,9 +45,18 @@ def content(ward, device=None):
     )  # fmt: skip
 
 
-@pytest.fixture
-def eventful(ward):
-    """A probe that was moved, quarantined, mended, proven, restored, and has a baseline."""
+@pytest.fixture(scope="module")
+def eventful(ward_of_the_module, tmp_path_factory):
+    """The content for a probe with a life, frozen once: nothing in it changes any more."""
+    folder = tmp_path_factory.mktemp("eventful")
+    with override_settings(DATA_DIR=folder, MEDIA_ROOT=folder), transaction.atomic():
+        frozen = live_through(copy.deepcopy(ward_of_the_module))
+        transaction.set_rollback(True)
+    return frozen
+
+
+def live_through(ward):
+    """A probe is quarantined, mended, proven, restored, given a baseline and moved."""
     fault = states.quarantine(device=ward.probe.uid, seen="Lens cracked", actor=ward.user, at=now())
     faults.act_on(
         fault=fault.uid,
@@ -86,7 +107,7 @@ def test_placements_are_told_with_both_ends(eventful):
 
 def test_plan_is_told_with_its_next_due_day(eventful, ward):
     (plan,) = eventful.plans
-    following = ward.check.plan.checks.get(state="scheduled")
+    following = plans.due_after(ward.check.plan, ward.check.due_on)
     assert (plan.procedure, plan.who) == ("Monthly in-air and visual", "Ifeoma Castellane")
     assert (plan.due_on, bool(plan.due), bool(plan.recurrence)) == (following.due_on.isoformat(), True, True)
 
