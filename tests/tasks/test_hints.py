@@ -64,6 +64,8 @@ def test_hint_is_let_go_and_logged_when_no_broker_runs(
     tmp_path: Path, monkeypatch: pytest.MonkeyPatch, caplog: pytest.LogCaptureFixture
 ) -> None:
     monkeypatch.setattr(app.conf, "broker_write_url", celery_url(tmp_path / "none.sock"))
+    # Another test's logging set-up in this process may have put the logger to sleep.
+    monkeypatch.setattr(logging.getLogger("qa_tracker.tasks.hints"), "disabled", False)
     begun = time.monotonic()
     with caplog.at_level(logging.INFO, logger="qa_tracker.tasks.hints"):
         taken = send_hint(SWEEP)
