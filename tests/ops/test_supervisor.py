@@ -23,6 +23,8 @@ Start = Callable[[str], subprocess.Popen[str]]
 def start(tmp_path: Path) -> Iterator[Start]:
     """Start a tree on the test's folder and wait for its first word."""
     begun = []
+    # Under nohup SIGHUP is ignored, and whatever is started inherits that.
+    before = signal.signal(signal.SIGHUP, signal.SIG_DFL)
 
     def start_one(kind: str) -> subprocess.Popen[str]:
         command = (sys.executable, str(TREE), str(tmp_path), kind)
@@ -31,6 +33,7 @@ def start(tmp_path: Path) -> Iterator[Start]:
         return begun[-1]
 
     yield start_one
+    signal.signal(signal.SIGHUP, before)
     for process in begun:
         process.send_signal(signal.SIGTERM)
         process.communicate(timeout=20)
