@@ -49,6 +49,7 @@ def _outside_sign_in(view: View) -> View:
             return wrong_method(str(request.method), answer["Allow"])
         return answer
 
+    # Django reads both from the function itself, which has no such attributes by its type.
     answered.csrf_exempt = True  # type: ignore[attr-defined]
     answered.login_required = False  # type: ignore[attr-defined]
     return answered

@@ -41,7 +41,7 @@ def canonical(value: object) -> bytes:
     try:
         if plainly_ordered:
             return _PLAIN.encode(value).encode()
-        return rfc8785.dumps(value)  # type: ignore[no-any-return, arg-type, unused-ignore]
+        return rfc8785.dumps(value)  # type: ignore[no-any-return, arg-type, unused-ignore]  # checked above
     except (ValueError, TypeError) as error:
         raise Invalid("canonical.not_json", what=str(error)) from error
 

@@ -155,9 +155,17 @@ class History:
         self.writer = HistoryWriter()
         self.acts: list[Act] = []
 
-    def act(self, kind: str, *, actor: Person | None, at: dt.datetime, **more: object) -> Act:
+    def act(
+        self,
+        kind: str,
+        *,
+        actor: Person | None,
+        at: dt.datetime,
+        reason: str = "",
+        measured_at: dt.datetime | None = None,
+    ) -> Act:
         """Begin the next command of the past; its leaf is appended with the others, in order of moments."""
-        act = Act(kind, actor, at, self.writer, origin=self.origin, **more)  # type: ignore[arg-type]
+        act = Act(kind, actor, at, self.writer, reason, self.origin, measured_at)
         self.acts.append(act)
         return act
 

@@ -31,7 +31,7 @@ class SealKey:
     @property
     def certificate_der(self) -> bytes:
         """Give the certificate, to be kept as the trusted one."""
-        return self.certificate.dump()  # type: ignore[no-any-return, unused-ignore]
+        return self.certificate.dump()  # type: ignore[no-any-return, unused-ignore]  # untyped
 
 
 def make_demo_key(common_name: str, password: str, moment: datetime) -> bytes:

@@ -20,7 +20,7 @@ from qa_tracker.seals.keys import SealKey
 FIELD = "LeadlineSeal"
 
 
-class SignerAt(PdfSigner):  # type: ignore[misc, unused-ignore]
+class SignerAt(PdfSigner):  # type: ignore[misc, unused-ignore]  # the library is untyped
     """Signs at a given moment: the library would ask the clock of the machine."""
 
     def __init__(self, moment: datetime, *arguments: Any, **options: Any) -> None:

@@ -68,7 +68,6 @@ def device_content(
     writer = Writer(site.time_zone if site else "UTC")
     done = checks.checks_of_device(device.id, most=LAST_CHECKS)
     made = submissions.submissions_of([row.id for row in done])
-    first, last = leaf_range_of(device.uid)
     written = tuple(_check(writer, row, made.get(row.id, [])) for row in reversed(done) if _tells(row, made))
     signed = [_signature(writer, each) for each in submissions.signatures_of(device.uid)]
     found = [(row, _fault(writer, row, signed)) for row in faults.faults_of_device(device.id)]
@@ -83,24 +82,12 @@ def device_content(
         frozen_at=writer.moment(at),
         as_of=writer.moment(at),
         period=_period(writer, done, at),
-        ledger=frozen.LedgerState(
-            origin=ledger_key().name,
-            size=str(checkpoint.size),
-            root=checkpoint.root.hex(),
-            first_leaf="" if first is None else str(first),
-            last_leaf="" if last is None else str(last),
-        ),
+        ledger=_ledger(device, checkpoint),
         labels={key: _(text) for key, text in ENGLISH.items()},
         demo_key=demo_key,
         identity=(*_identity(device), *_accepted(signed)),
-        placements=tuple(
-            frozen.Placement(each.place, writer.day(each.started_at), writer.day(each.ended_at), each.reason)
-            for each in devices.placements_of(device.id)
-        ),
-        apertures=tuple(
-            frozen.Aperture(each.name, _("%(n)s elements") % {"n": each.elements} if each.elements else "")
-            for each in devices.apertures_of(device.id)
-        ),
+        placements=_placements(writer, device),
+        apertures=_apertures(device),
         software=_software(device, writer),
         plans=told_plans,
         checks=written,
@@ -116,6 +103,31 @@ def device_content(
             | {plan.who for plan in told_plans}
             | {baseline.set_by for baseline in told_baselines}
         ),
+    )
+
+
+def _ledger(device: DeviceRow, checkpoint: CheckpointRow) -> frozen.LedgerState:
+    first, last = leaf_range_of(device.uid)
+    return frozen.LedgerState(
+        origin=ledger_key().name,
+        size=str(checkpoint.size),
+        root=checkpoint.root.hex(),
+        first_leaf="" if first is None else str(first),
+        last_leaf="" if last is None else str(last),
+    )
+
+
+def _placements(writer: Writer, device: DeviceRow) -> tuple[frozen.Placement, ...]:
+    return tuple(
+        frozen.Placement(each.place, writer.day(each.started_at), writer.day(each.ended_at), each.reason)
+        for each in devices.placements_of(device.id)
+    )
+
+
+def _apertures(device: DeviceRow) -> tuple[frozen.Aperture, ...]:
+    return tuple(
+        frozen.Aperture(each.name, _("%(n)s elements") % {"n": each.elements} if each.elements else "")
+        for each in devices.apertures_of(device.id)
     )
 
 

@@ -45,7 +45,7 @@ def _rebuilt(model: type[N], as_of: dt.datetime, wanted: dict[str, Any]) -> list
     numbers = dict(newest)
     rows = versions.order_by("subject_id").values_list("subject_id", "number", "columns")
     return [
-        noun_from(model, json.loads(columns))  # type: ignore[misc]
+        noun_from(model, json.loads(columns))  # type: ignore[misc]  # rebuilt by the model it was given
         for subject_id, number, columns in rows.iterator()
         if numbers[subject_id] == number
     ]
