@@ -9,6 +9,7 @@ EXEMPT: dict[str, str] = {
     "Credential": "changed by signing in; never part of a record",
     "ApiToken": "a credential; issuing and revoking write leaves of their own",
     "Draft": "what is typed and not yet signed",
+    "EditionDraft": "a next edition that is not yet published",
     "Digest": "the state of a mail under way: claim, lease and the server's reply",
     "NoticeMail": "which digest carries which notice",
     "NoticeSeen": "a reading mark",

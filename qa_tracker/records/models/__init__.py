@@ -1,11 +1,12 @@
 """Every table, by noun. The ledger's table is imported as a module, never re-exported: its door is records/ledger.py."""
 
 from qa_tracker.records.models import ledger as ledger
-from qa_tracker.records.models.baselines import Baseline
+from qa_tracker.records.models.baselines import Baseline, BaselineSetup
 from qa_tracker.records.models.checks import (
     Check,
     CheckPlan,
     Draft,
+    FurtherVerdict,
     NotTested,
     Reading,
     Submission,
@@ -25,8 +26,10 @@ from qa_tracker.records.models.library import (
     CriteriaSet,
     Criterion,
     Edition,
+    EditionDraft,
     Measurand,
     Procedure,
+    StatedUncertainty,
 )
 from qa_tracker.records.models.notices import Digest, Heartbeat, Notice, NoticeMail, NoticeSeen
 from qa_tracker.records.models.objects import Instrument, TestObject
@@ -35,9 +38,10 @@ from qa_tracker.records.models.sites import Holiday, Location, Pool, PoolMember,
 from qa_tracker.records.models.versions import Version
 
 __all__ = [
-    "Adoption", "Aperture", "ApiToken", "Baseline", "Check", "CheckPlan", "Condition", "Credential",
-    "CriteriaSet", "Criterion", "Device", "Digest", "Dossier", "Draft", "Edition", "Fault", "FaultAction",
-    "Heartbeat", "Holiday", "Instrument", "Location", "Measurand", "NotTested", "Notice", "NoticeMail",
-    "NoticeSeen", "Person", "Placement", "Pool", "PoolMember", "ProbeFacts", "Procedure", "Reading",
-    "RoleGrant", "ScannerFacts", "Signature", "Site", "Submission", "TestObject", "Verdict", "Version",
+    "Adoption", "Aperture", "ApiToken", "Baseline", "BaselineSetup", "Check", "CheckPlan", "Condition",
+    "Credential", "CriteriaSet", "Criterion", "Device", "Digest", "Dossier", "Draft", "Edition",
+    "EditionDraft", "Fault", "FaultAction", "FurtherVerdict", "Heartbeat", "Holiday", "Instrument",
+    "Location", "Measurand", "NotTested", "Notice", "NoticeMail", "NoticeSeen", "Person", "Placement",
+    "Pool", "PoolMember", "ProbeFacts", "Procedure", "Reading", "RoleGrant", "ScannerFacts", "Signature",
+    "Site", "StatedUncertainty", "Submission", "TestObject", "Verdict", "Version",
 ]  # fmt: skip

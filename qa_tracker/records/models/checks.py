@@ -184,6 +184,40 @@ class Verdict(Fact):
     instruction = models.TextField(blank=True)
 
 
+class FurtherVerdict(Fact):
+    """What another limit of the same measurand said, where several are judged and the worst decides."""
+
+    LEDGER_FORMS = {
+        1: (
+            "id", "verdict_of_id", "position", "verdict", "level", "criterion_id", "baseline_id", "reference",
+            "quantity", "uncertainty", "rule", "code", "parameters", "departure", "allowance", "used",
+        )
+    }  # fmt: skip
+
+    verdict_of = models.ForeignKey(Verdict, on_delete=models.DO_NOTHING, related_name="further")
+    position = models.PositiveSmallIntegerField()
+    verdict = models.CharField(max_length=16)
+    level = models.CharField(max_length=12, blank=True)
+    criterion = models.ForeignKey(Criterion, on_delete=models.DO_NOTHING, related_name="+", db_index=False)
+    baseline = models.ForeignKey(
+        Baseline, null=True, on_delete=models.DO_NOTHING, related_name="+", db_index=False
+    )
+    reference = models.CharField(max_length=40, blank=True)
+    quantity = models.CharField(max_length=40, blank=True)
+    uncertainty = models.CharField(max_length=40, blank=True)
+    rule = models.CharField(max_length=10, default="simple")
+    code = models.CharField(max_length=40)
+    parameters = models.TextField()
+    departure = models.CharField(max_length=40, blank=True)
+    allowance = models.CharField(max_length=40, blank=True)
+    used = models.CharField(max_length=20, blank=True)
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(fields=["verdict_of", "position"], name="further_verdict_once")
+        ]
+
+
 class NotTested(Fact):
     """An attempt that could not be made: for one item of a submission, or for the whole device."""
 

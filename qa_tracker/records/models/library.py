@@ -94,3 +94,46 @@ class Adoption(Noun):
                 name="adoption_of_one_thing",
             )
         ]
+
+
+class StatedUncertainty(Noun):
+    """How well a measurand is measured, and by which decision rule it is judged, for the group or one site.
+
+    ``entered`` is a standard uncertainty, or an expanded one with its ``coverage_factor``; with ``repeats`` it
+    was estimated from the readings kept there, and with kind ``repeats_of_check`` from each check's own.
+    """
+
+    measurand = models.ForeignKey(Measurand, on_delete=models.DO_NOTHING, related_name="+")
+    site = models.ForeignKey(Site, null=True, on_delete=models.DO_NOTHING, related_name="+")
+    kind = models.CharField(max_length=16)
+    entered = models.CharField(max_length=40, blank=True)
+    coverage_factor = models.CharField(max_length=10, blank=True)
+    repeats = models.TextField(blank=True, help_text="RFC 8785 JSON: readings as entered")
+    rule = models.CharField(max_length=10, blank=True, help_text="empty: the default of the criterion")
+    source = models.TextField()
+    stated_by = models.ForeignKey(Person, on_delete=models.DO_NOTHING, related_name="+")
+    stated_at = models.DateTimeField()
+    ended_at = models.DateTimeField(null=True)
+
+    class Meta:
+        constraints = [
+            models.UniqueConstraint(
+                models.F("measurand"),
+                models.functions.Coalesce("site", 0),
+                condition=models.Q(ended_at=None),
+                name="one_stated_uncertainty",
+            )
+        ]
+
+
+class EditionDraft(models.Model):
+    """A next edition being written, not yet published; outside the ledger, as nothing is judged by it."""
+
+    procedure = models.ForeignKey(Procedure, on_delete=models.CASCADE, related_name="drafts")
+    person = models.ForeignKey(Person, on_delete=models.CASCADE, related_name="edition_drafts")
+    content = models.TextField()
+    revision = models.PositiveIntegerField(default=1)
+    saved_at = models.DateTimeField()
+
+    class Meta:
+        constraints = [models.UniqueConstraint(fields=["procedure", "person"], name="edition_draft_once")]
