@@ -22,8 +22,13 @@ import psycopg
 import pytest
 from django.core.management import call_command
 from django.db import connections
+from hypothesis import settings as properties
 
 from config.settings_test import TEST_DIR, database
+
+# A busy machine must not fail a property: timings decide no test.
+properties.register_profile("leadline", deadline=None)
+properties.load_profile("leadline")
 
 TESTS = Path(__file__).parent
 BOTH_ENGINES = {"records", "services"}

@@ -18,7 +18,6 @@ from qa_tracker.core.verdict_kernel import Columns, Rule, column, finest_places,
 SIGN = {"<": -1, "=": 0, ">": 1}
 MIRRORED = {"<": ">", "=": "=", ">": "<"}
 TENTH = Decimal("0.1")
-TEN_THOUSANDTH = Decimal("0.0001")
 
 
 @dataclass(frozen=True)
@@ -110,8 +109,8 @@ class Comparison:
             return None
         return max(round_half_even(100 * Fraction(share) / Fraction(of), TENTH), Decimal("0.0"))
 
-    def probability(self, level: Level) -> Decimal | None:
-        """Return the probability that the true value is within the level, four decimals; None without U.
+    def probability(self, level: Level) -> float | None:
+        """Return the probability that the true value is within the level; None without U.
 
         For exact readings only: a half-line has no estimate to put a distribution on.
         """
@@ -125,8 +124,7 @@ class Comparison:
             low = -allowed
         if self.criterion.direction == "below":
             low = -allowed if self.is_change else allowed
-        found = probability_within(low, high, estimate, float(self.uncertainty) / 2)
-        return round_half_even(Fraction(found), TEN_THOUSANDTH)
+        return probability_within(low, high, estimate, float(self.uncertainty) / 2)
 
 
 def probability_within(low: float, high: float, estimate: float, standard_uncertainty: float) -> float:

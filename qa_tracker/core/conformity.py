@@ -14,7 +14,8 @@ from qa_tracker.core.criteria import Criterion
 from qa_tracker.core.decimals import parse, plain
 from qa_tracker.core.errors import Invalid
 from qa_tracker.core.explanation import explain
-from qa_tracker.core.judgement import VERDICT_OF_CODE, Judgement, Verdict, severity, worst
+from qa_tracker.core.judgement import VERDICT_OF_CODE, Judgement, Verdict, not_assessable, severity, worst
+from qa_tracker.core.own_spread import OwnSpread, at_spread, lacking_setups
 from qa_tracker.core.sentence_codes import SentenceCode as Say
 from qa_tracker.core.verdict_kernel import RULES, Rule, needs_a_size
 
@@ -40,6 +41,7 @@ class _Question:
     rule: Rule
     unit: str | None
     criterion_unit: str | None
+    spread: OwnSpread | None
 
 
 def judge(
@@ -57,6 +59,7 @@ def judge(
     rule: Rule = "simple",
     unit: str | None = None,
     criterion_unit: str | None = None,
+    spread: OwnSpread | None = None,
 ) -> Judgement:
     """Judge one reading.
 
@@ -89,6 +92,8 @@ def judge(
         by plain comparison is given it, any other is not assessable.
     unit, criterion_unit
         Compared where the criterion has one; nothing is converted. "Not seen" has no unit to compare.
+    spread
+        Of the set-ups the baseline is the mean of, for a limit of the device's own spread.
 
     Returns
     -------
@@ -128,6 +133,7 @@ def judge(
         rule=rule,
         unit=unit,
         criterion_unit=criterion_unit,
+        spread=spread,
     )
     return _judge_number(criterion, question)
 
@@ -156,20 +162,16 @@ def _decimal(number: Decimal | str | None, name: str) -> Decimal | None:
         raise
 
 
-def _not_assessable(code: Say, **parameters: str) -> Judgement:
-    return Judgement("not_assessable", None, code, parameters)
-
-
 def _judge_grade(criterion: Criterion, value: Decimal | str | None, kind: str) -> Judgement:
     """Look a grade, a yes or a no up in the criterion."""
     if not criterion.grades or kind not in WORD_KINDS:
-        return _not_assessable(Say.KIND_NOT_JUDGED, kind=kind)
+        return not_assessable(Say.KIND_NOT_JUDGED, kind=kind)
     if value is None:
-        return _not_assessable(Say.NO_READING)
+        return not_assessable(Say.NO_READING)
     verdicts = dict(criterion.grades)
     grade = str(value)
     if grade not in verdicts:
-        return _not_assessable(Say.UNKNOWN_GRADE, grade=grade, known=", ".join(verdicts))
+        return not_assessable(Say.UNKNOWN_GRADE, grade=grade, known=", ".join(verdicts))
     verdict, level = next(pair for pair in VERDICT_OF_CODE if pair[0] == verdicts[grade])
     return Judgement(verdict, level, Say.GRADED, {"grade": grade, "verdict": verdict})
 
@@ -184,33 +186,40 @@ def _judge_number(criterion: Criterion, question: _Question) -> Judgement:
     compared = _comparison(flat, question)
     if isinstance(compared, Judgement):
         return compared
+    shown: dict[str, str] = {}
+    if flat.of_own_spread:
+        lacking = lacking_setups(question.spread)
+        if question.spread is None or lacking:
+            return not_assessable(Say.TOO_FEW_SETUPS, **(lacking or {}))
+        settled, shown = at_spread(flat, question.spread)
+        compared = replace(compared, criterion=settled)
     judgement = explain(compared, question.rule)
-    return replace(judgement, parameters=judgement.parameters | _context(criterion, question))
+    return replace(judgement, parameters=judgement.parameters | shown | _context(criterion, question))
 
 
 def _at_band(criterion: Criterion, question: _Question) -> Criterion | Judgement:
     """Check that there is a reading in the right unit, and pick the band that holds."""
     if question.qualifier != "not_seen":
         if question.value is None:
-            return _not_assessable(Say.NO_READING)
+            return not_assessable(Say.NO_READING)
         if question.criterion_unit not in (None, question.unit):
             units = {"unit": question.unit or "", "criterion_unit": question.criterion_unit or ""}
-            return _not_assessable(Say.WRONG_UNIT, **units)
+            return not_assessable(Say.WRONG_UNIT, **units)
     if not criterion.bands:
         return criterion
     quantity = question.quantity
     if quantity is None or not quantity.is_finite():
-        return _not_assessable(Say.NO_BAND_QUANTITY, banded_by=criterion.banded_by)
+        return not_assessable(Say.NO_BAND_QUANTITY, banded_by=criterion.banded_by)
     flat = criterion.at(quantity)
     if flat is None:
-        return _not_assessable(Say.OUTSIDE_BANDS, banded_by=criterion.banded_by, quantity=plain(quantity))
+        return not_assessable(Say.OUTSIDE_BANDS, banded_by=criterion.banded_by, quantity=plain(quantity))
     return flat
 
 
 def _not_seen(criterion: Criterion) -> Judgement:
     """Worse than any value, so no reference is needed."""
     if criterion.direction == "either":
-        return _not_assessable(Say.NOT_SEEN_UNDECIDED)
+        return not_assessable(Say.NOT_SEEN_UNDECIDED)
     level = criterion.levels()[-1][0]
     parameters: dict[str, str] = {"direction": criterion.direction, "level": level}
     return Judgement(level, level, Say.NOT_SEEN, parameters, lower_name=criterion.levels()[0][0])
@@ -224,18 +233,18 @@ def _comparison(criterion: Criterion, question: _Question) -> Comparison | Judge
     basis = criterion.basis
     qualifier = question.baseline_qualifier if basis == "baseline" else "="
     if qualifier == "not_seen":
-        return _not_assessable(Say.BASELINE_NOT_SEEN)
+        return not_assessable(Say.BASELINE_NOT_SEEN)
     reference = question.references.get(basis)
     if basis != "none" and reference is None:
-        return _not_assessable(_MISSING[basis])
+        return not_assessable(_MISSING[basis])
     numbers = {"value": question.value, "reference": reference, "uncertainty": question.uncertainty}
     for name, number in numbers.items():
         if number is not None and not number.is_finite():
-            return _not_assessable(Say.NOT_FINITE, what=name)
+            return not_assessable(Say.NOT_FINITE, what=name)
     if question.uncertainty is not None and question.uncertainty < 0:
         raise Invalid("uncertainty.negative", field="uncertainty", uncertainty=plain(question.uncertainty))
     if reference is not None and _has_no_size(criterion, reference):
-        return _not_assessable(
+        return not_assessable(
             Say.ZERO_REFERENCE, basis=basis, reference=plain(reference), unit=question.unit or ""
         )
     value = question.value if question.value is not None else Decimal(0)

@@ -24,6 +24,8 @@ Governs = Literal["larger", "smaller", "either"]
 LEVELS: tuple[Level, ...] = get_args(Level)
 GRADE_VERDICTS = ("conforming", "remedial", "suspension")
 _LEVEL_KEYS = frozenset(LEVELS)
+_SPREAD_KEYS = frozenset({"coverage", "confidence"})
+_LIMIT_KEYS = frozenset({"absolute", "percent", "governs"}) | _SPREAD_KEYS
 _KEYS = frozenset({"basis", "direction", "strict", "bands", "banded_by", "grades"}) | _LEVEL_KEYS
 
 
@@ -40,11 +42,21 @@ class Limit:
     governs
         Where both are given: the ``"larger"`` or the ``"smaller"`` of the two is the allowance, or
         ``"either"`` may be tripped (arithmetically the smaller; the sentence differs).
+    coverage, confidence
+        In percent, instead of the two above: the allowance is half the width of the two-sided tolerance
+        interval built from the set-ups of the device's own baseline (``OwnSpread``).
     """
 
     absolute: Decimal | None = None
     percent: Decimal | None = None
     governs: Governs = "larger"
+    coverage: Decimal | None = None
+    confidence: Decimal | None = None
+
+    @property
+    def of_own_spread(self) -> bool:
+        """Whether the allowance comes from the spread of the device's own baseline."""
+        return self.coverage is not None
 
 
 @dataclass(frozen=True)
@@ -96,6 +108,11 @@ class Criterion:
         pairs = zip(LEVELS, (self.remedial, self.suspension), strict=True)
         return tuple((level, limit) for level, limit in pairs if limit is not None)
 
+    @property
+    def of_own_spread(self) -> bool:
+        """Whether its remedial level is a limit of the device's own spread (shape J)."""
+        return self.remedial is not None and self.remedial.of_own_spread
+
     def at(self, quantity: Decimal) -> Criterion | None:
         """Return the criterion without bands that holds at a banding quantity; None outside every band."""
         for band in self.bands:
@@ -124,8 +141,8 @@ def from_json(given: Mapping[str, Any], *, field: str = "criterion") -> Criterio
 
     Examples
     --------
-    >>> from_json({"basis": "baseline", "direction": "below", "remedial": {"absolute": "6"}}).levels()
-    (('remedial', Limit(absolute=Decimal('6'), percent=None, governs='larger')),)
+    >>> from_json({"basis": "baseline", "direction": "below", "remedial": {"absolute": "6"}}).remedial.absolute
+    Decimal('6')
     """
     keys = _object(given, _KEYS, field)
     if "grades" in keys:
@@ -196,12 +213,31 @@ def _limit(keys: dict[str, Any], level: Level, basis: Basis, field: str) -> Limi
     if level not in keys:
         return None
     path = f"{field}.{level}"
-    parts = _object(keys[level], frozenset({"absolute", "percent", "governs"}), path)
+    parts = _object(keys[level], _LIMIT_KEYS, path)
+    if parts.keys() & _SPREAD_KEYS:
+        return _own_spread_limit(parts, level, basis, path)
     absolute, percent = _number(parts, "absolute", path), _number(parts, "percent", path)
     _check_parts(absolute, percent, basis, path)
     governs = _word(parts, "governs", get_args(Governs), path) if "governs" in parts else "larger"
     both = absolute is not None and percent is not None
     return Limit(absolute, percent, cast(Governs, governs) if both else "larger")
+
+
+def _own_spread_limit(parts: dict[str, Any], level: Level, basis: Basis, path: str) -> Limit:
+    """Read a limit of the device's own spread: both shares, on a baseline, never for suspension."""
+    if basis != "baseline" or level != "remedial":
+        raise Invalid("criterion.own_spread_place", field=path)
+    if others := parts.keys() - _SPREAD_KEYS:
+        raise Invalid("criterion.own_spread_beside", field=path, keys=", ".join(sorted(others)))
+    shares = [_number(parts, key, path) for key in ("coverage", "confidence")]
+    for key, share in zip(("coverage", "confidence"), shares, strict=True):
+        if share is None or not 0 < share < 100:
+            raise Invalid(
+                "criterion.own_spread_share",
+                field=f"{path}.{key}",
+                value="" if share is None else plain(share),
+            )
+    return Limit(coverage=shares[0], confidence=shares[1])
 
 
 def _check_parts(absolute: Decimal | None, percent: Decimal | None, basis: Basis, path: str) -> None:
@@ -291,9 +327,10 @@ def _levels_json(levelled: Criterion | Band) -> dict[str, Any]:
 
 
 def _limit_json(limit: Limit) -> dict[str, str]:
-    parts = (("absolute", limit.absolute), ("percent", limit.percent))
+    parts = [(name, getattr(limit, name)) for name in ("absolute", "percent", "coverage", "confidence")]
     written = {name: plain(number) for name, number in parts if number is not None}
-    return written | ({"governs": limit.governs} if len(written) == 2 else {})
+    both = limit.absolute is not None and limit.percent is not None
+    return written | ({"governs": limit.governs} if both else {})
 
 
 def _band_json(band: Band) -> dict[str, Any]:

@@ -4,14 +4,17 @@ from __future__ import annotations
 
 from dataclasses import replace
 from decimal import Decimal
+from fractions import Fraction
 
 from qa_tracker.core import verdict_kernel as kernel
 from qa_tracker.core.comparison import Comparison, comparison_parameters
 from qa_tracker.core.criteria import Level
-from qa_tracker.core.decimals import plain, subtract
+from qa_tracker.core.decimals import plain, round_half_even, subtract
 from qa_tracker.core.judgement import VERDICT_OF_CODE, Judgement
 from qa_tracker.core.sentence_codes import SentenceCode as Say
 from qa_tracker.core.verdict_kernel import Rule
+
+TEN_THOUSANDTH = Decimal("0.0001")
 
 
 def explain(compared: Comparison, rule: Rule) -> Judgement:
@@ -71,12 +74,12 @@ def _conforming_reason(compared: Comparison, first: Level) -> tuple[Say, dict[st
     return (Say.WITHIN if compared.qualifier == "=" else Say.WITHIN_OPEN), {}
 
 
-def _uncertainty_parameters(
-    compared: Comparison, level: Level, probability: Decimal | None
-) -> dict[str, str]:
+def _uncertainty_parameters(compared: Comparison, level: Level, probability: float | None) -> dict[str, str]:
     uncertainty, allowed = compared.uncertainty or Decimal(0), compared.allowance(level).size
     # A lower limit is guarded upwards: what is accepted starts above it.
     downwards = compared.criterion.direction == "below" and not compared.is_change
     acceptance = subtract(allowed, uncertainty.copy_negate() if downwards else uncertainty)
     written = {"uncertainty": plain(uncertainty), "acceptance": plain(acceptance, strip=True)}
-    return written | ({} if probability is None else {"probability": plain(probability)})
+    if probability is not None:
+        written["probability"] = plain(round_half_even(Fraction(probability), TEN_THOUSANDTH))
+    return written

@@ -45,7 +45,7 @@ class Judgement:
     lower_name
         The first level there is: ``used`` and ``probability`` refer to it.
     probability
-        That the true value conforms, four decimals, where the uncertainty is known.
+        That the true value conforms, 0 to 1, unrounded, where the uncertainty is known.
     """
 
     verdict: Verdict
@@ -57,7 +57,12 @@ class Judgement:
     used: Decimal | None = None
     governed_by: Literal["absolute", "percent"] | None = None
     lower_name: Level | None = None
-    probability: Decimal | None = None
+    probability: float | None = None
+
+
+def not_assessable(code: SentenceCode, **parameters: str) -> Judgement:
+    """Give the verdict of a reading that lacks what its criterion needs."""
+    return Judgement("not_assessable", None, code, parameters)
 
 
 def severity(judgement: Judgement) -> int:

@@ -95,6 +95,7 @@ _CRITERION: Final[dict[str, Rule | tuple[Rule, Any]]] = {
     "applies_when": (pairs(text, ("part", "protection_class", "applied_part_type")), ()),
     "criterion": _criterion,
     "note": note,
+    "measurands": (many(_CODE), ()),
 }
 CRITERION: Final = object_of(_CRITERION, CriterionSpec)
 _SET: Final[dict[str, Rule | tuple[Rule, Any]]] = {
@@ -135,6 +136,7 @@ _MEASURAND: Final[dict[str, Rule | tuple[Rule, Any]]] = {
     "sound_speed_correction": (flag, False),
     "yearly": (flag, False),
     "note": (note, ""),
+    "method": (_CODE, ""),
 }
 _RECURRENCE = object_of(
     {"rule": matching(r"FREQ=[A-Z0-9=;,+-]+"), "before_days": whole(0), "grace_days": whole(0)},

@@ -20,7 +20,10 @@ class ByLevel:
 
 @dataclass(frozen=True)
 class CriterionSpec:
-    """A published limit with where it comes from; ``standing`` says per level how well the number is known."""
+    """A published limit with where it comes from; ``standing`` says per level how well the number is known.
+
+    ``measurands`` are judged by it beside the limit their procedure names, and the worst verdict decides.
+    """
 
     id: str
     name: str
@@ -36,6 +39,7 @@ class CriterionSpec:
     applies_when: tuple[tuple[str, str], ...]
     criterion: Criterion
     note: str
+    measurands: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -99,6 +103,7 @@ class MeasurandSpec:
     sound_speed_correction: bool
     yearly: bool
     note: str
+    method: str = ""
 
 
 @dataclass(frozen=True)

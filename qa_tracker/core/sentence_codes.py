@@ -20,6 +20,10 @@ used                share of the first level's allowance in percent, one decimal
 banded_by, quantity the banding quantity, its value, and ``band_start`` and ``band_below`` (empty: open)
 rule, uncertainty   decision rule other than simple; expanded uncertainty U (k = 2)
 acceptance          allowance - U; ``probability`` of conformity, four decimals
+setups, factor      of a limit of own spread: count, exact factor, ``spread`` (``spread_floored`` yes where the
+                    resolution's took its place), ``coverage`` and ``confidence`` in percent
+no_guard            ``yes`` where a guard band is the rule and no uncertainty is stated
+arithmetic          of a derived quantity: its formula with the numbers put in
 =================== ====================================================================================
 """
 
@@ -56,6 +60,16 @@ class SentenceCode(StrEnum):
     UNKNOWN_GRADE = "unknown_grade"
     KIND_NOT_JUDGED = "kind_not_judged"
     NO_UNCERTAINTY = "no_uncertainty"
+    TOO_FEW_SETUPS = "too_few_setups"
+    EXPIRED_BASELINE = "expired_baseline"
+    OTHER_OBJECT = "other_object"
+    ARRAY_KIND = "array_kind"
+    OTHER_MEDIUM = "other_medium"
+    OTHER_METHOD = "other_method"
+    OTHER_CLASS = "other_class"
+    NO_INPUT = "no_input"
+    OPEN_INPUT = "open_input"
+    LAYOUT_COMPENSATED = "layout_compensated"
 
 
 _COMPARED = frozenset(
@@ -101,5 +115,15 @@ REQUIRED: dict[SentenceCode, frozenset[str]] = {
     SentenceCode.UNKNOWN_GRADE: frozenset({"grade", "known"}),
     SentenceCode.KIND_NOT_JUDGED: frozenset({"kind"}),
     SentenceCode.NO_UNCERTAINTY: _COMPARED | {"rule"},
+    SentenceCode.TOO_FEW_SETUPS: frozenset({"setups", "least"}),
+    SentenceCode.EXPIRED_BASELINE: frozenset({"expired_on"}),
+    SentenceCode.OTHER_OBJECT: frozenset({"was", "now"}),
+    SentenceCode.ARRAY_KIND: frozenset({"array_kind"}),
+    SentenceCode.OTHER_MEDIUM: frozenset({"medium", "wanted"}),
+    SentenceCode.OTHER_METHOD: frozenset({"method", "wanted"}),
+    SentenceCode.OTHER_CLASS: frozenset({"what", "has", "wanted"}),
+    SentenceCode.NO_INPUT: frozenset({"names"}),
+    SentenceCode.OPEN_INPUT: frozenset({"names"}),
+    SentenceCode.LAYOUT_COMPENSATED: frozenset(),
 }
 """Parameters that are always there; a sentence may rely on no other without asking."""

@@ -118,6 +118,15 @@ CRITERIA: Final = {
         "%(field)s can't be used: a ratio is judged in percent. Give a percentage."
     ),
     "criterion.negative": N_("%(field)s is %(value)s. A limit on a change or share has to be zero or more."),
+    "criterion.own_spread_place": N_(
+        "%(field)s is a limit of the device's own spread. It belongs to a baseline's remedial level only."
+    ),
+    "criterion.own_spread_beside": N_(
+        "%(field)s has %(keys)s beside coverage and confidence. Give the one or the other."
+    ),
+    "criterion.own_spread_share": N_(
+        "%(field)s is “%(value)s”. Coverage and confidence are both needed, more than 0 and less than 100 percent."
+    ),
     "criterion.no_level": N_("%(field)s has no level. Give a remedial level, a suspension level or both."),
     "criterion.not_list": N_("%(field)s has to be a list. Correct the criterion."),
     "criterion.bands_and_quantity": N_(

@@ -10,6 +10,7 @@ from django.utils.translation import gettext_noop as N_
 
 from qa_tracker.core.sentence_codes import SentenceCode as Say
 from qa_tracker.services.wording_words import (
+    ARRAYS,
     REFERENCES,
     amount,
     banding_unit,
@@ -17,6 +18,7 @@ from qa_tracker.services.wording_words import (
     capital,
     kind_word,
     unit_symbol,
+    word,
 )
 
 Parameters = Mapping[str, str]
@@ -133,6 +135,94 @@ def _kind_not_judged(given: Parameters, says: str) -> str:
     return _("A reading of this kind (%(kind)s) is not judged by this limit: %(verdict)s.") % told
 
 
+def _too_few_setups(given: Parameters, says: str) -> str:
+    told = {"setups": given["setups"], "least": given["least"], "verdict": says}
+    sentence = _(
+        "The limit is built from the device's own baseline, which rests on %(setups)s independent set-ups where "
+        "%(least)s are needed: %(verdict)s. Measure more on other days, and set the baseline from them all."
+    )
+    return sentence % told
+
+
+def _expired_baseline(given: Parameters, says: str) -> str:
+    told = {"day": given["expired_on"], "verdict": says}
+    return _("The baseline ran out on %(day)s: %(verdict)s. A physicist can set another.") % told
+
+
+def _other_object(given: Parameters, says: str) -> str:
+    told = {"was": given["was"], "now": given["now"], "verdict": says}
+    sentence = _(
+        "The baseline was taken on %(was)s and this reading on %(now)s, and a depth does not pass from one "
+        "test object to another: %(verdict)s. Read both objects once, and set a baseline on this one too."
+    )
+    return sentence % told
+
+
+def _array_kind(given: Parameters, says: str) -> str:
+    told = {"kind": word(ARRAYS, given["array_kind"]), "verdict": says}
+    sentence = _(
+        "On this kind of array (%(kind)s) a dark line does not stand for an element, so the limit says nothing: "
+        "%(verdict)s."
+    )
+    return sentence % told
+
+
+MEDIA: Final = {
+    "phantom": N_("in a test object"),
+    "air": N_("in air"),
+    "electrical": N_("electrical"),
+}
+
+
+def _other_medium(given: Parameters, says: str) -> str:
+    told = {
+        "medium": word(MEDIA, given["medium"]),
+        "wanted": word(MEDIA, given["wanted"]),
+        "verdict": says,
+    }
+    return _("The limit is for a reading %(wanted)s, and this one is %(medium)s: %(verdict)s.") % told
+
+
+def _other_method(given: Parameters, says: str) -> str:
+    told = {"method": given["method"], "wanted": given["wanted"], "verdict": says}
+    return _("The limit is for the method %(wanted)s, and this reading's is %(method)s: %(verdict)s.") % told
+
+
+CLASSES: Final = {
+    "protection_class": N_("protection class"),
+    "applied_part_type": N_("applied-part type"),
+}
+
+
+def _other_class(given: Parameters, says: str) -> str:
+    told = {
+        "what": word(CLASSES, given["what"]),
+        "has": given["has"],
+        "wanted": given["wanted"],
+        "verdict": says,
+    }
+    sentence = _("The limit is for %(what)s %(wanted)s, and this device is %(has)s: %(verdict)s.")
+    return sentence % told
+
+
+def _no_input(given: Parameters, says: str) -> str:
+    told = {"names": given["names"], "verdict": says}
+    return _("It is worked out from readings that are missing (%(names)s): %(verdict)s.") % told
+
+
+def _open_input(given: Parameters, says: str) -> str:
+    told = {"names": given["names"], "verdict": says}
+    return _("It is worked out from a reading that is only a bound (%(names)s): %(verdict)s.") % told
+
+
+def _layout_compensated(given: Parameters, says: str) -> str:
+    sentence = _(
+        "The test object's layout already makes up for its sound speed, so a corrected distance would be wrong: "
+        "%(verdict)s. Compare the reading itself with the nominal distance."
+    )
+    return sentence % {"verdict": says}
+
+
 PLAIN: Final[dict[Say, Callable[[Parameters, str], str]]] = {
     Say.NOT_SEEN: _not_seen,
     Say.GRADED: _graded,
@@ -149,4 +239,14 @@ PLAIN: Final[dict[Say, Callable[[Parameters, str], str]]] = {
     Say.NOT_SEEN_UNDECIDED: _not_seen_undecided,
     Say.UNKNOWN_GRADE: _unknown_grade,
     Say.KIND_NOT_JUDGED: _kind_not_judged,
+    Say.TOO_FEW_SETUPS: _too_few_setups,
+    Say.EXPIRED_BASELINE: _expired_baseline,
+    Say.OTHER_OBJECT: _other_object,
+    Say.ARRAY_KIND: _array_kind,
+    Say.OTHER_MEDIUM: _other_medium,
+    Say.OTHER_METHOD: _other_method,
+    Say.OTHER_CLASS: _other_class,
+    Say.NO_INPUT: _no_input,
+    Say.OPEN_INPUT: _open_input,
+    Say.LAYOUT_COMPENSATED: _layout_compensated,
 }

@@ -10,6 +10,7 @@ from django.utils.translation import gettext as _
 from django.utils.translation import gettext_noop as N_
 
 from qa_tracker.core.sentence_codes import SentenceCode as Say
+from qa_tracker.services.wording_notes import notes
 from qa_tracker.services.wording_unjudged import PLAIN
 from qa_tracker.services.wording_words import (
     REFERENCES,
@@ -67,20 +68,6 @@ SHARES: Final = {
     ">": N_("It uses more than %(used)s of %(whose)s."),
     "<": N_("It uses less than %(used)s of %(whose)s."),
 }
-MISMATCHES: Final = {
-    "mismatch_console": (
-        N_("Mind: the baseline was taken on console model %(was)s, this check on %(now)s."),
-        N_("Mind: the baseline was taken on another console model, %(was)s."),
-    ),
-    "mismatch_software": (
-        N_("Mind: the baseline was taken with console software %(was)s, this check with %(now)s."),
-        N_("Mind: the baseline was taken with other console software, %(was)s."),
-    ),
-    "mismatch_object": (
-        N_("Mind: the baseline was taken on the test object %(was)s, this check on %(now)s."),
-        N_("Mind: the baseline was taken on another test object, %(was)s."),
-    ),
-}
 
 
 def verdict_sentence(code: str, parameters: Parameters, verdict: str, level: str = "") -> str:
@@ -100,7 +87,7 @@ def verdict_sentence(code: str, parameters: Parameters, verdict: str, level: str
         told = [PLAIN[Say(code)](parameters, says)]
     else:
         told = [_("The verdict is %(verdict)s (%(code)s).") % {"verdict": says, "code": code}]
-    return " ".join([capital(told[0]), *told[1:], *_flags(parameters)])
+    return " ".join([capital(told[0]), *told[1:], *notes(parameters)])
 
 
 def _verdict_words(verdict: str, level: str) -> str:
@@ -325,20 +312,6 @@ def _no_uncertainty(given: Parameters, says: str) -> list[str]:
     }
     sentence = _("%(finding)s; %(limit)s, but the rule (%(rule)s) needs an uncertainty: %(verdict)s.")
     return [sentence % told, _("Give the uncertainty of this measurand, or choose simple acceptance.")]
-
-
-def _flags(given: Parameters) -> list[str]:
-    """What differs between the baseline's key and this check."""
-    told = []
-    for name, (both, one) in MISMATCHES.items():
-        if name in given:
-            was, _slash, now = given[name].partition(" / ")
-            told.append(_(both if now else one) % {"was": was, "now": now})
-    if "baseline_under_review" in given:
-        told.append(
-            _("The baseline is under review: still compared, until a physicist keeps or replaces it.")
-        )
-    return told
 
 
 COMPARED: Final[dict[Say, Callable[[Parameters, str], list[str]]]] = {

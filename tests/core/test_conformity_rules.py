@@ -142,7 +142,7 @@ def test_probability_within_agrees_with_published_examples(arguments, expected):
     ],
 )
 def test_judge_gives_the_probability_whenever_the_uncertainty_is_known(given, arguments, expected):
-    assert str(judge(from_json(given), kind="number", **arguments).probability) == expected
+    assert f"{judge(from_json(given), kind='number', **arguments).probability:.4f}" == expected
 
 
 def test_probability_is_left_out_when_unknown_or_qualified():

@@ -246,8 +246,64 @@ def test_verdict_reads(code, criterion, given, sentence):
     assert _say(criterion, given) == (code, sentence)
 
 
-def test_every_sentence_code_is_in_the_table():
-    assert {row[1] for row in TABLE} == set(Say)
+UNFIT = {
+    Say.TOO_FEW_SETUPS: (
+        {"setups": "3", "least": "10"},
+        "The limit is built from the device's own baseline, which rests on 3 independent set-ups where 10 are "
+        "needed: not assessable. Measure more on other days, and set the baseline from them all.",
+    ),
+    Say.EXPIRED_BASELINE: (
+        {"expired_on": "2026-03-02"},
+        "The baseline ran out on 2026-03-02: not assessable. A physicist can set another.",
+    ),
+    Say.OTHER_OBJECT: (
+        {"was": "KB hydrogel GB-3002", "now": "AG hydrogel GB-3001"},
+        "The baseline was taken on KB hydrogel GB-3002 and this reading on AG hydrogel GB-3001, and a depth does "
+        "not pass from one test object to another: not assessable. Read both objects once, and set a baseline on "
+        "this one too.",
+    ),
+    Say.ARRAY_KIND: (
+        {"array_kind": "phased"},
+        "On this kind of array (phased) a dark line does not stand for an element, so the limit says nothing: "
+        "not assessable.",
+    ),
+    Say.OTHER_MEDIUM: (
+        {"medium": "air", "wanted": "phantom"},
+        "The limit is for a reading in a test object, and this one is in air: not assessable.",
+    ),
+    Say.OTHER_METHOD: (
+        {"method": "direct", "wanted": "alternative"},
+        "The limit is for the method alternative, and this reading's is direct: not assessable.",
+    ),
+    Say.OTHER_CLASS: (
+        {"what": "protection_class", "has": "I", "wanted": "II"},
+        "The limit is for protection class II, and this device is I: not assessable.",
+    ),
+    Say.NO_INPUT: (
+        {"names": "penetration"},
+        "It is worked out from readings that are missing (penetration): not assessable.",
+    ),
+    Say.OPEN_INPUT: (
+        {"names": "penetration"},
+        "It is worked out from a reading that is only a bound (penetration): not assessable.",
+    ),
+    Say.LAYOUT_COMPENSATED: (
+        {},
+        "The test object's layout already makes up for its sound speed, so a corrected distance would be wrong: "
+        "not assessable. Compare the reading itself with the nominal distance.",
+    ),
+}
+
+
+@pytest.mark.parametrize("code", UNFIT)
+def test_reading_that_can_not_be_judged_says_why(code):
+    given, sentence = UNFIT[code]
+    told = verdict_sentence(code, given, "not_assessable").replace("\N{NO-BREAK SPACE}", " ")
+    assert told == sentence
+
+
+def test_every_sentence_code_is_in_a_table():
+    assert {row[1] for row in TABLE} | UNFIT.keys() == set(Say)
 
 
 FLAGS = [
@@ -267,6 +323,11 @@ FLAGS = [
         {"mismatch_object": "Hydrogel A"},
         "Mind: the baseline was taken on another test object, Hydrogel A.",
     ),
+    (
+        {"no_guard": "yes"},
+        "No uncertainty is stated for this measurand, so the limit stands without a guard band.",
+    ),
+    ({"arithmetic": "152.0 - 152.0"}, "The reading is worked out: 152.0 - 152.0."),
     (
         {"baseline_under_review": "yes"},
         "The baseline is under review: still compared, until a physicist keeps or replaces it.",
