@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 import uuid
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from qa_tracker.core import conformity, decimals
@@ -228,10 +229,10 @@ def put(
 ) -> Baseline:
     """The rows of one baseline: the epoch before it ends."""
     measurand = Measurand.objects.get(code=spec.code)
-    before = Baseline.objects.filter(
-        device=device, measurand=measurand, aperture=part[0], condition=part[1]
-    ).order_by("-epoch")
-    return put_epoch(act, device, measurand, part, exact, qualifier, source, reason, set_by, before.first())
+    series = {"device": device, "measurand": measurand, "aperture": part[0], "condition": part[1]}
+    standing = list(Baseline.objects.filter(**series, ended_at=None).order_by("-epoch"))
+    last, others = (standing[0], standing[1:]) if standing else (None, [])
+    return put_epoch(act, device, measurand, part, exact, qualifier, source, reason, set_by, last, others)
 
 
 def put_epoch(
@@ -245,10 +246,15 @@ def put_epoch(
     reason: str,
     set_by: Person,
     last: Baseline | None,
+    others: Sequence[Baseline] = (),
 ) -> Baseline:
-    """The rows of one baseline after the last one of its series; for commands and for history."""
-    if last is not None and last.ended_at is None:
-        act.change(last, ended_at=act.at, under_review=False)
+    """The rows of one baseline after the last one of its series; for commands and for history.
+
+    Those in force on the same test object, or where either has none, end; one on another object stays in force.
+    """
+    for each in (last, *others):
+        if each is not None and each.ended_at is None and _replaced(each, source.test_object):
+            act.change(each, ended_at=act.at, under_review=False)
     return act.insert(
         Baseline(
             device=device,
@@ -271,6 +277,11 @@ def put_epoch(
             valid_from=act.at,
         )
     )
+
+
+def _replaced(standing: Baseline, test_object: TestObject | None) -> bool:
+    """Whether a new baseline on a test object ends one that stands."""
+    return None in (standing.test_object_id, test_object) or standing.test_object == test_object
 
 
 def sign(
