@@ -28,7 +28,7 @@ from qa_tracker.records.models import (
 from qa_tracker.services import checks, devices, library, objects, people, plans, sites, states
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Identity, Place
-from qa_tracker.services.judging import Entry
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.plans import Recurrence
 
 FIXTURES = Path(__file__).resolve().parent.parent / "fixtures"

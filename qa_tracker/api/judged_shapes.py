@@ -212,8 +212,8 @@ def verdict_of_row(row: VerdictRow | None) -> dict[str, object] | None:
 
 def verdict_of_item(one: JudgedItem) -> dict[str, object] | None:
     """The verdict an item would have as an answer."""
-    judgement, criterion = one.judgement, one.item.criterion
-    if judgement is None or criterion is None:
+    judgement, criterion = one.judgement, one.criterion
+    if judgement is None or criterion is None or one.weighed is None:
         return None
     code, level = str(judgement.code), judgement.level or ""
     numbers = {name: getattr(judgement, name) for name in ("departure", "allowance", "used")}
@@ -225,7 +225,7 @@ def verdict_of_item(one: JudgedItem) -> dict[str, object] | None:
         "sentence": verdict_sentence(code, judgement.parameters, judgement.verdict, level),
         "criterion": criterion_out(criterion),
         "source": source_line(criterion, level),
-        "reference": one.reference if criterion.spec.criterion.basis in ("nominal", "ratio") else "",
+        "reference": one.weighed.reference if criterion.spec.criterion.basis in ("nominal", "ratio") else "",
         **{name: "" if number is None else plain(number) for name, number in numbers.items()},
         "instruction": one.instruction,
     }

@@ -24,7 +24,7 @@ from qa_tracker.api.nouns import NounRouter
 from qa_tracker.records.queries import submissions
 from qa_tracker.services import checks
 from qa_tracker.services.checks import Typed
-from qa_tracker.services.judging import Entry
+from qa_tracker.services.entries import Entry
 
 router = NounRouter(tags=["checks"])
 

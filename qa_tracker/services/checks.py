@@ -26,10 +26,13 @@ from qa_tracker.records.models import (
 from qa_tracker.records.queries import devices, library, submissions
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.services import finding, judging, owed, plans, recording
+from qa_tracker.services.deriving import attributes_of
+from qa_tracker.services.entries import REASONS, Entry, left_empty
 from qa_tracker.services.guards import check_may, check_password, check_shown, required, role_for
 from qa_tracker.services.items import Item, items_of, surroundings
-from qa_tracker.services.judging import Entry, Instructions, Judged, MeasuredWith
+from qa_tracker.services.judging import Asked, Instructions, Judged
 from qa_tracker.services.recording import Facts
+from qa_tracker.services.weighing import measured_with
 
 
 @dataclass(frozen=True)
@@ -54,20 +57,20 @@ class Sheet:
     check: Check
     edition: EditionRow
     items: tuple[Item, ...]
+    derived: tuple[Item, ...]
     test_object: TestObject | None
     instrument: Instrument | None
     console: Device | None
     console_software: str
     instructions: Instructions
+    measured_on: dt.date
+    attributes: Mapping[str, Mapping[str, object]] = field(default_factory=dict)
 
     @property
-    def measured_with(self) -> MeasuredWith:
-        """The part of the baselines' key that the whole check shares."""
-        return MeasuredWith(
-            self.console.model if self.console else "",
-            self.console_software,
-            self.test_object.id if self.test_object else None,
-        )
+    def asked(self) -> Asked:
+        """What is asked, and under what it is judged."""
+        with_it = measured_with(self.console, self.console_software, self.test_object, self.measured_on)
+        return Asked(self.items, self.derived, self.attributes, self.instructions, with_it)
 
 
 @dataclass(frozen=True)
@@ -86,10 +89,11 @@ def sheet(
     check: uuid.UUID,
     test_object: uuid.UUID | None = None,
     instrument: uuid.UUID | None = None,
+    measured_at: dt.datetime | None = None,
     actor: Person,
     at: dt.datetime,
 ) -> Sheet:
-    """Lay out a check for entering. Reads only.
+    """Lay out a check for entering, as measured now or at ``measured_at``. Reads only.
 
     Refused: out of sight, a role that may not enter it, a state that takes no submission, no edition adopted.
     """
@@ -103,29 +107,38 @@ def sheet(
         edition,
         finding.test_object(actor, test_object, at),
         finding.instrument(actor, instrument, at),
+        measured_at or at,
     )
 
 
 def lay_out(
-    check: Check, edition: EditionRow, test_object: TestObject | None, instrument: Instrument | None
+    check: Check,
+    edition: EditionRow,
+    test_object: TestObject | None,
+    instrument: Instrument | None,
+    measured_at: dt.datetime,
 ) -> Sheet:
-    """The sheet of a check; for commands and for history."""
+    """The sheet of a check."""
     device = check.device
     console = device if device.kind == "scanner" or device.handheld else device.scanner
     facts = ScannerFacts.objects.filter(device=console).first() if console else None
     nominals = nominals_of(test_object)
-    around = surroundings(devices.device_by_id(device.id), edition, check.site_id, nominals)
+    row, object_id = devices.device_by_id(device.id), test_object.id if test_object else None
+    items = items_of(surroundings(row, edition, check.site_id, nominals, object_id))
     site = check.site
     words = Instructions(site.remedial_instruction, site.suspension_instruction) if site else Instructions()
     return Sheet(
         check,
         edition,
-        items_of(around),
+        tuple(item for item in items if item.spec.kind != "derived"),
+        tuple(item for item in items if item.spec.kind == "derived"),
         test_object,
         instrument,
         console,
         facts.software_version if facts else "",
         words,
+        recording.local_day(check, measured_at),
+        attributes_of(device, test_object),
     )
 
 
@@ -156,9 +169,16 @@ def preview(*, check: uuid.UUID, typed: Typed, whole: bool, actor: Person, at: d
 
     Refused: as :func:`sheet`, and with one refusal a field (``SeveralInvalid``).
     """
-    laid = sheet(check=check, test_object=typed.test_object, instrument=typed.instrument, actor=actor, at=at)
+    laid = sheet(
+        check=check,
+        test_object=typed.test_object,
+        instrument=typed.instrument,
+        measured_at=typed.measured_at,
+        actor=actor,
+        at=at,
+    )
     entries = _with_partial_reason(laid, typed)
-    judged = judging.judge_all(laid.items, entries, laid.instructions, laid.measured_with, whole=whole)
+    judged = judging.judge_all(laid.asked, entries, whole=whole)
     facts = _facts(laid, typed, at)
     if whole:
         _check_facts(laid, facts, at)
@@ -170,7 +190,7 @@ def _with_partial_reason(laid: Sheet, typed: Typed) -> dict[str, Entry]:
     """Items left empty take the reason given for all of them."""
     entries = dict(typed.entries)
     if typed.partial_reason:
-        for item in judging.left_empty(laid.items, entries):
+        for item in left_empty(laid.items, entries):
             entries[item.key] = replace(entries.get(item.key, Entry()), not_tested=typed.partial_reason)
     return entries
 
@@ -365,7 +385,7 @@ def could_not_test(
     check_may(actor, "check.enter_user", site_id, at)
     if row.state not in CHECK_AWAITED:
         raise Conflict("check.wrong_state", state=row.state, verb="could not test")
-    if reason not in judging.REASONS:
+    if reason not in REASONS:
         raise Invalid("reading.reason_unknown", field="reason", reason=reason)
     with ledger.command("check.not_tested", actor=actor, at=at, reason=reason) as act:
         return recording.not_tested(act, row, reason, remark, actor)

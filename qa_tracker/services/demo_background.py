@@ -12,8 +12,8 @@ from qa_tracker.services.demo_fleet import Transducer
 from qa_tracker.services.demo_routine import ANNUAL, MONTHLY, QUARTERLY, Routine
 from qa_tracker.services.demo_stories import DAY, HOUR
 from qa_tracker.services.devices import Place
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.history import Done
-from qa_tracker.services.judging import Entry
 
 COPIED = ("12.5",) * 5 + ("11.5",) * 5 + ("12.0",) * 4
 """The last fourteen months of one reader: three new values, eleven repeats of the month before."""

@@ -9,8 +9,8 @@ from qa_tracker.services import devices, history, states
 from qa_tracker.services.demo_fleet import CLASSES, PROBE_MODELS, Console, Transducer
 from qa_tracker.services.demo_world import World
 from qa_tracker.services.devices import Identity, Place
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.history import Done, Kept
-from qa_tracker.services.judging import Entry
 
 DAY = dt.timedelta(days=1)
 BASELINE_CODES = (

@@ -14,8 +14,8 @@ from qa_tracker.records.models import Check, CheckPlan
 from qa_tracker.services import history, history_devices, plans
 from qa_tracker.services.demo_follow_up import CODE as FOLLOW_UP
 from qa_tracker.services.demo_world import World
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.history import Done, Kept
-from qa_tracker.services.judging import Entry
 from qa_tracker.services.plans import Recurrence
 
 DAY = dt.timedelta(days=1)

@@ -19,8 +19,8 @@ from qa_tracker.services.demo_routine import (
 )
 from qa_tracker.services.demo_timeline import Event
 from qa_tracker.services.devices import Place
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.history import Done
-from qa_tracker.services.judging import Entry
 
 DAY, HOUR = dt.timedelta(days=1), dt.timedelta(hours=1)
 REPAIRED = "after-repair-or-change"

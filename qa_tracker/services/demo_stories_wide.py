@@ -12,8 +12,8 @@ from qa_tracker.services.demo_follow_up import CODE as FOLLOW_UP
 from qa_tracker.services.demo_routine import ANNUAL, TOE_LOG, Before, Routine
 from qa_tracker.services.demo_stories import DAY, HOUR, REPAIRED
 from qa_tracker.services.demo_timeline import Event
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.history import Done, Kept
-from qa_tracker.services.judging import Entry
 
 LOSSES_MM = {
     "C-4105": 5.1, "C-4106": 6.0, "L-5205": 4.4, "L-5206": 4.0, "P-2505": 5.8, "V-6502": 4.7, "M-6002": 5.5,

@@ -11,8 +11,8 @@ from collections.abc import Callable
 from dataclasses import dataclass, field
 
 from qa_tracker.services.demo_fleet import ProbeClass
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.items import Item
-from qa_tracker.services.judging import Entry
 
 NOTHING = Entry()
 GRADES_OF_REPAIR = {"cause": "repair", "baseline_decision": "keep", "acceptance_decision": "accept"}

@@ -13,8 +13,8 @@ from qa_tracker.services.demo_fleet import CLASSES
 from qa_tracker.services.demo_people import CAST
 from qa_tracker.services.demo_timeline import Timeline
 from qa_tracker.services.demo_values import Nature
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.history import Kept, Past
-from qa_tracker.services.judging import Entry
 from qa_tracker.services.recording import Facts
 
 MONTHS = 24

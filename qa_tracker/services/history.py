@@ -41,15 +41,19 @@ from qa_tracker.records.models import (
     TestObject,
 )
 from qa_tracker.records.models.base import Audited
-from qa_tracker.records.queries import library
+from qa_tracker.records.queries import library, uncertainties
 from qa_tracker.records.queries.baselines import SeriesKey
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
+from qa_tracker.records.queries.uncertainties import UncertaintyRow
 from qa_tracker.services import baselines, checks, judging, plans, recording
+from qa_tracker.services.deriving import attributes_of
+from qa_tracker.services.entries import Entry, read_entry
 from qa_tracker.services.history_rows import baseline_row, device_row
 from qa_tracker.services.items import Item, Surroundings, items_of
-from qa_tracker.services.judging import Entry, Instructions, Judged, MeasuredWith
+from qa_tracker.services.judging import Asked, Instructions, Judged
 from qa_tracker.services.recording import Facts
+from qa_tracker.services.weighing import measured_with
 
 M = TypeVar("M", bound=models.Model)
 A = TypeVar("A", bound=Audited)
@@ -90,6 +94,7 @@ class Past:
     procedures: dict[str, Procedure]
     measurands: dict[str, Measurand]
     criteria: dict[str, CriterionRow]
+    uncertainties: dict[str, UncertaintyRow]
     days: dict[int | None, SiteDays] = field(default_factory=dict)
     nominals: dict[int, dict[str, str]] = field(default_factory=dict)
 
@@ -150,6 +155,7 @@ def past(origin: str) -> Iterator[Past]:
             {row.code: row for row in Procedure.objects.all()},
             {row.code: row for row in Measurand.objects.all()},
             library.adopted_criteria(None),
+            uncertainties.in_force(None),
         )
 
 
@@ -230,9 +236,9 @@ def perform(
     """
     facts = facts or Facts()
     edition = past.editions[check.procedure.code]
-    items = items_for(past, kept, edition, facts.test_object)
-    entries = {item.key: answer(item) for item in items}
-    judged = judging.judge_all(items, entries, _instructions(check.site), _measured_with(facts), whole=True)
+    asked = _asked(past, kept, check, edition, facts, at)
+    entries = {item.key: answer(item) for item in asked.items}
+    judged = judging.judge_all(asked, entries, whole=True)
     shown = judging.shown_sha256(str(check.uid), edition.content_sha256, facts.as_text(at), judged)
     act = past.act("check.submitted", by, at, measured_at=facts.measured_at or at)
     submission = recording.record(
@@ -268,9 +274,11 @@ def items_for(
                 for c in kept.conditions.values()
             ],
             past.criteria,
-            {key: baseline_row(key, baseline) for key, baseline in kept.baselines.items()},
+            {key: (baseline_row(key, baseline),) for key, baseline in kept.baselines.items()},
             {},
             checks.nominals_of(test_object),
+            past.uncertainties,
+            test_object.id if test_object else None,
         )
         kept.items[key] = items_of(around)
     return kept.items[key]
@@ -340,7 +348,7 @@ def set_baselines(
         if one.item.spec.code not in codes or one.exact is None:
             continue
         text = (texts or {}).get(one.item.spec.code)
-        exact = judging.read_entry(one.item, Entry(text)) if text else one.exact
+        exact = read_entry(one.item, Entry(text)) if text else one.exact
         part = (
             kept.apertures.get(one.item.aperture.id) if one.item.aperture else None,
             kept.conditions.get(one.item.condition.id) if one.item.condition else None,
@@ -368,9 +376,13 @@ def _instructions(site: Site | None) -> Instructions:
     return Instructions(site.remedial_instruction, site.suspension_instruction) if site else Instructions()
 
 
-def _measured_with(facts: Facts) -> MeasuredWith:
-    return MeasuredWith(
-        facts.console.model if facts.console else "",
-        facts.console_software,
-        facts.test_object.id if facts.test_object else None,
+def _asked(past: Past, kept: Kept, check: Check, edition: EditionRow, facts: Facts, at: dt.datetime) -> Asked:
+    items = items_for(past, kept, edition, facts.test_object)
+    day = local_day(facts.measured_at or at, past.days_of(check.site).zone)
+    return Asked(
+        tuple(item for item in items if item.spec.kind != "derived"),
+        tuple(item for item in items if item.spec.kind == "derived"),
+        attributes_of(kept.device, facts.test_object),
+        _instructions(check.site),
+        measured_with(facts.console, facts.console_software, facts.test_object, day),
     )

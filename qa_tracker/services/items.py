@@ -4,29 +4,41 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from qa_tracker.core.applicability import Circumstances
 from qa_tracker.core.library import asked_of
 from qa_tracker.core.library_specs import MeasurandSpec
-from qa_tracker.records.queries import baselines, devices, library, series
+from qa_tracker.records.queries import baselines, devices, library, series, uncertainties
 from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow, DeviceRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.records.queries.series import PointRow
+from qa_tracker.records.queries.uncertainties import UncertaintyRow
 
 
 @dataclass(frozen=True)
 class Item:
-    """One field of a check. ``key`` tells it apart in forms, drafts and the API."""
+    """One field of a check. ``key`` tells it apart in forms, drafts and the API.
+
+    Each of ``criteria`` judges it; the first is the one its procedure names.
+    """
 
     key: str
     spec: MeasurandSpec
     aperture: ApertureRow | None
     condition: ConditionRow | None
     repeat: int
-    criterion: CriterionRow | None
+    criteria: tuple[CriterionRow, ...]
     baseline: BaselineRow | None
+    uncertainty: UncertaintyRow | None
+    met: Circumstances
     nominal: str | None
     last: PointRow | None
     quantity: str
+
+    @property
+    def criterion(self) -> CriterionRow | None:
+        """The limit that is named first."""
+        return self.criteria[0] if self.criteria else None
 
     @property
     def series(self) -> SeriesKey:
@@ -47,13 +59,19 @@ class Surroundings:
     apertures: list[ApertureRow]
     conditions: list[ConditionRow]
     criteria: dict[str, CriterionRow]
-    baselines: dict[SeriesKey, BaselineRow]
+    baselines: dict[SeriesKey, tuple[BaselineRow, ...]]
     last: dict[SeriesKey, PointRow]
     nominals: dict[str, str]
+    uncertainties: dict[str, UncertaintyRow]
+    test_object_id: int | None = None
 
 
 def surroundings(
-    device: DeviceRow, edition: EditionRow, site_id: int | None, nominals: dict[str, str]
+    device: DeviceRow,
+    edition: EditionRow,
+    site_id: int | None,
+    nominals: dict[str, str],
+    test_object_id: int | None,
 ) -> Surroundings:
     """Fetch what the items of a check need; the number of queries doesn't grow with the history."""
     codes = [spec.code for spec in edition.spec.measurands]
@@ -63,22 +81,23 @@ def surroundings(
         devices.apertures_of(device.id),
         devices.conditions_of(device.id),
         library.adopted_criteria(site_id),
-        baselines.in_force(device.id),
+        baselines.choices_in_force(device.id),
         series.last_readings(device.id, codes),
         nominals,
+        uncertainties.in_force(site_id),
+        test_object_id,
     )
 
 
 def items_of(around: Surroundings) -> tuple[Item, ...]:
     """Every item the edition asks of this device, in the edition's order.
 
-    A derived measurand is not asked: it is computed.
+    A derived measurand has its items too: nobody is asked for them, they are worked out.
     """
     return tuple(
         _item(around, spec, aperture, condition, repeat)
         for spec in around.edition.spec.measurands
-        if spec.kind != "derived"
-        and asked_of(spec, device_kind=around.device.kind, array_kind=around.device.array_kind or None)
+        if asked_of(spec, device_kind=around.device.kind, array_kind=around.device.array_kind or None)
         for aperture in _apertures(around, spec)
         for condition in _conditions(around, spec)
         for repeat in range(1, spec.repeats + 1)
@@ -101,16 +120,45 @@ def _item(
     repeat: int,
 ) -> Item:
     key = (spec.code, aperture.id if aperture else None, condition.id if condition else None)
-    criterion = next((around.criteria[code] for code in spec.criteria if code in around.criteria), None)
+    device = around.device
+    baseline = baselines.for_object(around.baselines.get(key, ()), around.test_object_id)
     return Item(
         key=".".join([spec.code, str(key[1] or 0), str(key[2] or 0), str(repeat)]),
         spec=spec,
         aperture=aperture,
         condition=condition,
         repeat=repeat,
-        criterion=criterion,
-        baseline=around.baselines.get(key),
+        criteria=criteria_for(spec, around.criteria, baseline),
+        baseline=baseline,
+        uncertainty=around.uncertainties.get(spec.code),
+        met=Circumstances(
+            device.array_kind,
+            device.protection_class,
+            device.applied_part,
+            spec.medium,
+            spec.method,
+        ),
         nominal=around.nominals.get(spec.code) if spec.nominal_from == "test_object" else spec.nominal,
         last=around.last.get(key),
         quantity=condition.test_frequency_mhz if condition else "",
     )
+
+
+def criteria_for(
+    spec: MeasurandSpec, adopted: dict[str, CriterionRow], baseline: BaselineRow | None
+) -> tuple[CriterionRow, ...]:
+    """The limits that judge a measurand: the first adopted one its procedure names, and those that name it.
+
+    A limit of the device's own spread that nobody's procedure asks for begins to judge with the first baseline
+    made of set-ups: until then the reading is recorded for its trend, as before.
+    """
+    named = next((adopted[code] for code in spec.criteria if code in adopted), None)
+    beside = [
+        row
+        for row in adopted.values()
+        if spec.code in row.spec.measurands
+        and row.code not in spec.criteria
+        and not (row.spec.criterion.of_own_spread and not (baseline and baseline.count))
+    ]
+    return (named, *beside) if named else tuple(beside)
+

@@ -3,53 +3,42 @@
 from __future__ import annotations
 
 import hashlib
-import uuid
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field
 from decimal import Decimal
-from functools import lru_cache
 
 from qa_tracker.core import conformity, decimals
 from qa_tracker.core.canonical import canonical
 from qa_tracker.core.conformity import Judgement
-from qa_tracker.core.criteria import Criterion
 from qa_tracker.core.decimals import Exact
 from qa_tracker.core.errors import DomainError, Invalid, SeveralInvalid
 from qa_tracker.core.sentence_codes import SentenceCode
+from qa_tracker.records.queries.library import CriterionRow
+from qa_tracker.services.entries import EMPTY, Entry, doubtful, left_empty, not_asked, read_entry
 from qa_tracker.services.items import Item
-
-NUMBERS = ("number", "count", "image", "derived")
-REASONS = ("in_use", "in_theatre", "being_disinfected", "isolation_room", "on_loan", "not_found", "other")
-
-
-@dataclass(frozen=True)
-class Entry:
-    """What was typed for one item; ``confirmed`` answers a value that was asked about."""
-
-    text: str = ""
-    qualifier: str = "="
-    unit: str = ""
-    not_tested: str = ""
-    remark: str = ""
-    condition_note: str = ""
-    confirmed: bool = False
-    origin: str = "typed"
-
-
-EMPTY = Entry()
-"""What an item has for which nothing was typed."""
+from qa_tracker.services.weighing import MeasuredWith, Weighed, weigh
 
 
 @dataclass(frozen=True)
 class JudgedItem:
-    """An item with its entry, the exact value, and the verdict where there is a limit."""
+    """An item with its entry, the exact value, and what its limits said; ``weighed`` is the one that decides."""
 
     item: Item
     entry: Entry
     exact: Exact | None
-    judgement: Judgement | None
-    reference: str
+    weighed: Weighed | None
     instruction: str
+    further: tuple[Weighed, ...] = ()
+
+    @property
+    def judgement(self) -> Judgement | None:
+        """The verdict of the limit that decides."""
+        return self.weighed.judgement if self.weighed else None
+
+    @property
+    def criterion(self) -> CriterionRow | None:
+        """The limit that decides."""
+        return self.weighed.criterion if self.weighed else None
 
     @property
     def is_read(self) -> bool:
@@ -96,22 +85,20 @@ class Instructions:
 
 
 @dataclass(frozen=True)
-class MeasuredWith:
-    """The part of a baseline's key that belongs to the whole check."""
+class Asked:
+    """What a check asks, what is worked out from it, and under what it is judged.
 
-    console_model: str = ""
-    console_software: str = ""
-    test_object_id: int | None = None
+    ``attributes`` are those of device and test object that formulas may name.
+    """
+
+    items: tuple[Item, ...]
+    derived: tuple[Item, ...] = ()
+    attributes: Mapping[str, Mapping[str, object]] = field(default_factory=dict)
+    instructions: Instructions = field(default_factory=Instructions)
+    measured_with: MeasuredWith = field(default_factory=MeasuredWith)
 
 
-def judge_all(
-    items: Sequence[Item],
-    entries: Mapping[str, Entry],
-    instructions: Instructions,
-    measured_with: MeasuredWith,
-    *,
-    whole: bool,
-) -> Judged:
+def judge_all(asked: Asked, entries: Mapping[str, Entry], *, whole: bool) -> Judged:
     """Judge every item.
 
     Parameters
@@ -127,7 +114,18 @@ def judge_all(
     SeveralInvalid
         with one refusal a field.
     """
-    errors: list[DomainError] = _unknown(items, entries)
+    exact = _read(asked.items, entries, whole=whole)
+    judged = [
+        _judge_item(item, entries.get(item.key, EMPTY), exact, asked)
+        for item in asked.items
+        if whole or entries.get(item.key, EMPTY).text or entries.get(item.key, EMPTY).qualifier == "not_seen"
+    ]
+    return Judged(tuple(judged), worst_of(judged))
+
+
+def _read(items: Sequence[Item], entries: Mapping[str, Entry], *, whole: bool) -> dict[str, Exact | None]:
+    """Read every entry, or refuse them all at once."""
+    errors: list[DomainError] = not_asked(items, entries)
     exact: dict[str, Exact | None] = {}
     for item in items:
         try:
@@ -136,15 +134,10 @@ def judge_all(
             errors.append(error)
     if whole:
         errors += [Invalid("reading.missing", field=item.key) for item in left_empty(items, entries)]
-        errors += list(_doubtful(items, entries, exact))
+        errors += doubtful(items, entries, exact)
     if errors:
         raise SeveralInvalid(tuple(errors))
-    judged = [
-        _judge_item(item, entries.get(item.key, EMPTY), exact, instructions, measured_with)
-        for item in items
-        if whole or entries.get(item.key, EMPTY).text or entries.get(item.key, EMPTY).qualifier == "not_seen"
-    ]
-    return Judged(tuple(judged), worst_of(judged))
+    return exact
 
 
 def worst_of(judged: Sequence[JudgedItem]) -> JudgedItem | None:
@@ -154,130 +147,45 @@ def worst_of(judged: Sequence[JudgedItem]) -> JudgedItem | None:
     return None if index is None else with_verdict[index]
 
 
-def _unknown(items: Sequence[Item], entries: Mapping[str, Entry]) -> list[DomainError]:
-    asked = {item.key for item in items}
-    return [Invalid("reading.not_asked", field=key, key=key) for key in entries if key not in asked]
-
-
-def read_entry(item: Item, entry: Entry) -> Exact | None:
-    """Read what was typed for one item.
-
-    Raises
-    ------
-    Invalid
-        ``number.*``, ``reading.unit_wrong``, ``reading.qualifier_not_allowed``, ``reading.grade_unknown``,
-        ``reading.seen_and_not_seen``, ``reading.both``, ``reading.reason_unknown``
-    """
-    if entry.not_tested:
-        if entry.text:
-            raise Invalid("reading.both", field=item.key)
-        if entry.not_tested not in REASONS:
-            raise Invalid("reading.reason_unknown", field=item.key, reason=entry.not_tested)
-        return None
-    if not entry.text and entry.qualifier != "not_seen":
-        return None
-    if entry.text and entry.qualifier == "not_seen":
-        raise Invalid("reading.seen_and_not_seen", field=item.key)
-    if entry.qualifier not in item.spec.qualifiers:
-        raise Invalid(
-            "reading.qualifier_not_allowed",
-            field=item.key,
-            qualifier=entry.qualifier,
-            allowed=", ".join(item.spec.qualifiers),
-        )
-    if entry.unit and entry.unit != item.spec.unit:
-        raise Invalid("reading.unit_wrong", field=item.key, unit=entry.unit, wanted=item.spec.unit)
-    return _value(item, entry)
-
-
-def _value(item: Item, entry: Entry) -> Exact | None:
-    spec = item.spec
-    if entry.qualifier == "not_seen":
-        return None
-    if spec.kind in NUMBERS:
-        return decimals.parse(entry.text, spec.resolution, field=item.key)
-    known = [grade.value for grade in spec.grades] if spec.kind == "grade" else ["yes", "no"]
-    if spec.kind in ("grade", "yes_no") and entry.text not in known:
-        raise Invalid("reading.grade_unknown", field=item.key, grade=entry.text, known=", ".join(known))
-    if len(entry.text) > 300:
-        raise Invalid("reading.text_too_long", field=item.key, most=300)
-    return None
-
-
-def _answered(entry: Entry) -> bool:
-    return bool(entry.text or entry.not_tested or entry.qualifier == "not_seen")
-
-
-def left_empty(items: Sequence[Item], entries: Mapping[str, Entry]) -> list[Item]:
-    """Required items without a value or a reason; of items that share a group one answer is enough."""
-    answered = {
-        (item.spec.one_of, item.series[1:])
-        for item in items
-        if item.spec.one_of and _answered(entries.get(item.key, EMPTY))
-    }
-    return [
-        item
-        for item in items
-        if (item.spec.required or item.spec.one_of)
-        and not _answered(entries.get(item.key, EMPTY))
-        and (item.spec.one_of is None or (item.spec.one_of, item.series[1:]) not in answered)
-    ]
-
-
-def _doubtful(
-    items: Sequence[Item], entries: Mapping[str, Entry], exact: Mapping[str, Exact | None]
-) -> list[DomainError]:
-    """Values that look mistyped and were not confirmed."""
-    found: list[DomainError] = []
-    for item in items:
-        value, entry = exact.get(item.key), entries.get(item.key, EMPTY)
-        if value is None or entry.confirmed:
-            continue
-        last = item.last
-        before = (
-            decimals.from_scaled(last.scaled, last.places or 0) if last and last.scaled is not None else None
-        )
-        band = item.spec.plausible
-        if before is not None and decimals.near_factor_ten(value.decimal, before):
-            found.append(
-                Invalid(
-                    "reading.confirm_tenfold",
-                    field=item.key,
-                    value=value.entered,
-                    last=decimals.plain(before),
-                )
-            )
-        elif band and decimals.far_outside(value.decimal, Decimal(band.low), Decimal(band.high)):
-            found.append(
-                Invalid(
-                    "reading.confirm_outside",
-                    field=item.key,
-                    value=value.entered,
-                    low=band.low,
-                    high=band.high,
-                )
-            )
-    return found
-
-
 def _judge_item(
     item: Item,
     entry: Entry,
     exact: Mapping[str, Exact | None],
-    instructions: Instructions,
-    measured_with: MeasuredWith,
+    asked: Asked,
 ) -> JudgedItem:
     value = exact.get(item.key)
-    reference = reference_of(item, exact)
-    judgement = None
+    weighed: tuple[Weighed, ...] = ()
     in_group_unread = item.spec.one_of is not None and not entry.text and not entry.not_tested
-    if (
-        item.criterion is not None
-        and not in_group_unread
-        and (item.spec.required or entry.text or entry.not_tested)
-    ):
-        judgement = _judge(item, entry, value, reference, measured_with)
-    return JudgedItem(item, entry, value, judgement, reference, instructions.for_verdict(judgement))
+    if not in_group_unread and (item.spec.required or entry.text or entry.not_tested):
+        reference, repeats = reference_of(item, exact), _repeats(item, exact)
+        weighed = tuple(
+            weigh(item, criterion, entry, value, reference, repeats, asked.measured_with)
+            for criterion in item.criteria
+        )
+    return decided(item, entry, value, weighed, asked.instructions)
+
+
+def decided(
+    item: Item,
+    entry: Entry,
+    value: Exact | None,
+    weighed: Sequence[Weighed],
+    instructions: Instructions,
+) -> JudgedItem:
+    """An item with what each of its limits said: the worst decides, the first of equals."""
+    index = conformity.worst([one.judgement for one in weighed])
+    if index is None:
+        return JudgedItem(item, entry, value, None, "")
+    further = tuple(one for position, one in enumerate(weighed) if position != index)
+    chosen = weighed[index]
+    return JudgedItem(item, entry, value, chosen, instructions.for_verdict(chosen.judgement), further)
+
+
+def _repeats(item: Item, exact: Mapping[str, Exact | None]) -> tuple[Decimal, ...]:
+    """The readings of an item's measurand at its aperture and condition."""
+    stem = item.key.rpartition(".")[0]
+    values = (exact.get(f"{stem}.{number}") for number in range(1, item.spec.repeats + 1))
+    return tuple(value.decimal for value in values if value is not None)
 
 
 def reference_of(item: Item, exact: Mapping[str, Exact | None]) -> str:
@@ -286,57 +194,6 @@ def reference_of(item: Item, exact: Mapping[str, Exact | None]) -> str:
         other = exact.get(item.key.replace(item.spec.code, item.spec.reference_from, 1))
         return decimals.plain(other.decimal) if other else ""
     return item.nominal or ""
-
-
-def _judge(
-    item: Item, entry: Entry, value: Exact | None, reference: str, measured_with: MeasuredWith
-) -> Judgement | None:
-    if item.criterion is None:
-        return None
-    judgement = _verdict_on(
-        item.criterion.uid,
-        item.criterion.spec.criterion,
-        value=decimals.plain(value.decimal) if value else (entry.text or None),
-        kind=item.spec.kind,
-        qualifier=entry.qualifier,
-        nominal=reference or None,
-        baseline=decimals.plain(item.baseline.value) if item.baseline else None,
-        baseline_qualifier=item.baseline.qualifier if item.baseline else "=",
-        reference=reference or None,
-        quantity=item.quantity or None,
-        unit=item.spec.unit if item.spec.kind in NUMBERS else None,
-        criterion_unit=item.criterion.spec.unit if item.spec.kind in NUMBERS else None,
-    )
-    flags = baseline_flags(item, measured_with)
-    return replace(judgement, parameters=judgement.parameters | flags) if flags else judgement
-
-
-@lru_cache(maxsize=8192)
-def _verdict_on(criterion_uid: uuid.UUID, criterion: Criterion, **question: str | None) -> Judgement:
-    """The same question has the same answer, and most readings of a fleet ask one that was asked before.
-
-    Numbers are asked as texts, since 146 and 146.0 are equal and yet not the same sentence.
-    """
-    return conformity.judge(criterion, **question)  # type: ignore[arg-type]
-
-
-def baseline_flags(item: Item, measured_with: MeasuredWith) -> dict[str, str]:
-    """How the baseline's key differs from this check: flagged on the verdict, never passed over."""
-    base, criterion = item.baseline, item.criterion
-    if base is None or criterion is None or criterion.spec.criterion.basis != "baseline":
-        return {}
-    flags = {}
-    for name, was, now in (
-        ("mismatch_console", base.console_model, measured_with.console_model),
-        ("mismatch_software", base.console_software, measured_with.console_software),
-    ):
-        if was and now and was != now:
-            flags[name] = f"{was} / {now}"
-    if base.test_object_id and measured_with.test_object_id not in (None, base.test_object_id):
-        flags["mismatch_object"] = base.test_object
-    if base.under_review:
-        flags["baseline_under_review"] = "yes"
-    return flags
 
 
 def shown_sha256(check_uid: str, edition_sha256: str, facts: Mapping[str, str | None], judged: Judged) -> str:

@@ -6,7 +6,8 @@ from collections.abc import Mapping
 
 from qa_tracker.core.errors import DomainError, SeveralInvalid
 from qa_tracker.services.checks import Sheet
-from qa_tracker.services.judging import Entry, Judged, judge_all
+from qa_tracker.services.entries import Entry
+from qa_tracker.services.judging import Judged, judge_all
 
 
 def judge_what_can_be(laid: Sheet, entries: Mapping[str, Entry]) -> tuple[Judged, tuple[DomainError, ...]]:
@@ -22,13 +23,13 @@ def judge_what_can_be(laid: Sheet, entries: Mapping[str, Entry]) -> tuple[Judged
     refused = [error for error in _refusals(laid, entries) if error.code != "reading.missing"]
     unreadable = {error.field for error in refused if not error.code.startswith("reading.confirm_")}
     readable = {key: entry for key, entry in entries.items() if key not in unreadable}
-    judged = judge_all(laid.items, readable, laid.instructions, laid.measured_with, whole=False)
+    judged = judge_all(laid.asked, readable, whole=False)
     return judged, tuple(refused)
 
 
 def _refusals(laid: Sheet, entries: Mapping[str, Entry]) -> tuple[DomainError, ...]:
     try:
-        judge_all(laid.items, entries, laid.instructions, laid.measured_with, whole=True)
+        judge_all(laid.asked, entries, whole=True)
     except SeveralInvalid as several:
         return several.errors
     return ()

@@ -16,6 +16,7 @@ from qa_tracker.records.ids import uuid7
 from qa_tracker.records.models import (
     Check,
     Device,
+    FurtherVerdict,
     Instrument,
     NotTested,
     Person,
@@ -28,8 +29,10 @@ from qa_tracker.records.models import (
 from qa_tracker.records.queries.library import EditionRow, measurand_ids
 from qa_tracker.records.writers import new_row
 from qa_tracker.services import faults
+from qa_tracker.services.items import Item
 from qa_tracker.services.judging import Judged, JudgedItem
 from qa_tracker.services.states import set_state
+from qa_tracker.services.weighing import Weighed
 
 
 @dataclass(frozen=True)
@@ -173,37 +176,42 @@ def _record_item(
                 **key,
             )
         )
-    if one.judgement is not None:
-        act.insert(_verdict(submission, reading, one, key))
-
-
-def _verdict(
-    submission: Submission, reading: Reading | None, one: JudgedItem, key: dict[str, int | None]
-) -> Verdict:
-    judgement, item = one.judgement, one.item
-    if judgement is None or item.criterion is None:
-        raise ValueError("only a judged item has a verdict row")
-    basis = item.criterion.spec.criterion.basis
-    return new_row(
-        Verdict,
-        submission_id=submission.pk,
-        reading_id=reading.pk if reading else None,
-        repeat=item.repeat,
-        verdict=judgement.verdict,
-        level=judgement.level or "",
-        criterion_id=item.criterion.id,
-        baseline_id=item.baseline.id if item.baseline and basis == "baseline" else None,
-        reference=one.reference if basis in ("nominal", "ratio") else "",
-        quantity=item.quantity,
-        rule="simple",
-        code=str(judgement.code),
-        parameters=canonical(judgement.parameters).decode(),
-        departure=plain(judgement.departure) if judgement.departure is not None else "",
-        allowance=plain(judgement.allowance) if judgement.allowance is not None else "",
-        used=plain(judgement.used) if judgement.used is not None else "",
-        instruction=one.instruction,
-        **key,
+    if one.weighed is None:
+        return
+    verdict = act.insert(
+        new_row(
+            Verdict,
+            submission_id=submission.pk,
+            reading_id=reading.pk if reading else None,
+            repeat=item.repeat,
+            instruction=one.instruction,
+            **said_columns(one.weighed, item),
+            **key,
+        )
     )
+    for position, each in enumerate(one.further, start=1):
+        act.insert(
+            new_row(FurtherVerdict, verdict_of_id=verdict.pk, position=position, **said_columns(each, item))
+        )
+
+
+def said_columns(weighed: Weighed, item: Item) -> dict[str, object]:
+    """What a limit said of a reading, as columns, with all it was judged by."""
+    judgement = weighed.judgement
+    numbers = {name: getattr(judgement, name) for name in ("departure", "allowance", "used")}
+    return {
+        "verdict": judgement.verdict,
+        "level": judgement.level or "",
+        "criterion_id": weighed.criterion.id,
+        "baseline_id": item.baseline.id if item.baseline and weighed.basis == "baseline" else None,
+        "reference": weighed.reference if weighed.basis in ("nominal", "ratio") else "",
+        "quantity": item.quantity,
+        "uncertainty": weighed.uncertainty,
+        "rule": weighed.rule,
+        "code": str(judgement.code),
+        "parameters": canonical(judgement.parameters).decode(),
+        **{name: "" if number is None else plain(number) for name, number in numbers.items()},
+    }
 
 
 def _sign(
@@ -249,12 +257,20 @@ def _told(
                 "unit": one.item.spec.unit,
                 "not_tested": one.entry.not_tested or None,
                 "verdict": one.judgement.verdict if one.judgement else None,
-                "criterion": one.item.criterion.code if one.item.criterion and one.judgement else None,
+                "criterion": one.criterion.code if one.criterion else None,
+                **_further_told(one),
             }
             for one in judged.items
             if one.is_read or one.entry.not_tested or one.judgement
         ],
     }
+
+
+def _further_told(one: JudgedItem) -> dict[str, object]:
+    """What further limits said; left out of a leaf where only one judges, as it was before there were others."""
+    if not one.further:
+        return {}
+    return {"further": {each.criterion.code: each.judgement.verdict for each in one.further}}
 
 
 def second_signature(

@@ -26,7 +26,7 @@ from qa_tracker.services import (
 from qa_tracker.services.baselines import Value
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Place
-from qa_tracker.services.judging import Entry
+from qa_tracker.services.entries import Entry
 from tests import builders
 from tests.builders import PASSWORD
 

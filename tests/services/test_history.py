@@ -12,7 +12,7 @@ from qa_tracker.records import ledger
 from qa_tracker.records.models import Baseline, Check, Device, Fault, Submission, Verdict
 from qa_tracker.records.queries.ledger import every_leaf
 from qa_tracker.services import history, history_devices, upkeep
-from qa_tracker.services.judging import Entry
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.recording import Facts
 from tests import builders
 

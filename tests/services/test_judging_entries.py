@@ -13,7 +13,7 @@ from qa_tracker.services import baselines, checks, devices, objects, upkeep
 from qa_tracker.services.baselines import Value
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Place
-from qa_tracker.services.judging import Entry
+from qa_tracker.services.entries import Entry
 from tests import builders
 
 QUARTERLY, ANNUAL, TOE = "quarterly-mechanical-uniformity", "annual-survey", "toe-leakage-log"
@@ -293,10 +293,12 @@ def test_verdict_says_that_console_and_test_object_are_others_than_its_baselines
         site=ward.site, name="Other phantom", serial="TM-9", material="urethane", nominals={},
         actor=ward.physicist, at=now(),
     )  # fmt: skip
-    told = penetration(ward, "150", test_object=other).parameters
+    found = penetration(ward, "150", test_object=other)
+    told = found.parameters
+    assert (found.verdict, found.code) == ("not_assessable", "other_object")
     assert {name: told[name] for name in told if "mismatch" in name} == {
         "mismatch_console": "OG-70 / OG-90",
-        "mismatch_object": "General phantom TM-3412",
+        "mismatch_object": "General phantom TM-3412 / Other phantom TM-9",
     }
 
 

@@ -11,7 +11,7 @@ from qa_tracker.core.errors import Conflict, Forbidden, Invalid, NotFound, Sever
 from qa_tracker.records.models import Check, Device, Fault, Signature
 from qa_tracker.services import checks, dossiers, states, upkeep
 from qa_tracker.services.checks import Typed
-from qa_tracker.services.judging import Entry
+from qa_tracker.services.entries import Entry
 from tests import builders
 
 pytestmark = pytest.mark.django_db

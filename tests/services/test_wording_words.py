@@ -22,7 +22,7 @@ from qa_tracker.core.roles import ROLES
 from qa_tracker.core.units import UNITS
 from qa_tracker.core.workflow import CHECK, DEVICE, DOSSIER, FAULT
 from qa_tracker.services import wording, wording_words
-from qa_tracker.services.judging import REASONS
+from qa_tracker.services.entries import REASONS
 from qa_tracker.services.owed import CHANNELS
 
 SERVICES = Path(wording.__file__).parent

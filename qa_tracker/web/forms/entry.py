@@ -15,8 +15,8 @@ from qa_tracker.core.errors import DomainError, Invalid, NotFound
 from qa_tracker.core.schedule_days import zone_of
 from qa_tracker.records.queries.submissions import SubmissionRow
 from qa_tracker.services.checks import Typed
+from qa_tracker.services.entries import Entry
 from qa_tracker.services.items import Item
-from qa_tracker.services.judging import Entry
 
 NOT_TYPED = ("csrfmiddlewaretoken", "revision", "then", "typed_by", "password")
 UNCHANGED = "unchanged"

@@ -12,8 +12,9 @@ from django.utils.translation import gettext as _
 
 from qa_tracker.core.units import UNITS
 from qa_tracker.services import wording
+from qa_tracker.services.entries import REASONS
 from qa_tracker.services.items import Item
-from qa_tracker.services.judging import REASONS, Judged, JudgedItem
+from qa_tracker.services.judging import Judged, JudgedItem
 from qa_tracker.web.presenters.judged import Shown, shown_item, value_words
 from qa_tracker.web.refused import Refused
 

@@ -73,7 +73,7 @@ def shown_item(one: JudgedItem) -> Shown | None:
         judgement.level or "",
         str(judgement.code),
         judgement.parameters,
-        one.item.criterion,
+        one.criterion,
         one.instruction,
     )
 

@@ -17,7 +17,7 @@ from qa_tracker.records.queries import checks as queries
 from qa_tracker.records.queries import submissions
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.services import checks, excuses, guards, wording
-from qa_tracker.services.judging import REASONS
+from qa_tracker.services.entries import REASONS
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.presenters.entry import Choice
 

@@ -26,7 +26,7 @@ from qa_tracker.records.queries.submissions import SignatureRow
 from qa_tracker.services import cautions, checks, drafts, guards, live, wording
 from qa_tracker.services.checks import Sheet
 from qa_tracker.services.drafts import Kept, KeptMeanwhile
-from qa_tracker.services.judging import REASONS
+from qa_tracker.services.entries import REASONS
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.forms import entry as inputs
 from qa_tracker.web.presenters.entry import Choice, outcome, sections
