@@ -59,7 +59,7 @@ def enter_probe(world: World, each: Transducer, place: Place, maker: str, at: dt
     device = devices.add_probe(act, identity, place, facts, list(kind.apertures))
     apertures = world.past.rows_of(Aperture, act)
     kept = Kept(device, world.past.newest(Placement), apertures={row.pk: row for row in apertures})
-    kept.array_kind = kind.array_kind
+    kept.array_kind, kept.applied_part = kind.array_kind, kind.applied_part
     world.probes[each.serial] = kept
     world.add_nature(kept, each.kind)
     set_preset(world, kept, kind.preset, kind.frequency_mhz, "1540", at)

@@ -70,9 +70,15 @@ class Kept:
     apertures: dict[int, Aperture] = field(default_factory=dict)
     conditions: dict[int, Condition] = field(default_factory=dict)
     array_kind: str = ""
+    applied_part: str = ""
     baselines: dict[SeriesKey, Baseline] = field(default_factory=dict)
     attempts: int = 0
     items: dict[tuple[int, int], tuple[Item, ...]] = field(default_factory=dict)
+
+    @property
+    def protection_class(self) -> str:
+        """Of a scanner; empty for a probe."""
+        return self.scanner_facts.protection_class if self.scanner_facts else ""
 
 
 @dataclass(frozen=True)
@@ -185,6 +191,7 @@ def keep(device: Device) -> Kept:
         {row.pk: row for row in Aperture.objects.filter(device=device).order_by("id")},
         {row.pk: row for row in Condition.objects.filter(device=device).order_by("id")},
         probe.array_kind if probe else "",
+        probe.applied_part if probe else "",
         {(row.measurand.code, row.aperture_id, row.condition_id): row for row in in_force},
         attempts.count(),
     )
@@ -266,7 +273,7 @@ def items_for(
     key = (edition.id, test_object.id if test_object else 0)
     if key not in kept.items:
         around = Surroundings(
-            device_row(kept.device, kept.array_kind),
+            device_row(kept.device, kept.array_kind, kept.applied_part, kept.protection_class),
             edition,
             [ApertureRow(a.id, a.uid, a.name, a.elements, a.pitch_um) for a in kept.apertures.values()],
             [

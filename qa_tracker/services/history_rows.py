@@ -11,15 +11,15 @@ from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey, spread_
 from qa_tracker.records.queries.devices import DeviceRow
 
 
-def device_row(d: Device, array_kind: str) -> DeviceRow:
+def device_row(d: Device, array_kind: str, applied_part: str, protection_class: str) -> DeviceRow:
     """What the items of a check need to know of a device."""
     return DeviceRow(
         id=d.id, uid=d.uid, version=d.version, kind=d.kind, maker=d.maker, model=d.model, serial=d.serial,
         inventory_number=d.inventory_number, handheld=d.handheld, state=d.state, state_note=d.state_note,
         state_since=d.state_since, site_id=d.site_id, site_code="", site_name="", pool_id=d.pool_id,
         pool_name="", scanner_id=d.scanner_id, scanner_uid=None, scanner_label="", location_id=d.location_id,
-        location="", location_position=0, array_kind=array_kind, contact_class="", applied_part="",
-        protection_class="", software_version="", register={},
+        location="", location_position=0, array_kind=array_kind, contact_class="", applied_part=applied_part,
+        protection_class=protection_class, software_version="", register={},
     )  # fmt: skip
 
 

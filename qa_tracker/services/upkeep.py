@@ -1,4 +1,4 @@
-"""Verifying what is stored: the ledger against the rows it covers, and every verdict against its parts."""
+"""Verifying what is stored: the ledger against the rows it covers, and against its checkpoints."""
 
 from __future__ import annotations
 
@@ -11,16 +11,13 @@ from typing import Any
 from django.apps import apps
 from django.db.models import Exists, OuterRef, Q, Subquery
 
-from qa_tracker.core import conformity, decimals
 from qa_tracker.core.canonical import canonical
-from qa_tracker.core.criteria import Criterion as PureCriterion
 from qa_tracker.core.errors import DomainError
 from qa_tracker.core.merkle import Frontier, leaf_hash
 from qa_tracker.records import ledger
-from qa_tracker.records.models import Baseline, Criterion, Verdict, Version
+from qa_tracker.records.models import Version
 from qa_tracker.records.models.base import Audited, Fact, Noun
 from qa_tracker.records.queries.ledger import LeafRow, every_leaf, list_checkpoints, rows_without_leaf
-from qa_tracker.records.queries.library import criterion_spec
 from qa_tracker.records.rows import columns_of, digest_of, moment_text
 from qa_tracker.seals.notes import open_checkpoint
 from qa_tracker.services import checkpoints
@@ -198,61 +195,3 @@ def _verify_checkpoints(size: int) -> list[Problem]:
         if roots.get(said.size) != said.root:
             problems.append(Problem(None, "checkpoint_outside_differs", str(said.size)))
     return problems
-
-
-@dataclass(frozen=True)
-class VerdictFinding:
-    """The answer of re-deriving every verdict."""
-
-    verdicts: int
-    problems: tuple[Problem, ...]
-
-
-def recheck_verdicts() -> VerdictFinding:
-    """Re-derive every stored verdict from its stored parts: reading, criterion, baseline, reference. Reads only."""
-    problems, count = [], 0
-    criteria = {row.id: (row.code, criterion_spec(row.content)) for row in Criterion.objects.all()}
-    joins = ("reading", "measurand", "baseline")
-    for verdict in Verdict.objects.select_related(*joins).order_by("id").iterator(chunk_size=2000):
-        count += 1
-        code, spec = criteria.get(verdict.criterion_id or 0, ("", None))
-        if spec is None or not _agrees(verdict, spec.criterion, spec.unit):
-            problems.append(Problem(None, "verdict_differs", f"verdict {verdict.pk} {code}"))
-    return VerdictFinding(count, tuple(problems))
-
-
-def _agrees(verdict: Verdict, criterion: PureCriterion, unit: str) -> bool:
-    reading, baseline = verdict.reading, verdict.baseline
-    kind = verdict.measurand.kind
-    numeric = kind in ("number", "count", "image", "derived")
-    value: Any = None
-    if reading is not None:
-        value = (
-            decimals.from_scaled(reading.scaled, reading.places or 0)
-            if reading.scaled is not None
-            else reading.entered or None
-        )
-    found = conformity.judge(
-        criterion,
-        value=value,
-        kind=kind,
-        qualifier=reading.qualifier if reading else "=",
-        nominal=verdict.reference or None,
-        reference=verdict.reference or None,
-        baseline=_value_of(baseline),
-        baseline_qualifier=baseline.qualifier if baseline else "=",
-        quantity=verdict.quantity or None,
-        unit=verdict.measurand.unit if numeric else None,
-        criterion_unit=unit if numeric else None,
-    )
-    kept = json.loads(verdict.parameters)
-    same = all(kept.get(name) == value for name, value in found.parameters.items())
-    return same and (found.verdict, found.level or "", str(found.code)) == (
-        verdict.verdict,
-        verdict.level,
-        verdict.code,
-    )
-
-
-def _value_of(baseline: Baseline | None) -> Any:
-    return decimals.from_scaled(baseline.scaled, baseline.places) if baseline else None

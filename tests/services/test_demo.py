@@ -29,7 +29,7 @@ from qa_tracker.records.models import (
 from qa_tracker.records.queries.ledger import every_leaf, holds_demonstration
 from qa_tracker.records.queries.library import criteria_by_id
 from qa_tracker.records.queries.series import series_of
-from qa_tracker.services import demo, upkeep
+from qa_tracker.services import demo, rechecking, upkeep
 from qa_tracker.services.demo_fleet import PROBE_MODELS
 from qa_tracker.services.wording_leaves import SENTENCES
 
@@ -299,7 +299,7 @@ def test_verdicts_when_judged_again_are_the_same(loaded):
             baseline=verdict.baseline.entered,
         )
         assert again.verdict == verdict.verdict
-    assert upkeep.recheck_verdicts().problems == ()
+    assert rechecking.recheck_verdicts().problems == ()
 
 
 def test_demo_when_loaded_twice_is_refused(loaded):

@@ -9,7 +9,7 @@ from django.utils.timezone import now
 
 from qa_tracker.core.errors import SeveralInvalid
 from qa_tracker.records.models import Aperture, NotTested, Reading, Verdict
-from qa_tracker.services import baselines, checks, devices, objects, upkeep
+from qa_tracker.services import baselines, checks, devices, objects, rechecking
 from qa_tracker.services.baselines import Value
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Place
@@ -337,4 +337,4 @@ def test_stored_verdicts_agree_with_their_parts_when_they_came_from_baselines_an
         Verdict.objects.filter(reading__entered__in=("82.1", "6")).values_list("reading__entered", "verdict")
     )
     assert said == {"82.1": "suspension", "6": "remedial"}
-    assert upkeep.recheck_verdicts().problems == ()
+    assert rechecking.recheck_verdicts().problems == ()

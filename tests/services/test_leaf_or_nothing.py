@@ -24,7 +24,18 @@ from qa_tracker.records import ledger
 from qa_tracker.records.models import ApiToken, CriteriaSet, Edition, Location, RoleGrant
 from qa_tracker.records.queries.ledger import list_leaves
 from qa_tracker.records.queries.scope import EVERYTHING
-from qa_tracker.services import checkpoints, checks, dossiers, drafts, faults, library, people, states, upkeep
+from qa_tracker.services import (
+    checkpoints,
+    checks,
+    dossiers,
+    drafts,
+    faults,
+    library,
+    people,
+    rechecking,
+    states,
+    upkeep,
+)
 from qa_tracker.services.baselines import Value
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Identity, Place
@@ -370,5 +381,5 @@ def test_ledger_covers_every_row_when_all_commands_have_run(shared_ward):
         command(name)(**make(shared_ward), at=now())
     connection.check_constraints()
     assert upkeep.verify_ledger().problems == ()
-    assert upkeep.recheck_verdicts().problems == ()
+    assert rechecking.recheck_verdicts().problems == ()
     assert Location.objects.filter(name="Clinic").exists()

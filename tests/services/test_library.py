@@ -10,7 +10,7 @@ from django.utils.timezone import now
 from qa_tracker.core.errors import Conflict, DomainError, Forbidden
 from qa_tracker.records.models import Adoption, CriteriaSet, Criterion, Edition, Measurand, Verdict
 from qa_tracker.records.queries import library as rows
-from qa_tracker.services import checks, library, upkeep
+from qa_tracker.services import checks, library, rechecking
 from tests import builders
 
 
@@ -160,7 +160,7 @@ def test_new_limits_judge_later_checks_and_leave_earlier_verdicts(ward):
     builders.submitted(again, ward.technician, dark_elements="1")
     verdicts = Verdict.objects.filter(measurand__code="dark_elements").order_by("id")
     assert [row.verdict for row in verdicts] == ["conforming", "remedial"]
-    assert upkeep.recheck_verdicts().problems == ()
+    assert rechecking.recheck_verdicts().problems == ()
 
 
 def test_reading_gets_no_verdict_when_its_limits_are_published_and_not_adopted(ward):

@@ -9,7 +9,7 @@ from django.utils.timezone import now
 
 from qa_tracker.core.errors import Conflict, Forbidden, Invalid, NotFound, SeveralInvalid
 from qa_tracker.records.models import Check, Device, Fault, Signature
-from qa_tracker.services import checks, dossiers, states, upkeep
+from qa_tracker.services import checks, dossiers, rechecking, states, upkeep
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.entries import Entry
 from tests import builders
@@ -182,6 +182,6 @@ def test_dossier_verifies_and_no_changed_byte_does(ward, settings):
 def test_ledger_and_verdicts_agree_after_the_whole_job(ward):
     sign(ward, typed(ward, lens_grade="red"), quarantine=True)
     assert upkeep.verify_ledger().problems == ()
-    found = upkeep.recheck_verdicts()
+    found = rechecking.recheck_verdicts()
     assert found.verdicts > 5
     assert found.problems == ()

@@ -16,7 +16,7 @@ from qa_tracker.records import guards, guards_postgresql, guards_sqlite, ledger
 from qa_tracker.records.models import Device, Fault, Reading, Signature, Submission, Verdict, Version
 from qa_tracker.records.models.ledger import Checkpoint, Leaf, LedgerHead
 from qa_tracker.seals.notes import make_note_key, sign_checkpoint
-from qa_tracker.services import checkpoints, keys, states, upkeep
+from qa_tracker.services import checkpoints, keys, rechecking, states, upkeep
 from qa_tracker.services.wording_findings import PROBLEMS
 from tests import builders
 
@@ -195,7 +195,7 @@ TAMPERINGS = {
 
 def test_nothing_is_named_when_nothing_was_changed(ward):
     assert upkeep.verify_ledger().problems == ()
-    assert upkeep.recheck_verdicts().problems == ()
+    assert rechecking.recheck_verdicts().problems == ()
 
 
 @pytest.mark.parametrize("name", TAMPERINGS)
@@ -219,11 +219,11 @@ def test_tampering_is_named_when_the_ledger_is_verified(ward, name):
 def test_changed_verdict_is_named_when_verdicts_are_rechecked(ward, columns):
     row = Verdict.objects.get(verdict="remedial")
     change(Verdict, row.pk, **columns)
-    (problem,) = upkeep.recheck_verdicts().problems
+    (problem,) = rechecking.recheck_verdicts().problems
     assert (problem.what, problem.where.split()[:2]) == ("verdict_differs", ["verdict", str(row.pk)])
 
 
 def test_reading_changed_to_another_grade_is_named_when_verdicts_are_rechecked(ward):
     row = Reading.objects.get(verdict__verdict="remedial")
     change(Reading, row.pk, entered="red")
-    assert [problem.what for problem in upkeep.recheck_verdicts().problems] == ["verdict_differs"]
+    assert [problem.what for problem in rechecking.recheck_verdicts().problems] == ["verdict_differs"]

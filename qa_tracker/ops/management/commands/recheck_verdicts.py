@@ -9,7 +9,7 @@ from typing import Any
 from django.core.management.base import BaseCommand, CommandParser
 
 from qa_tracker.ops.facts import add_json, print_facts
-from qa_tracker.services import upkeep
+from qa_tracker.services import rechecking
 
 
 class Command(BaseCommand):
@@ -21,7 +21,7 @@ class Command(BaseCommand):
         add_json(parser)
 
     def handle(self, *args: Any, **options: Any) -> None:
-        found = upkeep.recheck_verdicts()
+        found = rechecking.recheck_verdicts()
         lines = [f"{each.what}: {each.where}" for each in found.problems]
         lines.append(f"{found.verdicts} verdict(s) derived again, {len(found.problems)} differ.")
         facts = asdict(found) | {"agrees": not found.problems}

@@ -1,0 +1,169 @@
+"""Deriving every stored verdict again from its stored parts: reading, limit, baseline, uncertainty, rule."""
+
+from __future__ import annotations
+
+import datetime as dt
+import json
+from collections.abc import Iterator
+from dataclasses import dataclass
+from decimal import Decimal
+
+from qa_tracker.core import conformity, decimals
+from qa_tracker.core.applicability import METHOD_OF_ORIGIN, Circumstances, Standing, unfit
+from qa_tracker.core.judgement import Judgement
+from qa_tracker.core.library_specs import CriterionSpec, MeasurandSpec
+from qa_tracker.core.own_spread import OwnSpread
+from qa_tracker.core.schedule import local_day
+from qa_tracker.core.sentence_codes import SentenceCode
+from qa_tracker.records.models import Baseline, Criterion, FurtherVerdict, Reading, Verdict
+from qa_tracker.records.queries import baselines, library
+from qa_tracker.records.queries.device_facts import FactsThen, facts_over_time
+from qa_tracker.records.queries.library import criterion_spec
+from qa_tracker.services.entries import NUMBERS
+
+WORKED_OUT = {SentenceCode.NO_INPUT, SentenceCode.OPEN_INPUT, SentenceCode.LAYOUT_COMPENSATED}
+JOINS = (
+    "reading", "measurand", "baseline__test_object", "submission__test_object", "submission__check_of__site",
+)  # fmt: skip
+BATCH = 2000
+
+
+@dataclass(frozen=True)
+class VerdictProblem:
+    """A verdict that is not what its parts give: which row, and by which limit."""
+
+    what: str
+    where: str
+
+
+@dataclass(frozen=True)
+class VerdictFinding:
+    """The answer of re-deriving every verdict."""
+
+    verdicts: int
+    problems: tuple[VerdictProblem, ...]
+
+
+@dataclass(frozen=True)
+class _Known:
+    """What is fetched once for all verdicts."""
+
+    criteria: dict[int, tuple[str, CriterionSpec]]
+    facts: dict[int, list[FactsThen]]
+    measurands: dict[int, dict[str, MeasurandSpec]]
+
+    def measurand(self, edition_id: int, code: str) -> MeasurandSpec | None:
+        """A measurand as an edition has it; each edition is read once."""
+        if edition_id not in self.measurands:
+            spec = library.edition_by_id(edition_id).spec
+            self.measurands[edition_id] = {one.code: one for one in spec.measurands}
+        return self.measurands[edition_id].get(code)
+
+
+def recheck_verdicts() -> VerdictFinding:
+    """Re-derive every stored verdict, and what further limits said. Reads only."""
+    known = _Known(
+        {row.id: (row.code, criterion_spec(row.content)) for row in Criterion.objects.all()},
+        facts_over_time(),
+        {},
+    )
+    problems, count = [], 0
+    for verdict in _verdicts():
+        count += 1
+        said_so: list[Verdict | FurtherVerdict] = [verdict, *verdict.further.all()]
+        for said in said_so:
+            code, spec = known.criteria.get(said.criterion_id or 0, ("", None))
+            if spec is None or not _agrees(said, verdict, spec, known):
+                name = str(said._meta.model_name)
+                problems.append(VerdictProblem("verdict_differs", f"{name} {said.pk} {code}"))
+    return VerdictFinding(count, tuple(problems))
+
+
+def _verdicts() -> Iterator[Verdict]:
+    found = Verdict.objects.select_related(*JOINS).prefetch_related("further__baseline__test_object")
+    yield from found.order_by("id").iterator(chunk_size=BATCH)
+
+
+def _agrees(said: Verdict | FurtherVerdict, verdict: Verdict, spec: CriterionSpec, known: _Known) -> bool:
+    if said.code in WORKED_OUT:
+        return said.verdict == "not_assessable" and verdict.reading is None
+    measurand = known.measurand(verdict.submission.edition_id, verdict.measurand.code)
+    if measurand is None:
+        return False
+    met = _circumstances(verdict, measurand, known)
+    found = unfit(spec, met, _standing(said.baseline)) or _judged(said, verdict.reading, measurand, spec)
+    kept = json.loads(said.parameters)
+    same = all(kept.get(name) == value for name, value in found.parameters.items())
+    return same and (found.verdict, found.level or "", str(found.code)) == (
+        said.verdict,
+        said.level,
+        said.code,
+    )
+
+
+def _circumstances(verdict: Verdict, measurand: MeasurandSpec, known: _Known) -> Circumstances:
+    submission, origin = verdict.submission, verdict.reading.origin if verdict.reading else ""
+    facts = _facts_at(known.facts.get(submission.check_of.device_id, []), submission.recorded_at)
+    site, on = submission.check_of.site, submission.test_object
+    return Circumstances(
+        facts.array_kind,
+        facts.protection_class,
+        facts.applied_part,
+        measurand.medium,
+        METHOD_OF_ORIGIN.get(origin, measurand.method),
+        local_day(submission.measured_at, site.time_zone if site else "UTC"),
+        on.id if on else None,
+        f"{on.name} {on.serial}" if on else "",
+    )
+
+
+def _facts_at(over_time: list[FactsThen], moment: dt.datetime) -> FactsThen:
+    """The facts of a device that were on record at a moment."""
+    known = [facts for facts in over_time if facts.recorded_at <= moment]
+    return known[-1] if known else FactsThen(moment)
+
+
+def _standing(baseline: Baseline | None) -> Standing | None:
+    if baseline is None:
+        return None
+    on = baseline.test_object
+    return Standing(on.id if on else None, f"{on.name} {on.serial}" if on else "", baseline.expires_on)
+
+
+def _judged(
+    said: Verdict | FurtherVerdict, reading: Reading | None, measurand: MeasurandSpec, spec: CriterionSpec
+) -> Judgement:
+    numeric, baseline = measurand.kind in NUMBERS, said.baseline
+    return conformity.judge(
+        spec.criterion,
+        value=_value(reading),
+        kind=measurand.kind,
+        qualifier=reading.qualifier if reading else "=",
+        nominal=said.reference or None,
+        reference=said.reference or None,
+        baseline=decimals.from_scaled(baseline.scaled, baseline.places) if baseline else None,
+        baseline_qualifier=baseline.qualifier if baseline else "=",
+        quantity=said.quantity or None,
+        uncertainty=said.uncertainty or None,
+        rule=said.rule,  # type: ignore[arg-type]  # a word of the kernel's; another is refused there
+        unit=measurand.unit if numeric else None,
+        criterion_unit=spec.unit if numeric else None,
+        spread=_spread(baseline, measurand) if spec.criterion.of_own_spread else None,
+    )
+
+
+def _value(reading: Reading | None) -> Decimal | str | None:
+    if reading is None:
+        return None
+    if reading.scaled is None:
+        return reading.entered or None
+    return decimals.from_scaled(reading.scaled, reading.places or 0)
+
+
+def _spread(baseline: Baseline | None, measurand: MeasurandSpec) -> OwnSpread | None:
+    if baseline is None:
+        return None
+    values = [one.value for one in baselines.setups_of([baseline.id]).get(baseline.id, [])]
+    found = baselines.spread_of(values)
+    deviation = Decimal(found.standard_deviation) if found.standard_deviation else None
+    return OwnSpread(found.count, deviation, Decimal(measurand.resolution)) if found.count else None
