@@ -5,10 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 from decimal import Decimal
 
-try:  # provisional, until core.baselines is committed
-    from qa_tracker.core.baselines import LEAST_SETUPS, own_allowance
-except ImportError:
-    LEAST_SETUPS = 10
+from qa_tracker.core.baselines import LEAST_SETUPS, own_allowance
 from qa_tracker.core.criteria import Criterion, Limit
 from qa_tracker.core.decimals import plain
 

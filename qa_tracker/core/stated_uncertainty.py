@@ -7,11 +7,7 @@ from decimal import Decimal
 from typing import Literal
 
 from qa_tracker.core.decimals import plain
-
-try:  # provisional, until core.uncertainty is committed
-    from qa_tracker.core.uncertainty import expanded_from_standard, from_repeats, standard_from_expanded
-except ImportError:
-    pass
+from qa_tracker.core.uncertainty import expanded_from_standard, from_repeats, standard_from_expanded
 
 Kind = Literal["standard", "expanded", "repeats", "repeats_of_check"]
 KINDS: tuple[Kind, ...] = ("standard", "expanded", "repeats", "repeats_of_check")
@@ -37,7 +33,7 @@ def expanded(kind: str, entered: str, coverage_factor: str, repeats: Sequence[De
     Examples
     --------
     >>> expanded("standard", "1.5", "", ()), expanded("expanded", "3", "2", ())
-    ('3.0', '3')
+    ('3', '3')
     """
     if kind == "repeats_of_check":
         return plain(from_repeats(repeats).expanded_of_one, strip=True) if len(repeats) > 1 else ""

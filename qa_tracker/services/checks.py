@@ -14,25 +14,19 @@ from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, target
 from qa_tracker.records import ledger
 from qa_tracker.records.models import (
     Check,
-    Device,
-    Instrument,
     NotTested,
     Person,
     Procedure,
-    ScannerFacts,
     Submission,
-    TestObject,
 )
-from qa_tracker.records.queries import devices, library, submissions
+from qa_tracker.records.queries import library, submissions
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.services import finding, judging, owed, plans, recording
-from qa_tracker.services.deriving import attributes_of
 from qa_tracker.services.entries import REASONS, Entry, left_empty
 from qa_tracker.services.guards import check_may, check_password, check_shown, required, role_for
-from qa_tracker.services.items import Item, items_of, surroundings
-from qa_tracker.services.judging import Asked, Instructions, Judged
+from qa_tracker.services.judging import Judged
 from qa_tracker.services.recording import Facts
-from qa_tracker.services.weighing import measured_with
+from qa_tracker.services.sheets import Sheet, lay_out
 
 
 @dataclass(frozen=True)
@@ -48,29 +42,6 @@ class Typed:
     cleaned_after: str = ""
     partial_reason: str = ""
     remark: str = ""
-
-
-@dataclass(frozen=True)
-class Sheet:
-    """A check ready to be entered: its edition, its items, and what it is measured with."""
-
-    check: Check
-    edition: EditionRow
-    items: tuple[Item, ...]
-    derived: tuple[Item, ...]
-    test_object: TestObject | None
-    instrument: Instrument | None
-    console: Device | None
-    console_software: str
-    instructions: Instructions
-    measured_on: dt.date
-    attributes: Mapping[str, Mapping[str, object]] = field(default_factory=dict)
-
-    @property
-    def asked(self) -> Asked:
-        """What is asked, and under what it is judged."""
-        with_it = measured_with(self.console, self.console_software, self.test_object, self.measured_on)
-        return Asked(self.items, self.derived, self.attributes, self.instructions, with_it)
 
 
 @dataclass(frozen=True)
@@ -109,42 +80,6 @@ def sheet(
         finding.instrument(actor, instrument, at),
         measured_at or at,
     )
-
-
-def lay_out(
-    check: Check,
-    edition: EditionRow,
-    test_object: TestObject | None,
-    instrument: Instrument | None,
-    measured_at: dt.datetime,
-) -> Sheet:
-    """The sheet of a check."""
-    device = check.device
-    console = device if device.kind == "scanner" or device.handheld else device.scanner
-    facts = ScannerFacts.objects.filter(device=console).first() if console else None
-    nominals = nominals_of(test_object)
-    row, object_id = devices.device_by_id(device.id), test_object.id if test_object else None
-    items = items_of(surroundings(row, edition, check.site_id, nominals, object_id))
-    site = check.site
-    words = Instructions(site.remedial_instruction, site.suspension_instruction) if site else Instructions()
-    return Sheet(
-        check,
-        edition,
-        tuple(item for item in items if item.spec.kind != "derived"),
-        tuple(item for item in items if item.spec.kind == "derived"),
-        test_object,
-        instrument,
-        console,
-        facts.software_version if facts else "",
-        words,
-        recording.local_day(check, measured_at),
-        attributes_of(device, test_object),
-    )
-
-
-def nominals_of(test_object: TestObject | None) -> dict[str, str]:
-    """True values of a test object by measurand code."""
-    return recording.read_json(test_object.nominals) if test_object else {}
 
 
 def check_may_enter(check: Check, edition: EditionRow, *, actor: Person, at: dt.datetime) -> None:

@@ -46,13 +46,14 @@ from qa_tracker.records.queries.baselines import SeriesKey
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.records.queries.uncertainties import UncertaintyRow
-from qa_tracker.services import baselines, checks, judging, plans, recording
+from qa_tracker.services import baselines, judging, plans, recording
 from qa_tracker.services.deriving import attributes_of
 from qa_tracker.services.entries import Entry, read_entry
 from qa_tracker.services.history_rows import baseline_row, device_row
 from qa_tracker.services.items import Item, Surroundings, items_of
 from qa_tracker.services.judging import Asked, Instructions, Judged
 from qa_tracker.services.recording import Facts
+from qa_tracker.services.sheets import nominals_of
 from qa_tracker.services.weighing import measured_with
 
 M = TypeVar("M", bound=models.Model)
@@ -283,7 +284,7 @@ def items_for(
             past.criteria,
             {key: (baseline_row(key, baseline),) for key, baseline in kept.baselines.items()},
             {},
-            checks.nominals_of(test_object),
+            nominals_of(test_object),
             past.uncertainties,
             test_object.id if test_object else None,
         )

@@ -161,4 +161,3 @@ def criteria_for(
         and not (row.spec.criterion.of_own_spread and not (baseline and baseline.count))
     ]
     return (named, *beside) if named else tuple(beside)
-

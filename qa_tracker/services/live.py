@@ -5,9 +5,9 @@ from __future__ import annotations
 from collections.abc import Mapping
 
 from qa_tracker.core.errors import DomainError, SeveralInvalid
-from qa_tracker.services.checks import Sheet
 from qa_tracker.services.entries import Entry
 from qa_tracker.services.judging import Judged, judge_all
+from qa_tracker.services.sheets import Sheet
 
 
 def judge_what_can_be(laid: Sheet, entries: Mapping[str, Entry]) -> tuple[Judged, tuple[DomainError, ...]]:

@@ -55,6 +55,12 @@ SENTENCES: Final = {
     ),
     "criteria.published": N_("%(actor)s published the criteria “%(set)s”, edition %(edition)s"),
     "criteria.adopted": N_("%(actor)s adopted the criteria “%(set)s”, edition %(edition)s, for %(site)s"),
+    "uncertainty.stated": N_(
+        "%(actor)s stated the uncertainty of %(measurand)s for %(site)s (%(kind)s): %(source)s"
+    ),
+    "uncertainty.ended": N_(
+        "%(actor)s ended the stated uncertainty of %(measurand)s for %(site)s: %(reason)s"
+    ),
     "test_object.registered": N_("%(actor)s registered the test object %(name)s, serial number %(serial)s"),
     "instrument.registered": N_("%(actor)s registered the %(kind)s %(maker)s %(model)s %(serial)s"),
     "person.first": N_("The first account was made, with the role of %(role)s"),

@@ -15,6 +15,7 @@ from qa_tracker.services.wording_findings import REFUSED
 from qa_tracker.services.wording_refused_entry import ENTRY
 from qa_tracker.services.wording_refused_records import RECORDS
 from qa_tracker.services.wording_refused_requests import REQUESTS
+from qa_tracker.services.wording_refused_uncertainty import UNCERTAINTY
 from qa_tracker.services.wording_refused_values import VALUES
 from qa_tracker.services.wording_verbs import MOVES, PERMITTED
 from qa_tracker.services.wording_words import (
@@ -33,7 +34,7 @@ from qa_tracker.services.wording_words import (
     word,
 )
 
-SENTENCES: Final[Mapping[str, str]] = VALUES | RECORDS | REQUESTS | ENTRY | REFUSED
+SENTENCES: Final[Mapping[str, str]] = VALUES | RECORDS | REQUESTS | ENTRY | REFUSED | UNCERTAINTY
 STATES: Final = {
     "check": CHECK_STATES,
     "device": DEVICE_STATES,

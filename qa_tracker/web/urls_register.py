@@ -21,6 +21,7 @@ from qa_tracker.web.views import (
     registering,
     sites,
     tokens,
+    uncertainties,
     welcome,
 )
 
@@ -62,6 +63,9 @@ urlpatterns = [
     path("criteria/procedures/", procedures.index, name="procedures"),
     path("criteria/procedures/<uuid:uid>/", procedures.show, name="edition"),
     path("criteria/procedures/<uuid:uid>/adopt/", procedures.adopt, name="adopt-edition"),
+    path("criteria/uncertainties/", uncertainties.index, name="uncertainties"),
+    path("criteria/uncertainties/new/", uncertainties.state, name="uncertainty-new"),
+    path("criteria/uncertainties/<uuid:uid>/end/", uncertainties.end, name="uncertainty-end"),
     path("criteria/<uuid:uid>/", criteria.show, name="criteria-set"),
     path("criteria/<uuid:uid>/adopt/", criteria.adopt, name="adopt-criteria"),
     path("people/", people.index, name="people"),

@@ -17,7 +17,7 @@ from qa_tracker.web.forms.typed import Typed
 
 def adopting(request: HttpRequest, verb: str, back: str, at: dt.datetime) -> Asked | None:
     """The form, with the places where the person may adopt; none where there is no such place."""
-    options = _places(request, verb, at)
+    options = places(request, verb, at)
     if not options:
         return None
     return Asked(
@@ -38,7 +38,8 @@ def adopting(request: HttpRequest, verb: str, back: str, at: dt.datetime) -> Ask
     )
 
 
-def _places(request: HttpRequest, verb: str, at: dt.datetime) -> tuple[Option, ...]:
+def places(request: HttpRequest, verb: str, at: dt.datetime) -> tuple[Option, ...]:
+    """Where the person may do this: the whole group, and each site."""
     scope = guards.scope(request.user, at, verb)
     group = [("", _("the whole group"))] if guards.may(request.user, verb, None, at) else []
     held = [(str(site.uid), site.name) for site in sites.list_sites(scope)]

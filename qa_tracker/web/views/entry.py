@@ -24,9 +24,9 @@ from qa_tracker.records.queries import checks as check_queries
 from qa_tracker.records.queries import objects, submissions
 from qa_tracker.records.queries.submissions import SignatureRow
 from qa_tracker.services import cautions, checks, drafts, guards, live, wording
-from qa_tracker.services.checks import Sheet
 from qa_tracker.services.drafts import Kept, KeptMeanwhile
 from qa_tracker.services.entries import REASONS
+from qa_tracker.services.sheets import Sheet
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.forms import entry as inputs
 from qa_tracker.web.presenters.entry import Choice, outcome, sections
