@@ -6,12 +6,36 @@ import doctest
 
 import pytest
 
-from qa_tracker.core import allowances, comparison, conformity, criteria, decimals, units, verdict_kernel
-
-
-@pytest.mark.parametrize(
-    "module", [allowances, comparison, conformity, criteria, decimals, units, verdict_kernel]
+from qa_tracker.core import (
+    allowances,
+    baselines,
+    comparison,
+    conformity,
+    criteria,
+    decimals,
+    own_spread,
+    stated_uncertainty,
+    uncertainty,
+    units,
+    verdict_kernel,
 )
+
+MODULES = (
+    allowances,
+    baselines,
+    comparison,
+    conformity,
+    criteria,
+    decimals,
+    own_spread,
+    stated_uncertainty,
+    uncertainty,
+    units,
+    verdict_kernel,
+)
+
+
+@pytest.mark.parametrize("module", MODULES)
 def test_examples_give_what_they_say(module):
     found = doctest.testmod(module)
     assert found.attempted > 0

@@ -21,7 +21,7 @@ from django.utils.timezone import now
 import qa_tracker.services
 from qa_tracker.core.canonical import canonical
 from qa_tracker.records import ledger
-from qa_tracker.records.models import ApiToken, CriteriaSet, Edition, Location, RoleGrant
+from qa_tracker.records.models import ApiToken, CriteriaSet, Edition, Location, RoleGrant, StatedUncertainty
 from qa_tracker.records.queries.ledger import list_leaves
 from qa_tracker.records.queries.scope import EVERYTHING
 from qa_tracker.services import (
@@ -34,12 +34,14 @@ from qa_tracker.services import (
     people,
     rechecking,
     states,
+    uncertainties,
     upkeep,
 )
 from qa_tracker.services.baselines import Value
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Identity, Place
 from qa_tracker.services.plans import Recurrence
+from qa_tracker.services.uncertainties import Statement
 from qa_tracker.services.wording import leaf_sentence
 from qa_tracker.services.wording_leaves import SENTENCES
 from tests import builders
@@ -50,6 +52,11 @@ Given = dict[str, Any]
 
 
 # What the rows of the table stand on: each makes things of its own, so that all can run one after another.
+
+
+def stated(ward: Ward) -> StatedUncertainty:
+    statement = Statement("reverberation_depth", "expanded", "0.5", source="Certificate")
+    return uncertainties.state(statement=statement, site=None, actor=ward.physicist, at=now())
 
 
 def place(ward: Ward) -> Place:
@@ -184,6 +191,13 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
     "library.adopt_edition": lambda w: {**adopting_edition(w), "remark": "", "actor": w.physicist},
     "library.adopt_criteria": lambda w: {
         "criteria_set": CriteriaSet.objects.first(), "site": w.site, "remark": "ours", "actor": w.physicist,
+    },
+    "uncertainties.state": lambda w: {
+        "statement": Statement("reverberation_depth", "standard", "0.3", source="Repeats of March"),
+        "site": w.site, "actor": w.physicist,
+    },
+    "uncertainties.end": lambda w: {
+        "statement": stated(w).uid, "reason": "The object was replaced", "actor": w.physicist,
     },
     "objects.register_test_object": lambda w: {
         "site": w.site, "name": "Phantom", "serial": "TM-1", "material": "hydrogel",
