@@ -41,6 +41,11 @@ direction='below', strict=True, qualifier='=', ranks=False)
     flat = criterion.at(Decimal(parameters["quantity"])) if parameters.get("quantity") else criterion
     if flat is None or flat.bands or "value" not in parameters:
         return None
+    if flat.of_own_spread:
+        # Its allowance was worked out when it was judged, and is among the parameters.
+        if "allowance" not in parameters:
+            return None
+        flat = replace(flat, remedial=Limit(absolute=Decimal(parameters["allowance"])))
     reference = Decimal(parameters["reference"]) if "reference" in parameters else None
     if flat.basis != "none" and reference is None:
         return None

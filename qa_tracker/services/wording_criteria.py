@@ -127,6 +127,12 @@ def _flat(spec: CriterionSpec, criterion: Criterion) -> str:
 
 
 def _beyond(spec: CriterionSpec, criterion: Criterion, limit: Limit) -> str:
+    if limit.coverage is not None and limit.confidence is not None:
+        shares = {
+            "coverage": amount(plain(limit.coverage), "%"),
+            "confidence": amount(plain(limit.confidence), "%"),
+        }
+        return _("more than its own spread (%(coverage)s of readings, %(confidence)s confidence)") % shares
     downwards = criterion.direction == "below" and criterion.basis in ("none", "ratio")
     return _(BEYOND[downwards, criterion.strict]) % {"amount": _amount(limit, spec.unit)}
 

@@ -130,8 +130,18 @@ def test_published_number_is_in_the_library_with_its_standing(
 
 def test_no_level_is_in_the_library_beyond_the_published_ones():
     published = {(row[0], row[1]) for row in VALUES}
-    found = {(name, level) for name, spec in LIBRARY.items() for level, _ in spec.criterion.levels()}
-    assert found == published
+    limits = [
+        (name, level, limit) for name, spec in LIBRARY.items() for level, limit in spec.criterion.levels()
+    ]
+    assert {(name, level) for name, level, limit in limits if not limit.of_own_spread} == published
+
+
+def test_limits_of_own_spread_hold_no_number_of_a_device():
+    own = [spec for spec in LIBRARY.values() if spec.criterion.of_own_spread]
+    assert {spec.id for spec in own} == {name for name in LIBRARY if name.startswith("OWN-")}
+    for spec in own:
+        assert to_json(spec.criterion)["remedial"] == {"coverage": "95", "confidence": "95"}
+        assert (spec.shape, spec.standing.remedial, bool(spec.measurands)) == ("J", "practice", True)
 
 
 def test_ring_down_is_banded_by_frequency_with_its_uncertain_edges_noted():
@@ -155,7 +165,8 @@ def test_probe_grade_gives_remedial_for_amber_and_suspension_for_red():
 
 
 def test_every_criterion_of_the_library_is_in_a_table_here():
-    assert set(LIBRARY) == {row[0] for row in LIMITS} | {"PROBE-GRADE"}
+    published = {name for name in LIBRARY if not name.startswith("OWN-")}
+    assert published == {row[0] for row in LIMITS} | {"PROBE-GRADE"}
 
 
 def test_drop_out_is_refused_for_arrays_without_line_to_element_correspondence():
