@@ -12,6 +12,7 @@ from qa_tracker.records.queries.library import CriterionRow
 from qa_tracker.records.queries.submissions import VerdictRow
 from qa_tracker.services.items import Item
 from qa_tracker.services.judging import JudgedItem
+from qa_tracker.services.weighing import Weighed
 from qa_tracker.services.wording import criterion_words, source_line, verdict_sentence
 
 
@@ -26,7 +27,10 @@ class CriterionOut(Schema):
 
 
 class VerdictOut(Schema):
-    """A verdict with its sentence, the code and parameters the sentence is made of, and the arithmetic."""
+    """A verdict with its sentence, the code and parameters the sentence is made of, and the arithmetic.
+
+    ``further`` holds what other limits of the same measurand say; of them all the worst decides.
+    """
 
     verdict: str
     level: str
@@ -40,6 +44,9 @@ class VerdictOut(Schema):
     allowance: str
     used: str
     instruction: str
+    uncertainty: str
+    rule: str
+    further: list[VerdictOut]
 
 
 class GradeOut(Schema):
@@ -207,14 +214,20 @@ def verdict_of_row(row: VerdictRow | None) -> dict[str, object] | None:
         "sentence": verdict_sentence(row.code, row.parameters, row.verdict, row.level),
         "criterion": criterion_out(row.criterion),
         "source": source_line(row.criterion, row.level) if row.criterion else "",
+        "further": [verdict_of_row(each) for each in row.further],
     }
 
 
 def verdict_of_item(one: JudgedItem) -> dict[str, object] | None:
     """The verdict an item would have as an answer."""
-    judgement, criterion = one.judgement, one.criterion
-    if judgement is None or criterion is None or one.weighed is None:
+    if one.weighed is None:
         return None
+    further = [_said(each, "", []) for each in one.further]
+    return _said(one.weighed, one.instruction, further)
+
+
+def _said(weighed: Weighed, instruction: str, further: list[dict[str, object]]) -> dict[str, object]:
+    judgement, criterion = weighed.judgement, weighed.criterion
     code, level = str(judgement.code), judgement.level or ""
     numbers = {name: getattr(judgement, name) for name in ("departure", "allowance", "used")}
     return {
@@ -225,9 +238,12 @@ def verdict_of_item(one: JudgedItem) -> dict[str, object] | None:
         "sentence": verdict_sentence(code, judgement.parameters, judgement.verdict, level),
         "criterion": criterion_out(criterion),
         "source": source_line(criterion, level),
-        "reference": one.weighed.reference if criterion.spec.criterion.basis in ("nominal", "ratio") else "",
+        "reference": weighed.reference if weighed.basis in ("nominal", "ratio") else "",
         **{name: "" if number is None else plain(number) for name, number in numbers.items()},
-        "instruction": one.instruction,
+        "instruction": instruction,
+        "uncertainty": weighed.uncertainty,
+        "rule": weighed.rule,
+        "further": further,
     }
 
 

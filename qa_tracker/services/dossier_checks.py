@@ -14,7 +14,12 @@ from qa_tracker.documents import content as frozen
 from qa_tracker.records.queries import library
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.library import EditionRow
-from qa_tracker.records.queries.submissions import ReadingRow, SignatureRow, SubmissionRow
+from qa_tracker.records.queries.submissions import (
+    ReadingRow,
+    SignatureRow,
+    SubmissionRow,
+    VerdictRow,
+)
 from qa_tracker.services import wording
 
 
@@ -103,7 +108,7 @@ def _reading(reading: ReadingRow, names: dict[str, str]) -> frozen.Reading:
     verdict = reading.verdict
     sentence, criterion, line = "", None, frozen.Line()
     if verdict is not None:
-        sentence = wording.verdict_sentence(verdict.code, verdict.parameters, verdict.verdict, verdict.level)
+        sentence = " ".join([_sentence(verdict), *map(_further_sentence, verdict.further)])
     if verdict is not None and verdict.criterion is not None:
         spec = verdict.criterion.spec
         standing = spec.standing.suspension if verdict.level == "suspension" else spec.standing.remedial
@@ -129,6 +134,16 @@ def _reading(reading: ReadingRow, names: dict[str, str]) -> frozen.Reading:
         line=line,
         criterion=criterion,
     )
+
+
+def _sentence(verdict: VerdictRow) -> str:
+    return wording.verdict_sentence(verdict.code, verdict.parameters, verdict.verdict, verdict.level)
+
+
+def _further_sentence(verdict: VerdictRow) -> str:
+    """What another limit of the same measurand said."""
+    name = verdict.criterion.code if verdict.criterion else ""
+    return _("By %(limit)s: %(sentence)s") % {"limit": name, "sentence": _sentence(verdict)}
 
 
 def _line(reading: ReadingRow) -> frozen.Line:

@@ -202,19 +202,25 @@ def shown_sha256(check_uid: str, edition_sha256: str, facts: Mapping[str, str | 
         "check": check_uid,
         "edition": edition_sha256,
         "facts": dict(facts),
-        "items": [
-            [
-                one.item.key, one.entry.qualifier, one.entry.text, one.item.spec.unit, one.entry.not_tested,
-                one.entry.remark, one.entry.condition_note,
-                one.judgement.verdict if one.judgement else "",
-                (one.judgement.level or "") if one.judgement else "",
-                str(one.judgement.code) if one.judgement else "",
-                one.judgement.parameters if one.judgement else {},
-            ]
-            for one in judged.items
-        ],
-    }  # fmt: skip
+        "items": [_shown_item(one) for one in judged.items],
+    }
     return hashlib.sha256(canonical(shown)).hexdigest()
+
+
+def _shown_item(one: JudgedItem) -> list[object]:
+    shown: list[object] = [
+        one.item.key, one.entry.qualifier, one.entry.text, one.item.spec.unit, one.entry.not_tested,
+        one.entry.remark, one.entry.condition_note, *_shown_verdict(one.judgement),
+    ]  # fmt: skip
+    if one.further:
+        shown.append([[each.criterion.code, *_shown_verdict(each.judgement)] for each in one.further])
+    return shown
+
+
+def _shown_verdict(judgement: Judgement | None) -> list[object]:
+    if judgement is None:
+        return ["", "", "", {}]
+    return [judgement.verdict, judgement.level or "", str(judgement.code), judgement.parameters]
 
 
 def unread_code() -> SentenceCode:

@@ -13,7 +13,16 @@ from django.utils.timezone import now
 from qa_tracker.core.canonical import canonical
 from qa_tracker.core.merkle import Frontier, leaf_hash
 from qa_tracker.records import guards, guards_postgresql, guards_sqlite, ledger
-from qa_tracker.records.models import Device, Fault, Reading, Signature, Submission, Verdict, Version
+from qa_tracker.records.models import (
+    Device,
+    Fault,
+    FurtherVerdict,
+    Reading,
+    Signature,
+    Submission,
+    Verdict,
+    Version,
+)
 from qa_tracker.records.models.ledger import Checkpoint, Leaf, LedgerHead
 from qa_tracker.seals.notes import make_note_key, sign_checkpoint
 from qa_tracker.services import checkpoints, keys, rechecking, states, upkeep
@@ -227,3 +236,17 @@ def test_reading_changed_to_another_grade_is_named_when_verdicts_are_rechecked(w
     row = Reading.objects.get(verdict__verdict="remedial")
     change(Reading, row.pk, entered="red")
     assert [problem.what for problem in rechecking.recheck_verdicts().problems] == ["verdict_differs"]
+
+
+def test_changed_further_verdict_is_named_when_verdicts_are_rechecked(ward):
+    row = Verdict.objects.get(verdict="remedial")
+    columns = {
+        field.attname: getattr(row, field.attname)
+        for field in FurtherVerdict._meta.concrete_fields
+        if field.attname not in ("id", "verdict_of_id", "position")
+    }
+    FurtherVerdict(verdict_of=row, position=1, **columns | {"verdict": "conforming", "level": ""}).save(
+        force_insert=True
+    )
+    (problem,) = rechecking.recheck_verdicts().problems
+    assert (problem.what, problem.where.split()[0]) == ("verdict_differs", "furtherverdict")

@@ -7,14 +7,17 @@ import json
 import uuid
 from dataclasses import dataclass
 
-from qa_tracker.records.models import NotTested, Reading, Signature, Submission, Verdict
+from qa_tracker.records.models import FurtherVerdict, NotTested, Reading, Signature, Submission, Verdict
 from qa_tracker.records.queries.library import CriterionRow, criteria_by_id
 from qa_tracker.records.queries.people import names
 
 
 @dataclass(frozen=True)
 class VerdictRow:
-    """A verdict with all it was judged by; ``parameters`` feed its sentence."""
+    """A verdict with all it was judged by; ``parameters`` feed its sentence.
+
+    ``further`` is what other limits of the same measurand said: of them all the worst decides.
+    """
 
     id: int
     verdict: str
@@ -31,6 +34,7 @@ class VerdictRow:
     allowance: str
     used: str
     instruction: str
+    further: tuple[VerdictRow, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -113,12 +117,16 @@ class SubmissionRow:
     signatures: tuple[SignatureRow, ...]
 
 
-def _verdict_row(verdict: Verdict, criteria: dict[int, CriterionRow]) -> VerdictRow:
+def _verdict_row(
+    said: Verdict | FurtherVerdict,
+    criteria: dict[int, CriterionRow],
+    further: tuple[VerdictRow, ...] = (),
+) -> VerdictRow:
     return VerdictRow(
-        verdict.id, verdict.verdict, verdict.level, verdict.code, json.loads(verdict.parameters),
-        criteria.get(verdict.criterion_id or 0), verdict.baseline_id, verdict.reference, verdict.quantity,
-        verdict.uncertainty, verdict.rule, verdict.departure, verdict.allowance, verdict.used,
-        verdict.instruction,
+        said.id, said.verdict, said.level, said.code, json.loads(said.parameters),
+        criteria.get(said.criterion_id or 0), said.baseline_id, said.reference, said.quantity,
+        said.uncertainty, said.rule, said.departure, said.allowance, said.used,
+        said.instruction if isinstance(said, Verdict) else "", further,
     )  # fmt: skip
 
 
@@ -146,18 +154,26 @@ def _readings(submission_ids: list[int]) -> dict[int, list[ReadingRow]]:
     verdicts = list(
         Verdict.objects.filter(submission_id__in=submission_ids).select_related(*joins).order_by("id")
     )
-    criteria = criteria_by_id({v.criterion_id for v in verdicts if v.criterion_id})
-    by_reading = {v.reading_id: v for v in verdicts if v.reading_id}
+    beside = list(
+        FurtherVerdict.objects.filter(verdict_of__submission_id__in=submission_ids).order_by(
+            "verdict_of_id", "position"
+        )
+    )
+    criteria = criteria_by_id({v.criterion_id for v in (*verdicts, *beside) if v.criterion_id})
+    further: dict[int, list[VerdictRow]] = {}
+    for each in beside:
+        further.setdefault(each.verdict_of_id, []).append(_verdict_row(each, criteria))
+    told = {v.id: _verdict_row(v, criteria, tuple(further.get(v.id, ()))) for v in verdicts}
+    by_reading = {v.reading_id: told[v.id] for v in verdicts if v.reading_id}
     rows: dict[int, list[ReadingRow]] = {}
     for reading in (
         Reading.objects.filter(submission_id__in=submission_ids).select_related(*joins).order_by("id")
     ):
-        found = by_reading.get(reading.id)
-        row = _reading_row(reading, _verdict_row(found, criteria) if found else None)
+        row = _reading_row(reading, by_reading.get(reading.id))
         rows.setdefault(reading.submission_id, []).append(row)
     for verdict in verdicts:
         if verdict.reading_id is None:
-            row = _unread_row(verdict, _verdict_row(verdict, criteria))
+            row = _unread_row(verdict, told[verdict.id])
             rows.setdefault(verdict.submission_id, []).append(row)
     return rows
 

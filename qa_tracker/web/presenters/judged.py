@@ -14,13 +14,17 @@ from qa_tracker.records.queries.library import CriterionRow
 from qa_tracker.records.queries.submissions import ReadingRow, VerdictRow
 from qa_tracker.services import wording
 from qa_tracker.services.judging import JudgedItem
+from qa_tracker.services.weighing import Weighed
 
 YES_NO_WORDS = {"yes": _("yes"), "no": _("no")}
 
 
 @dataclass(frozen=True)
 class Shown:
-    """One verdict in words, with the numbers its allowance line is drawn from."""
+    """One verdict in words, with the numbers its allowance line is drawn from.
+
+    ``further`` is what other limits of the same measurand say.
+    """
 
     verdict: str
     level: str
@@ -28,6 +32,8 @@ class Shown:
     source: str
     instruction: str
     line: Line | None
+    criterion: str = ""
+    further: tuple[Shown, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -51,6 +57,7 @@ def shown(
     parameters: Mapping[str, str],
     criterion: CriterionRow | None,
     instruction: str,
+    further: tuple[Shown, ...] = (),
 ) -> Shown:
     """Put a verdict in words; the criterion it was judged by brings source and line."""
     return Shown(
@@ -60,6 +67,8 @@ def shown(
         wording.source_line(criterion, level) if criterion else "",
         instruction,
         judged_line(criterion.spec.criterion, parameters) if criterion else None,
+        criterion.spec.name if criterion else "",
+        further,
     )
 
 
@@ -75,14 +84,21 @@ def shown_item(one: JudgedItem) -> Shown | None:
         judgement.parameters,
         one.criterion,
         one.instruction,
+        tuple(_shown_further(each) for each in one.further),
     )
+
+
+def _shown_further(weighed: Weighed) -> Shown:
+    said = weighed.judgement
+    return shown(said.verdict, said.level or "", str(said.code), said.parameters, weighed.criterion, "")
 
 
 def shown_row(row: VerdictRow | None) -> Shown | None:
     """A recorded verdict."""
     if row is None:
         return None
-    return shown(row.verdict, row.level, row.code, row.parameters, row.criterion, row.instruction)
+    further = tuple(each for each in map(shown_row, row.further) if each)
+    return shown(row.verdict, row.level, row.code, row.parameters, row.criterion, row.instruction, further)
 
 
 def value_words(spec: MeasurandSpec | None, qualifier: str, entered: str, unit: str) -> str:
