@@ -75,7 +75,7 @@ def test_whichever_limit_trips_decides(ward, name):
 def submitted(ward):
     _, check = leakage(ward, "176", "210")
     tester = objects.register_instrument(
-        site=ward.site, kind="leakage_tester", maker="Quorrel", model="Safe 3", serial="7",
+        site=ward.site, kind="leakage_tester", maker="Quorrel", model="Safe 3", serial="7", calibration_due_on=None,
         actor=ward.physicist, at=now(),
     )  # fmt: skip
     entries = builders.answers(check, ward.technician, toe_probe_leakage="176", toe_chassis_leakage="210")
