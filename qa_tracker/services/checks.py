@@ -21,9 +21,10 @@ from qa_tracker.records.models import (
 )
 from qa_tracker.records.queries import library, submissions
 from qa_tracker.records.queries.library import EditionRow
+from qa_tracker.records.queries.scope import grants_of
 from qa_tracker.services import finding, judging, owed, plans, recording
 from qa_tracker.services.entries import REASONS, Entry, left_empty
-from qa_tracker.services.guards import check_may, check_password, check_shown, required, role_for
+from qa_tracker.services.guards import Grants, check_may, check_password, check_shown, required, role_for
 from qa_tracker.services.judging import Judged
 from qa_tracker.services.recording import Facts
 from qa_tracker.services.sheets import Sheet, lay_out
@@ -68,25 +69,28 @@ def sheet(
 
     Refused: out of sight, a role that may not enter it, a state that takes no submission, no edition adopted.
     """
-    row = finding.check(actor, check, at)
+    grants = grants_of(actor.pk)
+    row = finding.check(actor, check, at, grants)
     edition = library.adopted_edition(row.procedure_id, row.site_id)
     if edition is None:
         raise Conflict("check.no_edition")
-    check_may_enter(row, edition, actor=actor, at=at)
+    check_may_enter(row, edition, actor=actor, at=at, grants=grants)
     return lay_out(
         row,
         edition,
-        finding.test_object(actor, test_object, at),
-        finding.instrument(actor, instrument, at),
+        finding.test_object(actor, test_object, at, grants),
+        finding.instrument(actor, instrument, at, grants),
         measured_at or at,
     )
 
 
-def check_may_enter(check: Check, edition: EditionRow, *, actor: Person, at: dt.datetime) -> None:
+def check_may_enter(
+    check: Check, edition: EditionRow, *, actor: Person, at: dt.datetime, grants: Grants = None
+) -> None:
     """Refuse who may not enter this check, and a check that takes no submission now."""
     by_user = "user" in edition.spec.performed_by
     site_id = check.site_id or check.device.site_id or actor.duties_site_id
-    check_may(actor, "check.enter_user" if by_user else "check.enter", site_id, at)
+    check_may(actor, "check.enter_user" if by_user else "check.enter", site_id, at, grants)
     target(CHECK, check.state, "submit")
 
 

@@ -21,7 +21,7 @@ from qa_tracker.records.models import (
     TestObject,
 )
 from qa_tracker.records.queries.scope import checks_in, devices_in
-from qa_tracker.services.guards import scope
+from qa_tracker.services.guards import Grants, scope
 
 
 def device(actor: Person, uid: uuid.UUID, at: dt.datetime) -> Device:
@@ -32,10 +32,16 @@ def device(actor: Person, uid: uuid.UUID, at: dt.datetime) -> Device:
     return found
 
 
-def check(actor: Person, uid: uuid.UUID, at: dt.datetime) -> Check:
-    """A check in the actor's sight."""
-    joins = ("device__site", "device__scanner", "procedure", "plan", "site")
-    found = Check.objects.filter(checks_in(scope(actor, at)), uid=uid).select_related(*joins).first()
+CHECK_JOINS = (
+    "device__site", "device__probe_facts", "device__scanner_facts", "device__scanner__scanner_facts",
+    "procedure", "plan", "site",
+)  # fmt: skip
+
+
+def check(actor: Person, uid: uuid.UUID, at: dt.datetime, grants: Grants = None) -> Check:
+    """A check in the actor's sight, with its device's facts and its console's."""
+    seen = checks_in(scope(actor, at, grants=grants))
+    found = Check.objects.filter(seen, uid=uid).select_related(*CHECK_JOINS).first()
     if found is None:
         raise NotFound("check.unknown")
     return found
@@ -110,21 +116,25 @@ def criteria_set(uid: uuid.UUID) -> CriteriaSet:
     return found
 
 
-def test_object(actor: Person, uid: uuid.UUID | None, at: dt.datetime) -> TestObject | None:
+def test_object(
+    actor: Person, uid: uuid.UUID | None, at: dt.datetime, grants: Grants = None
+) -> TestObject | None:
     """A test object of a site in sight."""
     if uid is None:
         return None
     found = TestObject.objects.filter(uid=uid).first()
-    if found is None or not scope(actor, at).holds(found.site_id):
+    if found is None or not scope(actor, at, grants=grants).holds(found.site_id):
         raise NotFound("test_object.unknown")
     return found
 
 
-def instrument(actor: Person, uid: uuid.UUID | None, at: dt.datetime) -> Instrument | None:
+def instrument(
+    actor: Person, uid: uuid.UUID | None, at: dt.datetime, grants: Grants = None
+) -> Instrument | None:
     """An instrument of a site in sight."""
     if uid is None:
         return None
     found = Instrument.objects.filter(uid=uid).first()
-    if found is None or not scope(actor, at).holds(found.site_id):
+    if found is None or not scope(actor, at, grants=grants).holds(found.site_id):
         raise NotFound("instrument.unknown")
     return found

@@ -4,14 +4,19 @@ from __future__ import annotations
 
 import datetime as dt
 import hmac
+from collections.abc import Sequence
 
 from qa_tracker.core import roles
 from qa_tracker.core.errors import Forbidden, Invalid
+from qa_tracker.core.roles import Grant
 from qa_tracker.records.models import Person
 from qa_tracker.records.queries.scope import Scope, grants_of, scope_of
 
+Grants = Sequence[Grant] | None
+"""Grants that were fetched already, for a command that asks more than once; None: they are fetched."""
 
-def check_may(actor: Person, verb: str, site_id: int | None, at: dt.datetime) -> None:
+
+def check_may(actor: Person, verb: str, site_id: int | None, at: dt.datetime, grants: Grants = None) -> None:
     """Refuse when none of the actor's grants allows the verb at the site on that day.
 
     Raises
@@ -19,13 +24,14 @@ def check_may(actor: Person, verb: str, site_id: int | None, at: dt.datetime) ->
     Forbidden
         ``role.not_allowed``
     """
-    if not may(actor, verb, site_id, at):
+    if not may(actor, verb, site_id, at, grants):
         raise Forbidden("role.not_allowed", verb=verb)
 
 
-def may(actor: Person, verb: str, site_id: int | None, at: dt.datetime) -> bool:
+def may(actor: Person, verb: str, site_id: int | None, at: dt.datetime, grants: Grants = None) -> bool:
     """Whether a grant allows the verb at the site; without a site, only a grant for the whole group does."""
-    return actor.is_active and roles.may(grants_of(actor.pk), verb, site_id, at.date())
+    held = grants_of(actor.pk) if grants is None else grants
+    return actor.is_active and roles.may(held, verb, site_id, at.date())
 
 
 def may_somewhere(actor: Person, verb: str, at: dt.datetime) -> bool:
@@ -39,8 +45,10 @@ def check_may_somewhere(actor: Person, verb: str, at: dt.datetime) -> None:
         raise Forbidden("role.not_allowed", verb=verb)
 
 
-def scope(actor: Person, at: dt.datetime, verb: str = "see") -> Scope:
+def scope(actor: Person, at: dt.datetime, verb: str = "see", grants: Grants = None) -> Scope:
     """What the actor may see now."""
+    if grants is not None:
+        return Scope(roles.sites_for(grants, verb, at.date()))
     return scope_of(actor.pk, at.date(), verb)
 
 

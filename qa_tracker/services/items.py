@@ -2,14 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from qa_tracker.core.applicability import Circumstances
 from qa_tracker.core.library import asked_of
 from qa_tracker.core.library_specs import MeasurandSpec
+from qa_tracker.records.models import Device
 from qa_tracker.records.queries import baselines, devices, library, series, uncertainties
 from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey
-from qa_tracker.records.queries.devices import ApertureRow, ConditionRow, DeviceRow
+from qa_tracker.records.queries.devices import ApertureRow, ConditionRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.records.queries.series import PointRow
 from qa_tracker.records.queries.uncertainties import UncertaintyRow
@@ -51,10 +52,33 @@ class Item:
 
 
 @dataclass(frozen=True)
+class Measured:
+    """What judging needs to know of the device that is checked."""
+
+    id: int
+    kind: str
+    array_kind: str
+    applied_part: str
+    protection_class: str
+
+
+def measured(device: Device) -> Measured:
+    """A device with its facts, as they are joined to it."""
+    probe, scanner = getattr(device, "probe_facts", None), getattr(device, "scanner_facts", None)
+    return Measured(
+        device.id,
+        device.kind,
+        probe.array_kind if probe else "",
+        probe.applied_part if probe else "",
+        scanner.protection_class if scanner else "",
+    )
+
+
+@dataclass(frozen=True)
 class Surroundings:
     """What a check meets at one device: fetched once, used for each item."""
 
-    device: DeviceRow
+    device: Measured
     edition: EditionRow
     apertures: list[ApertureRow]
     conditions: list[ConditionRow]
@@ -67,26 +91,28 @@ class Surroundings:
 
 
 def surroundings(
-    device: DeviceRow,
+    device: Measured,
     edition: EditionRow,
     site_id: int | None,
     nominals: dict[str, str],
     test_object_id: int | None,
 ) -> Surroundings:
-    """Fetch what the items of a check need; the number of queries doesn't grow with the history."""
-    codes = [spec.code for spec in edition.spec.measurands]
-    return Surroundings(
+    """Fetch what the items of a check need, in a handful of queries whatever the history."""
+    apertures, conditions = devices.parts_of(device.id)
+    around = Surroundings(
         device,
         edition,
-        devices.apertures_of(device.id),
-        devices.conditions_of(device.id),
+        apertures,
+        conditions,
         library.adopted_criteria(site_id),
         baselines.choices_in_force(device.id),
-        series.last_readings(device.id, codes),
+        {},
         nominals,
         uncertainties.in_force(site_id),
         test_object_id,
     )
+    keys = {item.series for item in items_of(around)}
+    return replace(around, last=series.last_readings(device.id, keys))
 
 
 def items_of(around: Surroundings) -> tuple[Item, ...]:

@@ -6,12 +6,11 @@ import datetime as dt
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
-from qa_tracker.records.models import Check, Device, Instrument, ScannerFacts, TestObject
-from qa_tracker.records.queries import devices
+from qa_tracker.records.models import Check, Device, Instrument, TestObject
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.services import recording
 from qa_tracker.services.deriving import attributes_of
-from qa_tracker.services.items import Item, items_of, surroundings
+from qa_tracker.services.items import Item, items_of, measured, surroundings
 from qa_tracker.services.judging import Asked, Instructions
 from qa_tracker.services.weighing import measured_with
 
@@ -49,10 +48,10 @@ def lay_out(
     """The sheet of a check."""
     device = check.device
     console = device if device.kind == "scanner" or device.handheld else device.scanner
-    facts = ScannerFacts.objects.filter(device=console).first() if console else None
+    facts = getattr(console, "scanner_facts", None) if console else None
     nominals = nominals_of(test_object)
-    row, object_id = devices.device_by_id(device.id), test_object.id if test_object else None
-    items = items_of(surroundings(row, edition, check.site_id, nominals, object_id))
+    object_id = test_object.id if test_object else None
+    items = items_of(surroundings(measured(device), edition, check.site_id, nominals, object_id))
     site = check.site
     words = Instructions(site.remedial_instruction, site.suspension_instruction) if site else Instructions()
     return Sheet(

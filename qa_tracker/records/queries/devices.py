@@ -7,7 +7,9 @@ import json
 import uuid
 from dataclasses import dataclass
 
+from django.db import models
 from django.db.models import Q
+from django.db.models.functions import Cast
 
 from qa_tracker.records.models import (
     Aperture,
@@ -228,6 +230,27 @@ class ConditionRow:
     test_frequency_mhz: str
     sound_speed_m_s: str
     settings: str
+
+
+def parts_of(device_id: int) -> tuple[list[ApertureRow], list[ConditionRow]]:
+    """A device's apertures and conditions in one query: both are few, and every check asks for both."""
+    nothing, text = models.Value(""), models.CharField()
+    apertures = Aperture.objects.filter(device_id=device_id).values_list(
+        models.Value("aperture"), "id", "uid", "name",
+        Cast("elements", text), Cast("pitch_um", text), nothing,
+    )  # fmt: skip
+    conditions = Condition.objects.filter(device_id=device_id).values_list(
+        models.Value("condition"), "id", "uid", "name", "test_frequency_mhz", "sound_speed_m_s", "settings"
+    )
+    found = sorted(apertures.union(conditions, all=True), key=lambda row: row[1])
+    return (
+        [ApertureRow(*row[1:4], _whole(row[4]), _whole(row[5])) for row in found if row[0] == "aperture"],
+        [ConditionRow(*row[1:7]) for row in found if row[0] == "condition"],
+    )
+
+
+def _whole(text: str | None) -> int | None:
+    return None if text is None else int(text)
 
 
 def conditions_of(device_id: int, as_of: dt.datetime | None = None) -> list[ConditionRow]:

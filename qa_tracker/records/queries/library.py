@@ -5,8 +5,12 @@ from __future__ import annotations
 import datetime as dt
 import json
 import uuid
+from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import lru_cache
+
+from django.db import models
+from django.db.models import Prefetch, QuerySet
 
 from qa_tracker.core import library as published
 from qa_tracker.core.library_specs import CriterionSpec, ProcedureSpec
@@ -54,6 +58,7 @@ class CriteriaSetRow:
     title: str
     source: str
     note: str
+    published_at: dt.datetime
     criteria: tuple[CriterionRow, ...]
 
 
@@ -115,14 +120,25 @@ def _criterion_row(criterion: Criterion, of: CriteriaSet) -> CriterionRow:
 
 
 def list_criteria_sets() -> list[CriteriaSetRow]:
-    """Every published set with its criteria."""
-    rows = []
-    for one in CriteriaSet.objects.prefetch_related("criteria").order_by("code", "-edition"):
-        criteria = tuple(_criterion_row(each, one) for each in one.criteria.order_by("id"))
-        rows.append(
-            CriteriaSetRow(one.id, one.uid, one.code, one.edition, one.title, one.source, one.note, criteria)
-        )
-    return rows
+    """Every published set with its criteria, by code, the edition published last first."""
+    return [_set_row(one) for one in _sets().order_by("code", "-published_at", "-id")]
+
+
+def find_criteria_set(uid: uuid.UUID) -> CriteriaSetRow | None:
+    """A published set by uid."""
+    found = _sets().filter(uid=uid).first()
+    return _set_row(found) if found else None
+
+
+def _sets() -> QuerySet[CriteriaSet]:
+    return CriteriaSet.objects.prefetch_related(Prefetch("criteria", Criterion.objects.order_by("id")))
+
+
+def _set_row(one: CriteriaSet) -> CriteriaSetRow:
+    criteria = tuple(_criterion_row(each, one) for each in one.criteria.all())
+    return CriteriaSetRow(
+        one.id, one.uid, one.code, one.edition, one.title, one.source, one.note, one.published_at, criteria
+    )
 
 
 def criteria_by_id(ids: set[int]) -> dict[int, CriterionRow]:
@@ -153,31 +169,53 @@ def list_adoptions(as_of: dt.datetime | None = None) -> list[AdoptionRow]:
 
 def _in_force(site_id: int | None, as_of: dt.datetime | None, **which: object) -> list[Adoption]:
     """Adoptions in force at a site: its own first, then the group's, the newest of each first."""
-    found = [
-        adoption
-        for adoption in nouns(Adoption, as_of, ended_at=None, **which)
-        if adoption.site_id in (None, site_id)
-    ]
-    return sorted(found, key=lambda a: (a.site_id is None, -a.adopted_at.timestamp(), -a.id))
+    return _by_place(nouns(Adoption, as_of, ended_at=None, **which), site_id)
 
 
 def adopted_edition(
     procedure_id: int, site_id: int | None, as_of: dt.datetime | None = None
 ) -> EditionRow | None:
     """The edition a site works by: its own adoption, or the group's."""
+    if as_of is None:
+        open_ones = Adoption.objects.filter(edition__procedure_id=procedure_id, ended_at=None)
+        found = _by_place(open_ones.select_related("edition__procedure"), site_id)
+        return _edition_row(found[0].edition) if found and found[0].edition else None
     ids = list(Edition.objects.filter(procedure_id=procedure_id).values_list("id", flat=True))
-    found = _in_force(site_id, as_of, edition_id=ids)
-    return edition_by_id(found[0].edition_id) if found and found[0].edition_id else None
+    then = _in_force(site_id, as_of, edition_id=ids)
+    return edition_by_id(then[0].edition_id) if then and then[0].edition_id else None
 
 
 def adopted_criteria(site_id: int | None, as_of: dt.datetime | None = None) -> dict[str, CriterionRow]:
     """The limits a site works by, by criterion code; a site's own adoption goes before the group's."""
+    rows: dict[str, CriterionRow] = {}
+    if as_of is None:
+        for each in _criteria_in_force(site_id):
+            rows.setdefault(each.code, _criterion_row(each, each.criteria_set))
+        return rows
     order = [a.criteria_set_id for a in _in_force(site_id, as_of, edition_id=None)]
     found = Criterion.objects.filter(criteria_set_id__in=order).select_related("criteria_set").order_by("id")
-    rows: dict[str, CriterionRow] = {}
     for each in sorted(found, key=lambda one: order.index(one.criteria_set_id)):
         rows.setdefault(each.code, _criterion_row(each, each.criteria_set))
     return rows
+
+
+def _criteria_in_force(site_id: int | None) -> list[Criterion]:
+    """Criteria of every set adopted for a site or the group, in one query, in the order of ``_by_place``."""
+    adoption = "criteria_set__adoptions"
+    here = models.Q(**{f"{adoption}__site": None}) | models.Q(**{f"{adoption}__site_id": site_id})
+    found = Criterion.objects.filter(here, **{f"{adoption}__ended_at": None, f"{adoption}__isnull": False})
+    ordered = found.annotate(
+        for_group=models.Case(models.When(**{f"{adoption}__site": None}, then=1), default=0),
+        adopted_at=models.F(f"{adoption}__adopted_at"),
+        adoption_id=models.F(f"{adoption}__id"),
+    ).order_by("for_group", "-adopted_at", "-adoption_id", "id")
+    return list(ordered.select_related("criteria_set"))
+
+
+def _by_place(adoptions: Iterable[Adoption], site_id: int | None) -> list[Adoption]:
+    """Adoptions that hold at a site: its own first, then the group's, the newest of each first."""
+    found = [each for each in adoptions if each.site_id in (None, site_id)]
+    return sorted(found, key=lambda a: (a.site_id is None, -a.adopted_at.timestamp(), -a.id))
 
 
 def adopted_procedures(site_id: int | None, as_of: dt.datetime | None = None) -> list[EditionRow]:
