@@ -12,7 +12,10 @@ from django.utils.translation import gettext_noop as N_
 from qa_tracker.core.errors import DomainError, SeveralInvalid
 from qa_tracker.core.roles import PERMISSIONS
 from qa_tracker.services.wording_findings import REFUSED
+from qa_tracker.services.wording_refused_baselines import BASELINES
 from qa_tracker.services.wording_refused_entry import ENTRY
+from qa_tracker.services.wording_refused_formulas import FORMULAS
+from qa_tracker.services.wording_refused_lines import LINES
 from qa_tracker.services.wording_refused_records import RECORDS
 from qa_tracker.services.wording_refused_requests import REQUESTS
 from qa_tracker.services.wording_refused_uncertainty import UNCERTAINTY
@@ -30,11 +33,13 @@ from qa_tracker.services.wording_words import (
     listed,
     moment_words,
     role_word,
-    unit_symbol,
+    unit_words,
     word,
 )
 
-SENTENCES: Final[Mapping[str, str]] = VALUES | RECORDS | REQUESTS | ENTRY | REFUSED | UNCERTAINTY
+SENTENCES: Final[Mapping[str, str]] = (
+    VALUES | RECORDS | REQUESTS | ENTRY | REFUSED | FORMULAS | LINES | UNCERTAINTY | BASELINES
+)
 STATES: Final = {
     "check": CHECK_STATES,
     "device": DEVICE_STATES,
@@ -93,7 +98,9 @@ def _parameter(name: str, value: object) -> str:
     text = str(value)
     if name == "opens_at":
         return moment_words(dt.datetime.fromisoformat(text))
-    words = {"kind": kind_word, "level": level_word, "unit": unit_symbol, "wanted": unit_symbol}
+    words = {"kind": kind_word, "level": level_word} | dict.fromkeys(
+        ("unit", "wanted", "left", "right"), unit_words
+    )
     return words[name](text) or text if name in words else text
 
 

@@ -17,7 +17,7 @@ from tests import builders
 
 pytestmark = pytest.mark.django_db
 NAMES = (
-    "standalone", "load_demo", "sweep", "issue_dossier", "verify_dossier", "verify_ledger", "recheck_verdicts",
+    "standalone", "load_demo", "sweep", "issue_dossier", "verify_dossier", "verify_ledger", "recheck_verdicts", "judge",
 )  # fmt: skip
 
 
