@@ -4,12 +4,13 @@ from __future__ import annotations
 
 import datetime as dt
 import hashlib
+import uuid
 from collections.abc import Mapping
 from typing import Any
 
 from qa_tracker.core import library
 from qa_tracker.core.canonical import canonical
-from qa_tracker.core.errors import Conflict
+from qa_tracker.core.errors import Conflict, NotFound
 from qa_tracker.core.library_specs import MeasurandSpec
 from qa_tracker.records import ledger
 from qa_tracker.records.ids import uuid7
@@ -23,7 +24,7 @@ from qa_tracker.records.models import (
     Procedure,
     Site,
 )
-from qa_tracker.services.guards import check_may
+from qa_tracker.services.guards import check_may, required, scope
 
 
 def publish_procedure(*, document: Mapping[str, Any], actor: Person | None, at: dt.datetime) -> Edition:
@@ -166,3 +167,40 @@ def adopt_criteria(
             }
         )
     return row
+
+
+def end_criteria(*, adoption: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> Adoption:
+    """End the adoption of a set, so that it judges nothing there any more. Writes Adoption; leaf ``criteria.ended``.
+
+    Where a site's own adoption ends, the group's is in force there again, if there is one. Verdicts that stand are
+    not touched. Refused: role, an adoption that is not in force, no reason.
+    """
+    row = criteria_adoption(adoption, actor, at)
+    check_may(actor, "criteria.adopt", row.site_id, at)
+    reason = required(reason, "adoption.reason_missing", "reason")
+    criteria_set = row.criteria_set
+    assert criteria_set is not None  # criteria_adoption finds none without
+    with ledger.command("criteria.ended", actor=actor, at=at, reason=reason) as act:
+        act.change(row, ended_at=at)
+        act.about(row, site=row.site)
+        act.tell(
+            {
+                "set": criteria_set.code,
+                "edition": criteria_set.edition,
+                "site": row.site.code if row.site else None,
+            }
+        )
+    return row
+
+
+def criteria_adoption(uid: uuid.UUID, actor: Person, at: dt.datetime) -> Adoption:
+    """The adoption of a set that is in force, for the group or for a site in the actor's sight."""
+    found = (
+        Adoption.objects.filter(uid=uid, ended_at=None)
+        .exclude(criteria_set=None)
+        .select_related("criteria_set", "site")
+        .first()
+    )
+    if found is None or (found.site_id is not None and not scope(actor, at).holds(found.site_id)):
+        raise NotFound("adoption.unknown")
+    return found

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-import datetime as dt
 import json
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from decimal import Decimal
 
 from qa_tracker.core import conformity, decimals
@@ -17,7 +16,7 @@ from qa_tracker.core.schedule import local_day
 from qa_tracker.core.sentence_codes import SentenceCode
 from qa_tracker.records.models import Baseline, Criterion, FurtherVerdict, Reading, Verdict
 from qa_tracker.records.queries import baselines, library
-from qa_tracker.records.queries.device_facts import FactsThen, facts_over_time
+from qa_tracker.records.queries.device_facts import FactsThen, facts_at, facts_over_time
 from qa_tracker.records.queries.library import criterion_spec
 from qa_tracker.services.entries import NUMBERS
 
@@ -45,12 +44,11 @@ class VerdictFinding:
 
 
 @dataclass(frozen=True)
-class _Known:
-    """What is fetched once for all verdicts."""
+class Known:
+    """What is fetched once for all verdicts: facts of devices by time, measurands by edition."""
 
-    criteria: dict[int, tuple[str, CriterionSpec]]
-    facts: dict[int, list[FactsThen]]
-    measurands: dict[int, dict[str, MeasurandSpec]]
+    facts: dict[int, list[FactsThen]] = field(default_factory=facts_over_time)
+    measurands: dict[int, dict[str, MeasurandSpec]] = field(default_factory=dict)
 
     def measurand(self, edition_id: int, code: str) -> MeasurandSpec | None:
         """A measurand as an edition has it; each edition is read once."""
@@ -62,17 +60,14 @@ class _Known:
 
 def recheck_verdicts() -> VerdictFinding:
     """Re-derive every stored verdict, and what further limits said. Reads only."""
-    known = _Known(
-        {row.id: (row.code, criterion_spec(row.content)) for row in Criterion.objects.all()},
-        facts_over_time(),
-        {},
-    )
+    criteria = {row.id: (row.code, criterion_spec(row.content)) for row in Criterion.objects.all()}
+    known = Known()
     problems, count = [], 0
     for verdict in _verdicts():
         count += 1
         said_so: list[Verdict | FurtherVerdict] = [verdict, *verdict.further.all()]
         for said in said_so:
-            code, spec = known.criteria.get(said.criterion_id or 0, ("", None))
+            code, spec = criteria.get(said.criterion_id or 0, ("", None))
             if spec is None or not _agrees(said, verdict, spec, known):
                 name = str(said._meta.model_name)
                 problems.append(VerdictProblem("verdict_differs", f"{name} {said.pk} {code}"))
@@ -84,14 +79,13 @@ def _verdicts() -> Iterator[Verdict]:
     yield from found.order_by("id").iterator(chunk_size=BATCH)
 
 
-def _agrees(said: Verdict | FurtherVerdict, verdict: Verdict, spec: CriterionSpec, known: _Known) -> bool:
+def _agrees(said: Verdict | FurtherVerdict, verdict: Verdict, spec: CriterionSpec, known: Known) -> bool:
     if said.code in WORKED_OUT:
         return said.verdict == "not_assessable" and verdict.reading is None
     measurand = known.measurand(verdict.submission.edition_id, verdict.measurand.code)
     if measurand is None:
         return False
-    met = _circumstances(verdict, measurand, known)
-    found = unfit(spec, met, _standing(said.baseline)) or _judged(said, verdict.reading, measurand, spec)
+    found = judged_by(spec, said, verdict, measurand, known)
     kept = json.loads(said.parameters)
     same = all(kept.get(name) == value for name, value in found.parameters.items())
     return same and (found.verdict, found.level or "", str(found.code)) == (
@@ -101,9 +95,21 @@ def _agrees(said: Verdict | FurtherVerdict, verdict: Verdict, spec: CriterionSpe
     )
 
 
-def _circumstances(verdict: Verdict, measurand: MeasurandSpec, known: _Known) -> Circumstances:
+def judged_by(
+    spec: CriterionSpec,
+    said: Verdict | FurtherVerdict,
+    verdict: Verdict,
+    measurand: MeasurandSpec,
+    known: Known,
+) -> Judgement:
+    """What a limit says of a stored reading, by what was kept beside it; it need not be the limit that judged it."""
+    met = _circumstances(verdict, measurand, known)
+    return unfit(spec, met, _standing(said.baseline)) or _judged(said, verdict.reading, measurand, spec)
+
+
+def _circumstances(verdict: Verdict, measurand: MeasurandSpec, known: Known) -> Circumstances:
     submission, origin = verdict.submission, verdict.reading.origin if verdict.reading else ""
-    facts = _facts_at(known.facts.get(submission.check_of.device_id, []), submission.recorded_at)
+    facts = facts_at(known.facts.get(submission.check_of.device_id, []), submission.recorded_at)
     site, on = submission.check_of.site, submission.test_object
     return Circumstances(
         facts.array_kind,
@@ -115,12 +121,6 @@ def _circumstances(verdict: Verdict, measurand: MeasurandSpec, known: _Known) ->
         on.id if on else None,
         f"{on.name} {on.serial}" if on else "",
     )
-
-
-def _facts_at(over_time: list[FactsThen], moment: dt.datetime) -> FactsThen:
-    """The facts of a device that were on record at a moment."""
-    known = [facts for facts in over_time if facts.recorded_at <= moment]
-    return known[-1] if known else FactsThen(moment)
 
 
 def _standing(baseline: Baseline | None) -> Standing | None:

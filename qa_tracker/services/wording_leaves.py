@@ -55,6 +55,9 @@ SENTENCES: Final = {
     ),
     "criteria.published": N_("%(actor)s published the criteria “%(set)s”, edition %(edition)s"),
     "criteria.adopted": N_("%(actor)s adopted the criteria “%(set)s”, edition %(edition)s, for %(site)s"),
+    "criteria.ended": N_(
+        "%(actor)s ended the criteria “%(set)s”, edition %(edition)s, for %(site)s: %(reason)s"
+    ),
     "uncertainty.stated": N_(
         "%(actor)s stated the uncertainty of %(measurand)s for %(site)s (%(kind)s): %(source)s"
     ),

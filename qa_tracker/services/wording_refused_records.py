@@ -199,10 +199,23 @@ PLANS: Final = {
     "edition.number_taken": N_(
         "Edition %(number)s is published with other content and stays as it is. Give the new content the next number."
     ),
-    "criteria_set.unknown": N_("There is no such set of criteria. Choose one from the list."),
-    "adoption.exists": N_("This is already adopted here, so nothing was changed."),
     "record.changed_meanwhile": N_(
         "Someone else changed this meanwhile, so nothing was saved. Look at it again, then repeat your change."
+    ),
+}
+SETS: Final = {
+    "criteria_set.unknown": N_("There is no such set of criteria. Choose one from the list."),
+    "criteria_set.edition_taken": N_(
+        "Edition %(number)s of this set is published and stays as it is. Give the next edition another name."
+    ),
+    "criteria_set.nothing_changed": N_(
+        "Nothing differs from the edition it follows, so there is nothing to publish. Change what is to be different."
+    ),
+    "adoption.exists": N_("This is already adopted here, so nothing was changed."),
+    "adoption.unknown": N_("There is no such adoption in force. Look at the set's adoptions again."),
+    "adoption.reason_missing": N_("Say why the limits are no longer to be used here. The reason is kept."),
+    "what_if.too_many": N_(
+        "More than %(most)s stored readings would have to be judged for this. Choose a shorter period, or one site."
     ),
 }
 DOSSIERS: Final = {
@@ -246,4 +259,4 @@ DOSSIERS: Final = {
         "The signature of the key %(name)s doesn't fit this checkpoint: one of them was changed. Don't rely on it."
     ),
 }
-RECORDS: Final = CHECKS | DEVICES | FAULTS | PEOPLE | SITES | PLANS | DOSSIERS
+RECORDS: Final = CHECKS | DEVICES | FAULTS | PEOPLE | SITES | PLANS | SETS | DOSSIERS

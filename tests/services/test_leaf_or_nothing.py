@@ -14,6 +14,7 @@ from collections.abc import Callable
 from typing import Any
 
 import pytest
+from criteria_leaves import CRITERIA
 from django.apps import apps
 from django.db import connection
 from django.utils.timezone import now
@@ -192,6 +193,7 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
     "library.adopt_criteria": lambda w: {
         "criteria_set": CriteriaSet.objects.first(), "site": w.site, "remark": "ours", "actor": w.physicist,
     },
+    **CRITERIA,
     "uncertainties.state": lambda w: {
         "statement": Statement("reverberation_depth", "standard", "0.3", source="Repeats of March"),
         "site": w.site, "actor": w.physicist,

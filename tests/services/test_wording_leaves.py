@@ -148,6 +148,10 @@ TABLE = [
         f"{HD} adopted the criteria “tg1”, edition 1998, for AG.",
     ),
     (
+        "criteria.ended", {"set": "tg1", "edition": "1998", "site": None}, "The limits are from memory.",
+        f"{HD} ended the criteria “tg1”, edition 1998, for the whole group: The limits are from memory.",
+    ),
+    (
         "test_object.registered", {"name": "Hydrogel A", "serial": "77", "nominals": {}}, "",
         f"{HD} registered the test object Hydrogel A, serial number 77.",
     ),

@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import json
 from collections import defaultdict
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 from qa_tracker.records.models import Version
@@ -33,3 +34,11 @@ def facts_over_time() -> dict[int, list[FactsThen]]:
         then = replace(before[-1], recorded_at=moment) if before else FactsThen(moment)
         before.append(replace(then, **{name: columns[name] for name in names}))
     return dict(found)
+
+
+def facts_at(over_time: Sequence[FactsThen], moment: dt.datetime) -> FactsThen:
+    """The facts of a device that were on record at a moment; empty where none were."""
+    for facts in reversed(over_time):
+        if facts.recorded_at <= moment:
+            return facts
+    return FactsThen(moment)

@@ -8,6 +8,7 @@ import uuid
 from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import lru_cache
+from typing import Any
 
 from django.db import models
 from django.db.models import Prefetch, QuerySet
@@ -128,6 +129,19 @@ def find_criteria_set(uid: uuid.UUID) -> CriteriaSetRow | None:
     """A published set by uid."""
     found = _sets().filter(uid=uid).first()
     return _set_row(found) if found else None
+
+
+def set_document(set_id: int) -> dict[str, Any]:
+    """A published set as the document it was published from, save for cautions, which are not kept with it."""
+    one = _sets().get(pk=set_id)
+    words = {
+        "set": one.code,
+        "edition": one.edition,
+        "title": one.title,
+        "source": one.source,
+        "note": one.note,
+    }
+    return {**words, "cautions": [], "criteria": [json.loads(each.content) for each in one.criteria.all()]}
 
 
 def _sets() -> QuerySet[CriteriaSet]:
