@@ -12,6 +12,7 @@ from typing import Any
 
 from qa_tracker.core.criteria import Band, Criterion
 from qa_tracker.core.errors import Invalid
+from qa_tracker.core.formula_check import check_formulas
 from qa_tracker.core.library_reader import one_of, refuse_repeated
 from qa_tracker.core.library_shapes import CAUTIONS, CRITERIA_SET, CRITERION, LEVELS, PROCEDURE
 from qa_tracker.core.library_specs import (
@@ -72,13 +73,15 @@ def procedure(document: Any) -> ProcedureSpec:
     Raises
     ------
     Invalid
-        ``library.*`` with the place as ``field``; also for a measurand whose parts do not fit its kind.
+        ``library.*`` with the place as ``field``; also for a measurand whose parts do not fit its kind, and
+        ``formula.*`` for a derived one whose formula can't be worked out, with the column in it.
     """
     read: ProcedureSpec = PROCEDURE(document, "")
     codes = [measurand.code for measurand in read.measurands]
     refuse_repeated(codes, "measurands", "code")
     for index, measurand in enumerate(read.measurands):
         _check_measurand(measurand, codes, f"measurands[{index}]")
+    check_formulas(read)
     return read
 
 

@@ -17,7 +17,7 @@ from qa_tracker.services.wording_words import (
     banding_word,
     capital,
     kind_word,
-    unit_symbol,
+    unit_words,
     word,
 )
 
@@ -52,17 +52,13 @@ def _not_finite(given: Parameters, says: str) -> str:
     return capital(sentence % told)
 
 
-def _unit_words(code: str) -> str:
-    return unit_symbol(code) or _("a plain number")
-
-
 def _wrong_unit(given: Parameters, says: str) -> str:
     sentence = _(
         "The reading is in %(unit)s and the limit in %(wanted)s; nothing is converted: %(verdict)s. "
         "Read it in %(wanted)s."
     )
-    read_in = _unit_words(given["unit"]) if given["unit"] else _("no unit")
-    return sentence % {"unit": read_in, "wanted": _unit_words(given["criterion_unit"]), "verdict": says}
+    read_in = unit_words(given["unit"]) if given["unit"] else _("no unit")
+    return sentence % {"unit": read_in, "wanted": unit_words(given["criterion_unit"]), "verdict": says}
 
 
 def _no_nominal(given: Parameters, says: str) -> str:

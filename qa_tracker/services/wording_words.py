@@ -222,6 +222,11 @@ def unit_symbol(code: str) -> str:
     return UNITS[code].symbol if code in UNITS else code
 
 
+def unit_words(code: str) -> str:
+    """The symbol of a unit, and words where it has none."""
+    return unit_symbol(code) or _("a plain number")
+
+
 def amount(number: str, unit: str) -> str:
     """A number with its unit's symbol, as ``core.units`` writes it; a unit that is not known stands as it is."""
     if unit in UNITS:
