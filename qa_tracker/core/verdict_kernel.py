@@ -20,18 +20,17 @@ unbounded ones by the same lines.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from decimal import Decimal
-from itertools import pairwise
 from typing import Any, Literal, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
 from qa_tracker.core.criteria import Criterion, Level, Limit
-from qa_tracker.core.decimals import places_of, scaled_at, ten_to
+from qa_tracker.core.decimals import places_of
 from qa_tracker.core.errors import Invalid
+from qa_tracker.core.verdict_plain import Buffers, fits, plain_codes, whole_limit
 
 Rule = Literal["simple", "guarded", "zones"]
 RULES: tuple[Rule, ...] = ("simple", "guarded", "zones")
@@ -51,8 +50,9 @@ PROVEN_CODE: dict[Level, int] = {"remedial": REMEDIAL, "suspension": SUSPENSION}
 LARGEST = 1 << 60
 FAR = 1 << 62
 FAR_UNBOUNDED = 1 << 2048
-CHUNK = 1 << 17
+CHUNK = 1 << 15
 """Rows judged at once: temporaries stay in the processor's cache."""
+
 
 
 @dataclass(frozen=True)
@@ -131,6 +131,10 @@ def verdict_codes(criterion: Criterion, columns: Columns, rule: Rule = "simple")
     """
     if not criterion.levels():
         raise Invalid("kernel.no_level")
+    if criterion.of_own_spread:
+        raise Invalid("kernel.own_spread")
+    if _is_plain(columns, rule) and fits(criterion, columns.places, columns.values, columns.references):
+        return _plainly(criterion, columns)
     if not fits_in_64_bits(criterion, columns):
         columns = _unbounded(columns)
     departures = _departures(criterion, columns)
@@ -149,41 +153,23 @@ def verdict_codes(criterion: Criterion, columns: Columns, rule: Rule = "simple")
     return codes
 
 
-def verdict_codes_by_criterion(
-    criteria: Sequence[Criterion], index: NDArray[Any], columns: Columns, rule: Rule = "simple"
-) -> NDArray[np.uint8]:
-    """Judge every row by the criterion its index names; rows are grouped once and judged in chunks.
+def _is_plain(columns: Columns, rule: Rule) -> bool:
+    """Tell whether rows are exact readings in 64-bit integers, to be judged by simple acceptance."""
+    if rule != "simple" or columns.values.dtype != np.int64 or columns.references.dtype != np.int64:
+        return False
+    return columns.qualifiers is None or not columns.qualifiers.any()
 
-    Parameters
-    ----------
-    criteria
-        Without bands or grades: a banded one is put in once for each band (``Criterion.at``).
-    index
-        Position in ``criteria`` per row, shape (n,); -1 where the reading lies outside every band.
 
-    Returns
-    -------
-    uint8 array, shape (n,)
-        As ``verdict_codes``; not assessable where the index is -1.
-    """
-    codes = np.full(len(index), NOT_ASSESSABLE, np.uint8)
-    for position, rows in _groups(index, len(criteria)):
-        if position >= 0:
-            codes[rows] = verdict_codes(criteria[position], columns.rows(rows), rule)
+def _plainly(criterion: Criterion, columns: Columns) -> NDArray[np.uint8]:
+    rows = len(columns.values)
+    codes, room = np.empty(rows, np.uint8), Buffers(min(rows, CHUNK))
+    for first in range(0, rows, CHUNK):
+        part = slice(first, first + CHUNK)
+        values, references = columns.values[part], columns.references[part]
+        plain_codes(criterion, columns.places, values, references, room, codes[part])
+    if (unusable := _unusable(criterion, columns)) is not None:
+        codes[unusable] = NOT_ASSESSABLE
     return codes
-
-
-def _groups(index: NDArray[Any], count: int) -> Iterator[tuple[int, NDArray[np.intp]]]:
-    """Yield each criterion's rows, a chunk at a time."""
-    if len(index) and (int(index.min()) < -1 or int(index.max()) >= count):
-        raise Invalid("kernel.index", count=str(count))
-    # Small integers are sorted by radix, in time proportional to the rows.
-    narrow = index.astype(np.int16) if count < 1 << 15 else index
-    order = np.argsort(narrow, kind="stable")
-    ends = np.searchsorted(narrow[order], np.arange(-1, count + 1))
-    for position, (start, end) in enumerate(pairwise(ends), start=-1):
-        for first in range(int(start), int(end), CHUNK):
-            yield position, order[first : min(first + CHUNK, int(end))]
 
 
 def fits_in_64_bits(criterion: Criterion, columns: Columns) -> bool:
@@ -196,7 +182,7 @@ def fits_in_64_bits(criterion: Criterion, columns: Columns) -> bool:
         return False
     largest = [_largest(part) for part in arrays if part is not None]
     for _, limit in criterion.levels():
-        absolute, percent, divisor = _whole_limit(limit, columns.places)
+        absolute, percent, divisor = whole_limit(limit, columns.places)
         largest += [abs(absolute or 0), (percent or 0) * max(largest[1], 1), divisor]
     return max(largest) <= LARGEST
 
@@ -263,7 +249,7 @@ def _allowances(criterion: Criterion, limit: Limit, columns: Columns) -> tuple[W
     A lower limit L becomes the allowance -L for the departure -value.
     """
     sign = -1 if criterion.direction == "below" and criterion.basis in ("none", "ratio") else 1
-    absolute, percent, divisor = _whole_limit(limit, columns.places)
+    absolute, percent, divisor = whole_limit(limit, columns.places)
     exact = np.ones(len(columns.values), np.bool_)
     fixed = np.full(len(columns.values), sign * (absolute or 0), columns.values.dtype)
     if percent is None:
@@ -277,15 +263,6 @@ def _allowances(criterion: Criterion, limit: Limit, columns: Columns) -> tuple[W
     else:
         governs = _where(fixed <= floor)
     return np.where(governs, fixed, floor), governs | whole
-
-
-def _whole_limit(limit: Limit, places: int) -> tuple[int | None, int | None, int]:
-    """Return the absolute part at ``places``, and the percentage as whole number and its divisor."""
-    absolute = None if limit.absolute is None else scaled_at(limit.absolute, places)
-    if limit.percent is None:
-        return absolute, None, 1
-    own = places_of(limit.percent)
-    return absolute, scaled_at(limit.percent, own), ten_to(own + 2)
 
 
 def _unusable(criterion: Criterion, columns: Columns) -> NDArray[np.bool_] | None:

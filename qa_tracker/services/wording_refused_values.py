@@ -200,6 +200,9 @@ INNER: Final = {
     "canonical.not_json": N_("The content can't be written as JSON: %(what)s. Correct it."),
     "kernel.no_level": N_("The criterion has no level to judge by. Give it one."),
     "kernel.index": N_("A reading points outside its %(count)s criteria. Tell the administrator."),
+    "kernel.own_spread": N_(
+        "A limit of the device's own spread was to be judged without its set-ups. Tell the administrator."
+    ),
     "kernel.numbers": N_("Readings came as %(kinds)s instead of whole numbers. Tell the administrator."),
     "ledger.checkpoint_contradicted": N_(
         "The first %(size)s leaves of the ledger no longer give the root of their checkpoint: something was changed "

@@ -11,6 +11,7 @@ from qa_tracker.core.conformity import judge, severity
 from qa_tracker.core.criteria import Criterion, Limit
 from qa_tracker.core.decimals import from_scaled
 from qa_tracker.core.errors import Invalid
+from qa_tracker.core.verdict_groups import verdict_codes_by_criterion
 from qa_tracker.core.verdict_kernel import (
     CHUNK,
     LARGEST,
@@ -18,7 +19,6 @@ from qa_tracker.core.verdict_kernel import (
     column,
     fits_in_64_bits,
     verdict_codes,
-    verdict_codes_by_criterion,
 )
 
 CRITERIA = (
