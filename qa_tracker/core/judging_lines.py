@@ -60,7 +60,17 @@ def judge_line(given: Any) -> Judgement:
     rule = given.get("rule") or "simple"
     if not isinstance(rule, str):
         raise Invalid("line.not_text", field="rule", value=str(rule))
-    return judge(criterion, kind="number", rule=cast(Rule, rule), **numbers)
+    return judge(
+        criterion,
+        kind="number",
+        rule=cast(Rule, rule),
+        value=numbers["value"],
+        nominal=numbers["nominal"],
+        baseline=numbers["baseline"],
+        reference=numbers["reference"],
+        quantity=numbers["quantity"],
+        uncertainty=numbers["uncertainty"],
+    )
 
 
 def answer(judgement: Judgement) -> dict[str, str | float]:
