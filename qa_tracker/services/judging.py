@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import hashlib
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from decimal import Decimal
 
 from qa_tracker.core import conformity, decimals
@@ -14,6 +14,7 @@ from qa_tracker.core.decimals import Exact
 from qa_tracker.core.errors import DomainError, Invalid, SeveralInvalid
 from qa_tracker.core.sentence_codes import SentenceCode
 from qa_tracker.records.queries.library import CriterionRow
+from qa_tracker.services.deriving import WorkedOut, work_out
 from qa_tracker.services.entries import EMPTY, Entry, doubtful, left_empty, not_asked, read_entry
 from qa_tracker.services.items import Item
 from qa_tracker.services.weighing import MeasuredWith, Weighed, weigh
@@ -120,7 +121,37 @@ def judge_all(asked: Asked, entries: Mapping[str, Entry], *, whole: bool) -> Jud
         for item in asked.items
         if whole or entries.get(item.key, EMPTY).text or entries.get(item.key, EMPTY).qualifier == "not_seen"
     ]
+    if asked.derived:
+        made = work_out(asked.derived, asked.items, entries, exact, asked.attributes)
+        judged += [
+            each for each in (_judge_derived(one, asked) for one in made) if _is_told(each, whole=whole)
+        ]
     return Judged(tuple(judged), worst_of(judged))
+
+
+def _is_told(one: JudgedItem, *, whole: bool) -> bool:
+    """Whether a derived item is part of the check: it has a value, or should have had one to be judged."""
+    return one.exact is not None or (whole and one.item.spec.required and one.weighed is not None)
+
+
+def _judge_derived(made: WorkedOut, asked: Asked) -> JudgedItem:
+    """Judge a quantity that was worked out; one that could not be is not assessable by each of its limits."""
+    item, reference = made.item, made.item.nominal or ""
+    if made.refusal is not None:
+        weighed = tuple(Weighed(each, made.refusal, "", "", "simple") for each in item.criteria)
+    else:
+        weighed = tuple(
+            _with_arithmetic(
+                weigh(item, each, made.entry, made.exact, reference, (), asked.measured_with), made.arithmetic
+            )
+            for each in item.criteria
+        )
+    return decided(item, made.entry, made.exact, weighed, asked.instructions)
+
+
+def _with_arithmetic(weighed: Weighed, arithmetic: str) -> Weighed:
+    told = weighed.judgement.parameters | {"arithmetic": arithmetic}
+    return replace(weighed, judgement=replace(weighed.judgement, parameters=told))
 
 
 def _read(items: Sequence[Item], entries: Mapping[str, Entry], *, whole: bool) -> dict[str, Exact | None]:

@@ -20,7 +20,13 @@ from qa_tracker.records.queries.device_facts import FactsThen, facts_at, facts_o
 from qa_tracker.records.queries.library import criterion_spec
 from qa_tracker.services.entries import NUMBERS
 
-WORKED_OUT = {SentenceCode.NO_INPUT, SentenceCode.OPEN_INPUT, SentenceCode.LAYOUT_COMPENSATED}
+WORKED_OUT = {
+    SentenceCode.NO_INPUT,
+    SentenceCode.OPEN_INPUT,
+    SentenceCode.LAYOUT_COMPENSATED,
+    SentenceCode.NOT_FINITE,
+}
+"""What a derived quantity says that could not be worked out; there is no reading to derive it from again."""
 JOINS = (
     "reading", "measurand", "baseline__test_object", "submission__test_object", "submission__check_of__site",
 )  # fmt: skip
@@ -80,8 +86,8 @@ def _verdicts() -> Iterator[Verdict]:
 
 
 def _agrees(said: Verdict | FurtherVerdict, verdict: Verdict, spec: CriterionSpec, known: Known) -> bool:
-    if said.code in WORKED_OUT:
-        return said.verdict == "not_assessable" and verdict.reading is None
+    if said.code in WORKED_OUT and verdict.measurand.kind == "derived" and verdict.reading is None:
+        return said.verdict == "not_assessable"
     measurand = known.measurand(verdict.submission.edition_id, verdict.measurand.code)
     if measurand is None:
         return False

@@ -15,7 +15,7 @@ from qa_tracker.services import wording
 from qa_tracker.services.entries import REASONS
 from qa_tracker.services.items import Item
 from qa_tracker.services.judging import Judged, JudgedItem
-from qa_tracker.web.presenters.judged import Shown, shown_item, value_words
+from qa_tracker.web.presenters.judged import Shown, shown_item, value_words, where_words
 from qa_tracker.web.refused import Refused
 
 
@@ -93,6 +93,34 @@ def sections(
         known = {section.condition_id for section in made}
         made.append(_section(members[0], fields, typed, refused, known, apertures > 1))
     return tuple(made)
+
+
+@dataclass(frozen=True)
+class Worked:
+    """A quantity that was worked out, with its verdict where a limit judges it."""
+
+    name: str
+    where: str
+    value: str
+    shown: Shown | None
+
+
+def worked_out(judged: Judged) -> tuple[Worked, ...]:
+    """What could be worked out from what is typed so far."""
+    return tuple(
+        Worked(
+            one.item.spec.name,
+            where_words(
+                one.item.aperture.name if one.item.aperture else "",
+                one.item.condition.name if one.item.condition else "",
+                1,
+            ),
+            value_words(one.item.spec, "=", one.entry.text, one.item.spec.unit),
+            shown_item(one),
+        )
+        for one in judged.items
+        if one.item.spec.kind == "derived"
+    )
 
 
 def in_walking_order(items: Sequence[Item]) -> list[Item]:

@@ -26,10 +26,11 @@ from qa_tracker.records.queries.submissions import SignatureRow
 from qa_tracker.services import cautions, checks, drafts, guards, live, wording
 from qa_tracker.services.drafts import Kept, KeptMeanwhile
 from qa_tracker.services.entries import REASONS
+from qa_tracker.services.judging import Judged
 from qa_tracker.services.sheets import Sheet
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.forms import entry as inputs
-from qa_tracker.web.presenters.entry import Choice, outcome, sections
+from qa_tracker.web.presenters.entry import Choice, outcome, sections, worked_out
 from qa_tracker.web.refused import Refused
 
 
@@ -169,8 +170,13 @@ def _judged_json(request: HttpRequest, uid: uuid.UUID, kept: Kept) -> dict[str, 
                 "refused": bool(one.refusal),
             }
             for one in outcomes
-        },
+        }
+        | {"worked-out": {"html": _worked_html(judged), "refused": False}},
     }
+
+
+def _worked_html(judged: Judged) -> str:
+    return render_to_string("_worked_out.html", {"worked": worked_out(judged)})
 
 
 def page(
@@ -193,6 +199,8 @@ def page(
         "row": check_queries.find_check(guards.scope(request.user, at), uid),
         "spec": laid.edition.spec,
         "sections": sections(laid.items, typed, judged, named),
+        "worked": worked_out(judged),
+        "works_out": bool(laid.derived),
         "typed": typed,
         "revision": revision,
         "refused": refused,
