@@ -5,7 +5,7 @@ from __future__ import annotations
 import datetime as dt
 
 from qa_tracker.records.models import Aperture, Condition, Placement, ProbeFacts, ScannerFacts
-from qa_tracker.services import devices, history, states
+from qa_tracker.services import devices, history, history_baselines, states
 from qa_tracker.services.demo_fleet import CLASSES, PROBE_MODELS, Console, Transducer
 from qa_tracker.services.demo_world import World
 from qa_tracker.services.devices import Identity, Place
@@ -94,7 +94,7 @@ def accept(world: World, kept: Kept, at: dt.datetime, decision: str = "accept") 
     )
     if decision == "accept":
         if kept.device.kind == "probe":
-            history.set_baselines(
+            history_baselines.set_from_check(
                 world.past, kept, done, BASELINE_CODES, by=oduya, at=done_at + dt.timedelta(hours=1),
                 reason="Acceptance",
             )  # fmt: skip

@@ -6,7 +6,7 @@ import datetime as dt
 from dataclasses import dataclass
 
 from qa_tracker.records.models import Check
-from qa_tracker.services import history, history_devices
+from qa_tracker.services import history_baselines, history_devices
 from qa_tracker.services.demo_devices import BASELINE_CODES, accept, enter_probe
 from qa_tracker.services.demo_fleet import Transducer
 from qa_tracker.services.demo_follow_up import CODE as FOLLOW_UP
@@ -60,7 +60,7 @@ class SlowLoss:
             if number + 1 == len(SLOW_SET_UPS):
                 oduya, _ = world.person("oduya")
                 reason = "Mean of ten independent set-ups, standard deviation 1.8 mm"
-                history.set_baselines(
+                history_baselines.set_from_check(
                     world.past, self.kept, done, ("penetration",), by=oduya, reason=reason,
                     at=at + HOUR, texts={"penetration": "152.0"},
                 )  # fmt: skip
@@ -204,7 +204,7 @@ class Cable:
         history_devices.restore(
             world.past, kept, proof=done.check, remark=remark, by=oduya, role="physicist", at=at + 4 * HOUR
         )
-        history.set_baselines(
+        history_baselines.set_from_check(
             world.past, kept, done, BASELINE_CODES, by=oduya, reason="New epoch after the cable was renewed",
             at=at + 5 * HOUR,
         )  # fmt: skip

@@ -16,6 +16,7 @@ from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records import ledger
 from qa_tracker.records.models import (
     Aperture,
+    Baseline,
     Check,
     Condition,
     Device,
@@ -27,6 +28,7 @@ from qa_tracker.records.models import (
     ScannerFacts,
     Site,
 )
+from qa_tracker.services import software
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.guards import check_may, required
 
@@ -275,30 +277,18 @@ def edit(*, device: uuid.UUID, changes: Mapping[str, object], actor: Person, at:
 
 def record_software(
     *, scanner: uuid.UUID, version: str, options: str, since_on: dt.date, actor: Person, at: dt.datetime
-) -> None:
-    """Record a software version of a scanner. Writes ScannerFacts; leaf ``device.software_recorded``."""
+) -> list[Baseline]:
+    """Record a software version of a scanner; baselines measured on it are under review from then on.
+
+    Writes ScannerFacts, Baseline; leaf ``device.software_recorded``. Returns the baselines put under review.
+    """
     row = find_device(actor, scanner, at)
     check_may(actor, "device.edit", row.site_id, at)
     facts = ScannerFacts.objects.filter(device=row).first()
     if facts is None:
         raise Invalid("device.not_a_scanner", field="device")
     with ledger.command("device.software_recorded", actor=actor, at=at) as act:
-        change_software(act, facts, version, options, since_on)
-
-
-def change_software(
-    act: ledger.Act, facts: ScannerFacts, version: str, options: str, since_on: dt.date
-) -> None:
-    """The rows of a software version; for commands and for history."""
-    old = {"version": facts.software_version, "options": facts.software_options}
-    act.change(
-        facts,
-        software_version=required(version, "device.software_missing", "software_version"),
-        software_options=options,
-        software_since_on=since_on,
-    )
-    act.about(facts.device, device=facts.device, site=facts.device.site)
-    act.tell({"version": version, "options": options, "since": since_on.isoformat()}, old)
+        return software.record(act, facts, version, options, since_on, software.standing_on(row))
 
 
 def set_condition(

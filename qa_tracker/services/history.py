@@ -10,7 +10,7 @@ from __future__ import annotations
 import datetime as dt
 import gc
 import itertools
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 from typing import TypeVar
@@ -46,11 +46,12 @@ from qa_tracker.records.queries.baselines import SeriesKey
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.records.queries.uncertainties import UncertaintyRow
-from qa_tracker.services import baselines, judging, plans, recording
+from qa_tracker.services import judging, plans, recording
+from qa_tracker.services.baseline_rows import SetUp, setups_of
 from qa_tracker.services.deriving import attributes_of
-from qa_tracker.services.entries import Entry, read_entry
-from qa_tracker.services.history_rows import baseline_row, device_row
-from qa_tracker.services.items import Item, Surroundings, items_of
+from qa_tracker.services.entries import Entry
+from qa_tracker.services.history_rows import in_force_rows
+from qa_tracker.services.items import Item, Measured, Surroundings, items_of
 from qa_tracker.services.judging import Asked, Instructions, Judged
 from qa_tracker.services.recording import Facts
 from qa_tracker.services.sheets import nominals_of
@@ -72,14 +73,16 @@ class Kept:
     conditions: dict[int, Condition] = field(default_factory=dict)
     array_kind: str = ""
     applied_part: str = ""
-    baselines: dict[SeriesKey, Baseline] = field(default_factory=dict)
+    baselines: dict[SeriesKey, list[Baseline]] = field(default_factory=dict)
+    setups: dict[int, tuple[SetUp, ...]] = field(default_factory=dict)
     attempts: int = 0
     items: dict[tuple[int, int], tuple[Item, ...]] = field(default_factory=dict)
 
     @property
-    def protection_class(self) -> str:
-        """Of a scanner; empty for a probe."""
-        return self.scanner_facts.protection_class if self.scanner_facts else ""
+    def measured(self) -> Measured:
+        """What judging needs to know of it."""
+        protection = self.scanner_facts.protection_class if self.scanner_facts else ""
+        return Measured(self.device.pk, self.device.kind, self.array_kind, self.applied_part, protection)
 
 
 @dataclass(frozen=True)
@@ -180,9 +183,10 @@ def _without_collecting() -> Iterator[None]:
 
 def keep(device: Device) -> Kept:
     """What is known of a device that is there already."""
-    in_force = Baseline.objects.filter(device=device, ended_at=None).select_related(
-        "measurand", "test_object"
-    )
+    epochs: dict[SeriesKey, list[Baseline]] = {}
+    known = Baseline.objects.filter(device=device).select_related("measurand", "test_object")
+    for row in known.order_by("epoch"):
+        epochs.setdefault((row.measurand.code, row.aperture_id, row.condition_id), []).append(row)
     probe = ProbeFacts.objects.filter(device=device).first()
     attempts = NotTested.objects.filter(check_of__device=device, submission=None, reason="not_found")
     return Kept(
@@ -193,7 +197,8 @@ def keep(device: Device) -> Kept:
         {row.pk: row for row in Condition.objects.filter(device=device).order_by("id")},
         probe.array_kind if probe else "",
         probe.applied_part if probe else "",
-        {(row.measurand.code, row.aperture_id, row.condition_id): row for row in in_force},
+        epochs,
+        setups_of([row.pk for row in known]),
         attempts.count(),
     )
 
@@ -274,7 +279,7 @@ def items_for(
     key = (edition.id, test_object.id if test_object else 0)
     if key not in kept.items:
         around = Surroundings(
-            device_row(kept.device, kept.array_kind, kept.applied_part, kept.protection_class),
+            kept.measured,
             edition,
             [ApertureRow(a.id, a.uid, a.name, a.elements, a.pitch_um) for a in kept.apertures.values()],
             [
@@ -282,7 +287,7 @@ def items_for(
                 for c in kept.conditions.values()
             ],
             past.criteria,
-            {key: (baseline_row(key, baseline),) for key, baseline in kept.baselines.items()},
+            {key: in_force_rows(key, rows, kept.setups) for key, rows in kept.baselines.items()},
             {},
             nominals_of(test_object),
             past.uncertainties,
@@ -328,56 +333,6 @@ def not_tested(past: Past, kept: Kept, check: Check, reason: str, *, by: Person,
     act = past.act("check.not_tested", by, at, reason)
     recording.not_tested(act, check, reason, "", by, kept.attempts)
     kept.attempts += reason == "not_found"
-
-
-def set_baselines(
-    past: Past,
-    kept: Kept,
-    done: Done,
-    codes: Sequence[str],
-    *,
-    by: Person,
-    reason: str,
-    at: dt.datetime,
-    texts: dict[str, str] | None = None,
-) -> list[Baseline]:
-    """Make readings of a submission the baselines of their series, signed; ``texts`` puts a mean in their place."""
-    act = past.act("baseline.set", by, at, reason)
-    facts = done.submission
-    source = baselines.Source(
-        facts.console.model if facts.console else "",
-        facts.console_software,
-        facts.test_object,
-        "eye",
-        str(facts.uid),
-    )
-    found = []
-    for one in done.judged.items:
-        if one.item.spec.code not in codes or one.exact is None:
-            continue
-        text = (texts or {}).get(one.item.spec.code)
-        exact = read_entry(one.item, Entry(text)) if text else one.exact
-        part = (
-            kept.apertures.get(one.item.aperture.id) if one.item.aperture else None,
-            kept.conditions.get(one.item.condition.id) if one.item.condition else None,
-        )
-        baseline = baselines.put_epoch(
-            act,
-            kept.device,
-            past.measurands[one.item.spec.code],
-            part,
-            exact or one.exact,
-            one.entry.qualifier,
-            source,
-            reason,
-            by,
-            kept.baselines.get(one.item.series),
-        )
-        kept.baselines[one.item.series] = baseline
-        found.append(baseline)
-    kept.items.clear()
-    baselines.sign(act, kept.device, found, by, "physicist", reason)
-    return found
 
 
 def _instructions(site: Site | None) -> Instructions:

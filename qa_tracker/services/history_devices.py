@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Sequence
 
 from qa_tracker.core.workflow import CHECK_AWAITED
-from qa_tracker.records.models import Check, CheckPlan, Fault, Person, Placement
-from qa_tracker.services import devices, faults, states
+from qa_tracker.records.models import Baseline, Check, CheckPlan, Fault, Person, Placement
+from qa_tracker.services import devices, faults, software, states
 from qa_tracker.services.devices import Place
 from qa_tracker.services.history import Kept, Past
 
@@ -81,8 +82,22 @@ def end_plan(
     act.tell({"ended": True})
 
 
-def record_software(past: Past, kept: Kept, version: str, *, by: Person, at: dt.datetime) -> None:
-    """Record a software version of a scanner."""
-    if kept.scanner_facts is not None:
-        act = past.act("device.software_recorded", by, at)
-        devices.change_software(act, kept.scanner_facts, version, "", at.date())
+def record_software(
+    past: Past, kept: Kept, version: str, *, by: Person, at: dt.datetime, fleet: Sequence[Kept] = ()
+) -> list[Baseline]:
+    """Record a software version of a scanner; the baselines of the fleet that were measured on it are under review."""
+    if kept.scanner_facts is None:
+        return []
+    concerned = [each for each in (kept, *fleet) if kept.device in (each.device, each.device.scanner)]
+    standing = [
+        row
+        for each in concerned
+        for epochs in each.baselines.values()
+        for row in epochs
+        if row.ended_at is None
+    ]
+    act = past.act("device.software_recorded", by, at)
+    marked = software.record(act, kept.scanner_facts, version, "", at.date(), standing)
+    for each in concerned:
+        each.items.clear()
+    return marked

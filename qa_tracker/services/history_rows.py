@@ -2,25 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from decimal import Decimal
 
 from qa_tracker.core.decimals import from_scaled
-from qa_tracker.records.models import Baseline, Device
+from qa_tracker.records.models import Baseline
 from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey, spread_of
-from qa_tracker.records.queries.devices import DeviceRow
-
-
-def device_row(d: Device, array_kind: str, applied_part: str, protection_class: str) -> DeviceRow:
-    """What the items of a check need to know of a device."""
-    return DeviceRow(
-        id=d.id, uid=d.uid, version=d.version, kind=d.kind, maker=d.maker, model=d.model, serial=d.serial,
-        inventory_number=d.inventory_number, handheld=d.handheld, state=d.state, state_note=d.state_note,
-        state_since=d.state_since, site_id=d.site_id, site_code="", site_name="", pool_id=d.pool_id,
-        pool_name="", scanner_id=d.scanner_id, scanner_uid=None, scanner_label="", location_id=d.location_id,
-        location="", location_position=0, array_kind=array_kind, contact_class="", applied_part=applied_part,
-        protection_class=protection_class, software_version="", register={},
-    )  # fmt: skip
+from qa_tracker.services.baseline_rows import SetUp
 
 
 def baseline_row(key: SeriesKey, row: Baseline, setups: Sequence[Decimal] = ()) -> BaselineRow:
@@ -38,3 +26,13 @@ def baseline_row(key: SeriesKey, row: Baseline, setups: Sequence[Decimal] = ()) 
         overlap_entered=row.overlap_entered, count=spread.count,
         standard_deviation=spread.standard_deviation,
     )  # fmt: skip
+
+
+def in_force_rows(
+    key: SeriesKey, epochs: Sequence[Baseline], setups: Mapping[int, Sequence[SetUp]]
+) -> tuple[BaselineRow, ...]:
+    """The baselines in force of one series, newest first."""
+    standing = [row for row in reversed(epochs) if row.ended_at is None]
+    return tuple(
+        baseline_row(key, row, [one.exact.decimal for one in setups.get(row.pk, ())]) for row in standing
+    )

@@ -36,13 +36,16 @@ SENTENCES: Final = {
     "device.registered": N_("%(actor)s registered the %(kind)s %(maker)s %(model)s %(serial)s"),
     "device.placed": N_("%(actor)s moved %(device)s: %(reason)s"),
     "device.edited": N_("%(actor)s changed the register fields of %(device)s: %(fields)s"),
-    "device.software_recorded": N_("%(actor)s recorded software %(version)s of %(device)s, since %(since)s"),
+    "device.software_recorded": N_(
+        "%(actor)s recorded software %(version)s of %(device)s, since %(since)s%(review)s"
+    ),
     "device.quarantined": N_("%(actor)s quarantined %(device)s: %(reason)s"),
     "device.restored": N_("%(actor)s restored %(device)s to use: %(reason)s"),
     "device.accepted": N_("%(actor)s accepted %(device)s into use"),
     "device.moved_on": N_("%(actor)s changed the state of %(device)s to %(state)s: %(note)s"),
     "condition.set": N_("%(actor)s set the condition “%(name)s” of %(device)s"),
     "baseline.set": N_("%(actor)s set %(baselines)s of %(device)s: %(reason)s"),
+    "baseline.kept": N_("%(actor)s kept %(baselines)s of %(device)s, which stood under review: %(reason)s"),
     "plan.made": N_("%(actor)s planned “%(procedure)s” for %(device)s, first due on %(first_due)s"),
     "plan.ended": N_("%(actor)s ended a plan of %(device)s: %(reason)s"),
     "fault.opened": N_("%(actor)s opened a fault of the %(grade)s on %(device)s: %(seen)s"),
@@ -133,6 +136,7 @@ def _from_content(new: Mapping[str, Any]) -> dict[str, str]:
     told.setdefault("site", _("the whole group"))
     told["fields"] = listed_all(name.replace("_", " ") for name in sorted(new))
     told["moved"] = _moved(new)
+    told["review"] = _review(len(new.get("under_review") or ()))
     if isinstance(new.get("edition"), dict):
         told |= {"procedure": new["edition"]["procedure"], "edition": str(new["edition"]["number"])}
     if "readings" in new:
@@ -154,6 +158,15 @@ def _readings(readings: list[Mapping[str, Any]]) -> str:
 def _baselines(baselines: list[Mapping[str, Any]]) -> str:
     count = len(baselines)
     return ngettext("%(count)d baseline", "%(count)d baselines", count) % {"count": count}
+
+
+def _review(count: int) -> str:
+    """What a software event put under review; nothing where it put none."""
+    if not count:
+        return ""
+    return ngettext(
+        "; %(count)d baseline is under review", "; %(count)d baselines are under review", count
+    ) % {"count": count}
 
 
 def _moved(new: Mapping[str, Any]) -> str:

@@ -11,7 +11,7 @@ from qa_tracker.core.errors import SeveralInvalid
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Baseline, Check, Device, Fault, Submission, Verdict
 from qa_tracker.records.queries.ledger import every_leaf
-from qa_tracker.services import history, history_devices, upkeep
+from qa_tracker.services import history, history_baselines, history_devices, upkeep
 from qa_tracker.services.entries import Entry
 from qa_tracker.services.recording import Facts
 from tests import builders
@@ -131,7 +131,7 @@ def test_history_when_baselines_are_set_ends_the_epoch_before(ward):
         kept = history.keep(ward.probe)
         for day in range(2):
             done = _perform(past, ward, kept, at + day * DAY)
-            history.set_baselines(
+            history_baselines.set_from_check(
                 past,
                 kept,
                 done,

@@ -14,6 +14,7 @@ from collections.abc import Callable
 from typing import Any
 
 import pytest
+from baseline_leaves import BASELINES, PROPOSALS
 from criteria_leaves import CRITERIA
 from django.apps import apps
 from django.db import connection
@@ -38,7 +39,6 @@ from qa_tracker.services import (
     uncertainties,
     upkeep,
 )
-from qa_tracker.services.baselines import Value
 from qa_tracker.services.checks import Typed
 from qa_tracker.services.devices import Identity, Place
 from qa_tracker.services.plans import Recurrence
@@ -241,13 +241,7 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
         "actor": w.physicist,
     },
     "plans.end": lambda w: {"plan": check(w).plan.uid, "reason": "sold", "actor": w.physicist},
-    "baselines.set_values": lambda w: {
-        **measured(w), "test_object": None, "reason": "acceptance", "password": PASSWORD,
-        "actor": w.physicist,
-    },
-    "baselines.adopt_submission": lambda w: {
-        "submission": with_numbers(w), "reason": "acceptance", "password": PASSWORD, "actor": w.physicist,
-    },
+    **BASELINES,
     "checks.submit": signing,
     "checks.countersign": countersigning,
     "checks.send_back": countersigning,
@@ -281,6 +275,7 @@ WITHOUT_A_WARD = {
     "shipped.publish_shipped": "many commands, each of them in the table",
 }
 WITHOUT_A_LEAF = {
+    **PROPOSALS,
     "checks.sheet": "reads",
     "checks.preview": "reads",
     "checks.check_may_enter": "asks",
@@ -305,27 +300,10 @@ WITHOUT_A_LEAF = {
 BULK_DOORS = ("history", "demo_")  # their leaves are appended together, by the door they come through
 
 
-def measured(ward: Ward) -> Given:
-    device = builders.probe(ward.physicist, place(ward), serial=f"C5-{next(numbers)}")
-    return {"device": device.uid, "values": [Value("reverberation_depth", "8.5", device.apertures.get().uid)]}
-
-
 def restorable(ward: Ward) -> uuid.UUID:
     device = probe(ward)
     states.move_on(device=device, verb="restrict", note="left half only", actor=ward.physicist, at=now())
     return device
-
-
-def with_numbers(ward: Ward) -> uuid.UUID:
-    """A submission of a procedure some of whose numbers are compared with a baseline."""
-    document = json.loads((builders.FIXTURES / "procedures" / "monthly-in-air.json").read_text("utf-8"))
-    for measurand in document["measurands"]:
-        measurand["own_baseline"] = measurand["code"] == "reverberation_depth"
-    edition = library.publish_procedure(
-        document=document | {"edition": 50 + next(numbers)}, actor=None, at=now()
-    )
-    library.adopt_edition(edition=edition, site=ward.site, remark="", actor=ward.physicist, at=now())
-    return done(ward)[1].uid
 
 
 def command(name: str) -> Callable[..., Any]:

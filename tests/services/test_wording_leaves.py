@@ -98,6 +98,10 @@ TABLE = [
         "device.software_recorded", {"version": "4.3", "options": "", "since": "2025-03-01"}, "",
         f"{HD} recorded software 4.3 of {TERN}, since 1 March 2025.",
     ),
+    (
+        "device.software_recorded", {"version": "4.3", "since": "2025-03-01", "under_review": [{}, {}]}, "",
+        f"{HD} recorded software 4.3 of {TERN}, since 1 March 2025; 2 baselines are under review.",
+    ),
     ("device.quarantined", {"state": "quarantined"}, "Lens cut", f"{HD} quarantined {TERN}: Lens cut."),
     ("device.restored", {"state": "in_use"}, "Cable new", f"{HD} restored {TERN} to use: Cable new."),
     ("device.accepted", {"state": "in_use"}, "", f"{HD} accepted {TERN} into use."),
@@ -109,6 +113,10 @@ TABLE = [
     (
         "baseline.set", {"baselines": [{"measurand": "a"}], "reason": "Accepted"}, "Accepted",
         f"{HD} set 1 baseline of {TERN}: Accepted.",
+    ),
+    (
+        "baseline.kept", {"baselines": [{"measurand": "a"}, {"measurand": "b"}], "reason": "Same"}, "Same",
+        f"{HD} kept 2 baselines of {TERN}, which stood under review: Same.",
     ),
     (
         "plan.made", {"procedure": "user-check", "first_due": "2025-03-05"}, "",

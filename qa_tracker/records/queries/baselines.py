@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import datetime as dt
-import statistics
 import uuid
 from collections.abc import Collection, Sequence
 from dataclasses import dataclass
@@ -12,6 +11,7 @@ from typing import NamedTuple, TypeAlias
 
 from django.db.models import QuerySet
 
+from qa_tracker.core.baselines import summary
 from qa_tracker.core.decimals import from_scaled, plain
 from qa_tracker.records.models import (
     Aperture,
@@ -91,7 +91,11 @@ class Spread(NamedTuple):
 
 def spread_of(values: Sequence[Decimal]) -> Spread:
     """Number and standard deviation (divisor n - 1) of set-ups; no deviation below two."""
-    return Spread(len(values), plain(statistics.stdev(values)) if len(values) > 1 else "")
+    if not values:
+        return Spread()
+    found = summary(values)
+    deviation = found.standard_deviation
+    return Spread(found.count, "" if deviation is None else plain(deviation))
 
 
 def baselines_of(device_id: int, as_of: dt.datetime | None = None) -> list[BaselineRow]:
