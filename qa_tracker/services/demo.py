@@ -12,6 +12,7 @@ from qa_tracker.core.schedule import add_months
 from qa_tracker.records.models import Check, Device, Person, Reading
 from qa_tracker.services import history, library
 from qa_tracker.services.demo_background import Background
+from qa_tracker.services.demo_baselines import OwnSpread, Update
 from qa_tracker.services.demo_devices import accept, enter_probe, enter_scanner
 from qa_tracker.services.demo_fleet import PROBES, SCANNERS, WIRELESS_SITE, Transducer
 from qa_tracker.services.demo_follow_up import follow_up_document
@@ -101,7 +102,7 @@ def live_through(world: World) -> None:
         day = days.get(each.scanner, -12)
         for rhythm in PROBE_RHYTHMS + ((FOLLOW_UP_RHYTHM,) if each.follow_up else ()):
             routine.plan(kept, rhythm, day, world.begun_at + dt.timedelta(hours=7))
-    for story in (SlowLoss, Cable, DryingObject, Software, Bite, Background):
+    for story in (SlowLoss, Cable, DryingObject, Software, Bite, Background, OwnSpread, Update):
         story(routine).tell()
     world.timeline.play()
 

@@ -15,6 +15,8 @@ from qa_tracker.services.demo_timeline import Event
 from qa_tracker.services.entries import Entry
 from qa_tracker.services.history import Done, Kept
 
+MINUTE = dt.timedelta(minutes=1)
+
 LOSSES_MM = {
     "C-4105": 5.1, "C-4106": 6.0, "L-5205": 4.4, "L-5206": 4.0, "P-2505": 5.8, "V-6502": 4.7, "M-6002": 5.5,
 }  # fmt: skip
@@ -80,12 +82,17 @@ class DryingObject:
 
 
 NEW_SOFTWARE, CHANGED_MONTH, WRONG_SPEED = "4.3", 9.4, "1566"
+KEPT_REASON = "The update left it alone: read before and after on one day, the same"
+LATER_REASON = "Within its scatter at the checks since the update"
 SOFTWARE_REASON = "Software 4.3 reads 2 mm deeper at the same preset; before and after on one day and object"
 
 
 @dataclass
 class Software:
-    """D: three OG-70 go from 4.2 to 4.3; depth gains 7 mm, one preset's sound speed is wrong; 2 mm remain."""
+    """D: three OG-70 go from 4.2 to 4.3; depth gains 7 mm, one preset's sound speed is wrong; 2 mm remain.
+
+    Every baseline measured on them is under review until it is replaced with its step, or kept.
+    """
 
     routine: Routine
     gain_mm: dict[int, int] = field(default_factory=dict)
@@ -100,6 +107,7 @@ class Software:
         world.timeline.put(world.month(CHANGED_MONTH, 7), self.update)
         world.timeline.put(world.month(CHANGED_MONTH, 9), self.first_look)
         world.timeline.put(world.month(CHANGED_MONTH, 9) + 3 * DAY, self.restored)
+        world.timeline.put(world.month(CHANGED_MONTH, 15) + 40 * DAY, self.kept_later)
 
     def reads(self, kept: Kept) -> Before:
         """Depth at a planned check: what was accepted and the software's share."""
@@ -120,8 +128,9 @@ class Software:
         engineer, _ = world.person("okonjo")
         for name in ("AG US1", "AG US4", "SO US1"):
             history_devices.record_software(
-                world.past, world.scanners[name], NEW_SOFTWARE, by=engineer, at=at
-            )
+                world.past, world.scanners[name], NEW_SOFTWARE, by=engineer, at=at,
+                fleet=list(world.probes.values()),
+            )  # fmt: skip
         set_preset(world, world.probes["C-4101"], "Abdomen", "3.5", WRONG_SPEED, at + HOUR)
 
     def first_look(self, at: dt.datetime) -> None:
@@ -143,6 +152,19 @@ class Software:
                 world.past, kept, done, BASELINE_CODES, by=oduya, reason=SOFTWARE_REASON,
                 at=at + number * HOUR + 2 * HOUR,
             )  # fmt: skip
+            history_baselines.keep_under_review(
+                world.past, kept, NEW_SOFTWARE, by=oduya, reason=KEPT_REASON, at=at + number * HOUR + 3 * HOUR
+            )
+
+    def kept_later(self, at: dt.datetime) -> None:
+        """The other probes of the three scanners: their baselines are kept after the next monthly checks."""
+        world = self.routine.world
+        oduya, _ = world.person("oduya")
+        for number, kept in enumerate(world.probes.values()):
+            moment = at + number * MINUTE
+            history_baselines.keep_under_review(
+                world.past, kept, NEW_SOFTWARE, by=oduya, reason=LATER_REASON, at=moment
+            )
 
     def look(self, serial: str, gain_mm: int, decision: str, at: dt.datetime, told: dict[str, str]) -> Done:
         """One check after the change."""

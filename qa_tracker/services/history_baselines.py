@@ -136,6 +136,8 @@ def keep_under_review(
         for row in epochs
         if row.under_review
     ]
+    if not settings:
+        return []
     told = [_told_kept(setting, kept.baselines[setting.series]) for setting in settings]
     return _put(kept, past.act("baseline.kept", by, at, reason), settings, told, by, reason)
 

@@ -196,6 +196,31 @@ def test_software_when_changed_gains_7_then_2_mm_and_new_baselines(loaded, seria
     assert "2 mm" in second.reason
 
 
+@pytest.mark.parametrize("serial", ["C-4101", "V-6503"], ids=["replaced", "kept"])
+def test_software_when_changed_puts_baselines_under_review_until_they_are_decided(loaded, serial):
+    rows = Baseline.objects.filter(device__serial=serial)
+    assert {row.console_software for row in rows.filter(epoch=1)} == {"4.2"}
+    assert {row.console_software for row in rows.filter(ended_at=None)} == {"4.3"}
+    said = [leaf.said for leaf in every_leaf() if leaf.kind == "device.software_recorded"]
+    told = [each for one in said for each in one["new"].get("under_review", ()) if each["device"] == serial]
+    assert len(told) == rows.filter(epoch=1).count()
+    assert not rows.filter(under_review=True).exists()
+
+
+def test_software_of_this_week_leaves_baselines_under_review(loaded):
+    waiting = Baseline.objects.filter(under_review=True)
+    assert {row.device.serial for row in waiting} == {"H-1803", "M-6001"}
+    assert not waiting.exclude(ended_at=None).exists()
+
+
+def test_reverberation_of_one_probe_has_a_baseline_of_twelve_set_ups(loaded):
+    row = Baseline.objects.get(device__serial="L-5207", measurand__code="reverberation_depth", ended_at=None)
+    assert (row.setups.count(), row.epoch, row.places) == (12, 2, 2)
+    assert len({each.measured_on for each in row.setups.all()}) == 12
+    mean = sum(Decimal(each.entered) for each in row.setups.all()) / 12
+    assert abs(Decimal(row.entered) - mean) <= Decimal("0.005")
+
+
 def test_software_when_a_preset_has_the_wrong_speed_reads_101_7(loaded):
     assert ("101.7", "remedial") in _points("C-4101", "vertical_distance")
     speeds = Version.objects.filter(noun="condition", columns__contains='"sound_speed_m_s":"1566"')
