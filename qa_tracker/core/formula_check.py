@@ -26,7 +26,8 @@ from qa_tracker.core.formula_tree import Name, excerpt, names_in
 from qa_tracker.core.formula_units import code_of, over, powers_of
 from qa_tracker.core.library_specs import MeasurandSpec, ProcedureSpec
 
-# Words of a measurand's code that tell why the speed of sound doesn't scale it.
+_NO_WORD: Final = re.compile(r"\W+")
+# Words of a measurand's code or name that tell why the speed of sound doesn't scale it.
 _ACROSS: Final = re.compile(r"(?:.*_)?(?:horizontal|lateral|width|elevational)(?:_.*)?")
 _NO_DISTANCE: Final = re.compile(r"(?:.*_)?(?:penetration|resolution|fwhm)(?:_.*)?")
 _NUMBERS: Final = ("number", "count", "image", "derived")
@@ -250,7 +251,12 @@ class _Around:
                 self._check_corrected(reading, name)
 
     def _check_corrected(self, reading: MeasurandSpec, name: Name) -> None:
-        problem = correction_problem((reading.code, self.measurand.code, OBJECT_SPEED))
+        words = [
+            _NO_WORD.sub("_", text.lower())
+            for one in (reading, self.measurand)
+            for text in (one.code, one.name)
+        ]
+        problem = correction_problem([*words, OBJECT_SPEED])
         column, at = name.start + 1, name.dotted
         if problem == "lateral_correction":
             raise Invalid("formula.lateral_correction", field=self.field, column=column, at=at)

@@ -25,6 +25,7 @@ from qa_tracker.core.decimals import MAX_SCALED, from_scaled, places_of, round_h
 from qa_tracker.core.errors import Invalid
 from qa_tracker.core.formula_arithmetic import (
     DOUBLES,
+    Bounded,
     Exactly,
     Nearly,
     bounded,
@@ -194,7 +195,12 @@ def _problem(
 
 
 def _in_cel(ready: _Ready, inputs: Inputs) -> float:
-    return float(ready.program.execute({**ready.context, **_nested(inputs.doubles)}))
+    try:
+        return float(ready.program.execute({**ready.context, **_nested(inputs.doubles)}))
+    except TypeError:
+        # The library has no order for NaN. What is wrong in another way is wrong on the tree as well.
+        _near(ready, inputs)
+        return math.nan
 
 
 def _nested(values: Mapping[str, Any]) -> dict[str, Any]:
@@ -211,24 +217,20 @@ def _nested(values: Mapping[str, Any]) -> dict[str, Any]:
 
 def _outcome(ready: _Ready, inputs: Inputs, step: Decimal) -> tuple[Decimal | None, str]:
     """The rounded value, or the problem there is with it."""
-    found, most = _in_cel(ready, inputs), from_scaled(MAX_SCALED, places_of(step))
-    if not math.isfinite(found):
-        return None, "not_finite"
-    if abs(found) > most:
-        return None, "out_of_range"
-    rounded = _rounded(ready, inputs, found, step)
+    found = _in_cel(ready, inputs)
+    rounded = _rounded(ready, inputs, found, step) if math.isfinite(found) else None
     if rounded is None:
         return None, "not_finite"
-    return (rounded, "") if abs(rounded) <= most else (None, "out_of_range")
+    return (
+        (rounded, "") if abs(rounded) <= from_scaled(MAX_SCALED, places_of(step)) else (None, "out_of_range")
+    )
 
 
 def _rounded(ready: _Ready, inputs: Inputs, found: float, step: Decimal) -> Decimal | None:
     """Round what CEL gave; in fractions where the double can't tell to which side. None where nothing can."""
-    nearly = Nearly()
-    entered = {name: _converted(value, bounded) for name, value in inputs.doubles.items()}
-    near = compute(ready.root, _FIXED_BOUNDED | entered, nearly)
-    middle = near.value if nearly.doubtful else found
-    if (nearly.doubtful and ready.exact) or not near.bound < math.inf:
+    near, doubtful = _near(ready, inputs)
+    middle = near.value if doubtful else found
+    if not abs(middle) + near.bound < math.inf or (doubtful and ready.exact):
         return _in_fractions(ready, inputs, step) if ready.exact else None
     low, high = (round_half_even(Fraction(end), step) for end in (middle - near.bound, middle + near.bound))
     if low == high:
@@ -236,6 +238,13 @@ def _rounded(ready: _Ready, inputs: Inputs, found: float, step: Decimal) -> Deci
     if ready.exact:
         return _in_fractions(ready, inputs, step)
     return round_half_even((Fraction(low) + Fraction(high)) / 2, step) if high - low == step else None
+
+
+def _near(ready: _Ready, inputs: Inputs) -> tuple[Bounded, bool]:
+    """The double with its error bound, and whether a comparison on the way to it was in doubt."""
+    nearly = Nearly()
+    entered = {name: _converted(value, bounded) for name, value in inputs.doubles.items()}
+    return compute(ready.root, _FIXED_BOUNDED | entered, nearly), nearly.doubtful
 
 
 def _in_fractions(ready: _Ready, inputs: Inputs, step: Decimal) -> Decimal | None:

@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import pytest
-from formula_documents import document, read, without, worked_out
 
 from qa_tracker.core.errors import Invalid
 from qa_tracker.core.library import procedure
+from tests.core.formula_documents import document, read, without, worked_out
 
 READINGS = (
     read("depth", sound_speed_correction=True),

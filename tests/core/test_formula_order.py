@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 import pytest
-from formula_documents import document, read, worked_out
 
 from qa_tracker.core.errors import Invalid
 from qa_tracker.core.formula_check import is_listed, order
 from qa_tracker.core.library import procedure
+from tests.core.formula_documents import document, read, worked_out
 
 
 def _spec(*derived):
