@@ -12,6 +12,7 @@ from django.utils.translation import gettext_noop as N_
 from qa_tracker.core.errors import DomainError, SeveralInvalid
 from qa_tracker.core.roles import PERMISSIONS
 from qa_tracker.services.wording_findings import REFUSED
+from qa_tracker.services.wording_refused_acoustics import ACOUSTICS
 from qa_tracker.services.wording_refused_baselines import BASELINES
 from qa_tracker.services.wording_refused_entry import ENTRY
 from qa_tracker.services.wording_refused_formulas import FORMULAS
@@ -38,7 +39,7 @@ from qa_tracker.services.wording_words import (
 )
 
 SENTENCES: Final[Mapping[str, str]] = (
-    VALUES | RECORDS | REQUESTS | ENTRY | REFUSED | FORMULAS | LINES | UNCERTAINTY | BASELINES
+    VALUES | RECORDS | REQUESTS | ENTRY | REFUSED | ACOUSTICS | FORMULAS | LINES | UNCERTAINTY | BASELINES
 )
 STATES: Final = {
     "check": CHECK_STATES,
