@@ -37,7 +37,7 @@ REFUSED = {
     "no number": ("wavelength-frequency", "fast", "is not a number"),
     "outside its range": ("water-temperature", "96", "Nothing is extrapolated"),
     "zero": ("echo-speed", "0", "not above zero"),
-    "hostile": ("echo-speed", "<img src=x>", "is not a number"),
+    "hostile": ("echo-speed", "<img src=x>", "sign of comparison"),
 }
 
 
