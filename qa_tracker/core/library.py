@@ -120,7 +120,7 @@ def check_references(
     for one in procedures:
         for measurand in one.measurands:
             place = f"{one.procedure}.{measurand.code}"
-            _check_criteria(measurand, criteria, place)
+            check_criteria(measurand, criteria, place)
             _check_same(measurand, seen.setdefault(measurand.code, measurand), place)
 
 
@@ -226,8 +226,14 @@ def _check_measurand(measurand: MeasurandSpec, codes: Collection[str], place: st
         )
 
 
-def _check_criteria(measurand: MeasurandSpec, criteria: Sequence[CriterionSpec], place: str) -> None:
-    """Check every edition of each criterion a measurand names."""
+def check_criteria(measurand: MeasurandSpec, criteria: Sequence[CriterionSpec], place: str) -> None:
+    """Refuse a measurand that names a criterion which is not there, or doesn't fit it in one of its editions.
+
+    Raises
+    ------
+    Invalid
+        ``library.unknown_criterion``, ``library.unit_differs`` or ``library.medium_differs``, with the place given.
+    """
     for name in measurand.criteria:
         editions = [criterion for criterion in criteria if criterion.id == name]
         if not editions:

@@ -14,6 +14,7 @@ from qa_tracker.core.roles import PERMISSIONS
 from qa_tracker.services.wording_findings import REFUSED
 from qa_tracker.services.wording_refused_acoustics import ACOUSTICS
 from qa_tracker.services.wording_refused_baselines import BASELINES
+from qa_tracker.services.wording_refused_editor import EDITOR
 from qa_tracker.services.wording_refused_entry import ENTRY
 from qa_tracker.services.wording_refused_formulas import FORMULAS
 from qa_tracker.services.wording_refused_lines import LINES
@@ -39,7 +40,17 @@ from qa_tracker.services.wording_words import (
 )
 
 SENTENCES: Final[Mapping[str, str]] = (
-    VALUES | RECORDS | REQUESTS | ENTRY | REFUSED | ACOUSTICS | FORMULAS | LINES | UNCERTAINTY | BASELINES
+    VALUES
+    | RECORDS
+    | REQUESTS
+    | ENTRY
+    | REFUSED
+    | ACOUSTICS
+    | FORMULAS
+    | LINES
+    | UNCERTAINTY
+    | BASELINES
+    | EDITOR
 )
 STATES: Final = {
     "check": CHECK_STATES,

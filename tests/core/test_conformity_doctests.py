@@ -1,4 +1,4 @@
-"""The worked examples in the docstrings of the judging modules."""
+"""The worked examples in the docstrings of the judging modules, and of those that write editions."""
 
 from __future__ import annotations
 
@@ -14,9 +14,15 @@ from qa_tracker.core import (
     criteria,
     decimals,
     edition_differences,
+    edition_draft,
+    edition_places,
+    edition_refusals,
     judged_again,
+    measurand_draft,
     own_spread,
+    procedure_differences,
     stated_uncertainty,
+    typed_text,
     uncertainty,
     units,
     verdict_kernel,
@@ -30,9 +36,15 @@ MODULES = (
     criteria,
     decimals,
     edition_differences,
+    edition_draft,
+    edition_places,
+    edition_refusals,
     judged_again,
+    measurand_draft,
     own_spread,
+    procedure_differences,
     stated_uncertainty,
+    typed_text,
     uncertainty,
     units,
     verdict_kernel,

@@ -19,6 +19,7 @@ from criteria_leaves import CRITERIA
 from django.apps import apps
 from django.db import connection
 from django.utils.timezone import now
+from editor_leaves import DRAFTS, EDITOR
 
 import qa_tracker.services
 from qa_tracker.core.canonical import canonical
@@ -194,6 +195,7 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
         "criteria_set": CriteriaSet.objects.first(), "site": w.site, "remark": "ours", "actor": w.physicist,
     },
     **CRITERIA,
+    **EDITOR,
     "uncertainties.state": lambda w: {
         "statement": Statement("reverberation_depth", "standard", "0.3", source="Repeats of March"),
         "site": w.site, "actor": w.physicist,
@@ -276,6 +278,7 @@ WITHOUT_A_WARD = {
 }
 WITHOUT_A_LEAF = {
     **PROPOSALS,
+    **DRAFTS,
     "checks.sheet": "reads",
     "checks.preview": "reads",
     "checks.check_may_enter": "asks",

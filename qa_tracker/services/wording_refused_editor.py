@@ -1,0 +1,43 @@
+"""Sentences of what is refused while an edition of a procedure is written and published."""
+
+from __future__ import annotations
+
+from typing import Final
+
+from django.utils.translation import gettext_noop as N_
+
+EDITOR: Final = {
+    "edition_draft.unknown": N_(
+        "You are not writing an edition of this procedure: it was published or discarded meanwhile. Begin the next "
+        "one on the procedure's page."
+    ),
+    "edition_draft.no_such_part": N_(
+        "That part of the edition is not there: it was removed meanwhile. Go back to the edition you are writing."
+    ),
+    "edition_draft.kept_meanwhile": N_(
+        "Another window of yours kept something else here since this page was opened, so nothing was written over. "
+        "Compare the two below; saving now keeps what stands in the fields."
+    ),
+    "edition_draft.looked_at_another": N_(
+        "The edition was changed in another window since you looked it over, so it was not published. "
+        "Look it over again."
+    ),
+    "edition_draft.overtaken": N_(
+        "Edition %(number)s was published by someone else meanwhile. Compare yours with it, then go on as the "
+        "edition after it."
+    ),
+    "edition_draft.nothing_changed": N_(
+        "Nothing differs from edition %(number)s, so there is nothing to publish. Change what is to be different."
+    ),
+    "edition_draft.band_reversed": N_(
+        "%(field)s: %(low)s to %(high)s holds nothing. Give the plausible band a low end below its high end."
+    ),
+    "edition_draft.measurand_known": N_(
+        "%(field)s: “%(measurand)s” already stands for a measurand of the kind %(kind)s, in %(unit)s, and one code "
+        "means one quantity everywhere. Keep its kind and unit, or use another code."
+    ),
+    "edition_draft.no_document": N_("There is no document. Paste the whole edition as JSON."),
+    "edition_draft.not_json": N_(
+        "The document can't be read: line %(line)s, column %(column)s. Correct the JSON there."
+    ),
+}
