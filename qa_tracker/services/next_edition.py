@@ -4,9 +4,12 @@ from __future__ import annotations
 
 import datetime as dt
 from collections.abc import Mapping
+from typing import Any
 
 from qa_tracker.core import next_edition
 from qa_tracker.core.errors import Conflict, DomainError, Invalid, SeveralInvalid
+from qa_tracker.core.library import criteria_set
+from qa_tracker.core.library_specs import CriteriaSetSpec
 from qa_tracker.records.models import CriteriaSet, Person
 from qa_tracker.records.queries.library import set_document
 from qa_tracker.services import library
@@ -34,6 +37,16 @@ def publish_next(
         differs from the edition before.
     """
     check_may(actor, "criteria.adopt", None, at)
+    return library.publish_criteria(document=_checked(before, typed), actor=actor, at=at)
+
+
+def read_next(before: CriteriaSet, typed: Mapping[str, str]) -> CriteriaSetSpec:
+    """Read the next edition as it would be published, or refuse it as :func:`publish_next` does. Reads only."""
+    return criteria_set(_checked(before, typed))
+
+
+def _checked(before: CriteriaSet, typed: Mapping[str, str]) -> dict[str, Any]:
+    """The document of the next edition, whole."""
     known = set_document(before.pk)
     document = next_edition.next_document(known, typed)
     found: list[DomainError] = list(next_edition.refusals(document, known))
@@ -43,4 +56,4 @@ def publish_next(
         found.append(Invalid("criteria_set.nothing_changed"))
     if found:
         raise SeveralInvalid(tuple(found))
-    return library.publish_criteria(document=document, actor=actor, at=at)
+    return document

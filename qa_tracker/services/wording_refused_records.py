@@ -217,6 +217,9 @@ SETS: Final = {
     "what_if.too_many": N_(
         "More than %(most)s stored readings would have to be judged for this. Choose a shorter period, or one site."
     ),
+    "what_if.device_unknown": N_(
+        "No device in your sight has the serial number “%(serial)s”. Look it up in the register."
+    ),
 }
 DOSSIERS: Final = {
     "dossier.unknown": N_("There is no such dossier in your sight. Go back to Dossiers and choose it there."),

@@ -10,10 +10,12 @@ from qa_tracker.web.views import (
     device,
     device_actions,
     dossiers,
+    edition_differences,
     faults,
     figures,
     ledger,
     mailbox,
+    next_edition,
     objects,
     people,
     plans,
@@ -24,6 +26,7 @@ from qa_tracker.web.views import (
     tokens,
     uncertainties,
     welcome,
+    what_if,
 )
 
 urlpatterns = [
@@ -68,8 +71,12 @@ urlpatterns = [
     path("criteria/uncertainties/", uncertainties.index, name="uncertainties"),
     path("criteria/uncertainties/new/", uncertainties.state, name="uncertainty-new"),
     path("criteria/uncertainties/<uuid:uid>/end/", uncertainties.end, name="uncertainty-end"),
+    path("criteria/differences/", edition_differences.show, name="criteria-differences"),
+    path("criteria/adoptions/<uuid:uid>/end/", criteria.end, name="criteria-end"),
     path("criteria/<uuid:uid>/", criteria.show, name="criteria-set"),
     path("criteria/<uuid:uid>/adopt/", criteria.adopt, name="adopt-criteria"),
+    path("criteria/<uuid:uid>/next/", next_edition.write, name="criteria-next"),
+    path("criteria/<uuid:uid>/what-if/", what_if.show, name="criteria-what-if"),
     path("people/", people.index, name="people"),
     path("people/new/", people.new, name="person-new"),
     path("people/<uuid:uid>/", people.show, name="person"),

@@ -50,3 +50,21 @@ def adopting_site(request: HttpRequest, typed: Typed, at: dt.datetime) -> object
     """The site chosen; none for the whole group."""
     chosen: uuid.UUID | None = typed.choice_or_none("place")
     return finding.site(request.user, chosen, at) if chosen else None
+
+
+def ending(title: str, edition: str, place: str, back: str, of_site: bool) -> Asked:
+    """The form that ends the adoption of a set, saying what is in force then."""
+    told = {"edition": edition, "place": place}
+    if of_site:
+        lead = _("%(edition)s, at %(place)s. What the whole group has adopted is in force there again.")
+    else:
+        lead = _("%(edition)s, for %(place)s. Readings that only this set judges will have no verdict.")
+    return Asked(
+        _("End the adoption"),
+        _("End it under my name"),
+        back,
+        title,
+        (Field("reason", _("Reason"), "area"),),
+        lead=lead % told,
+        notes=(_("Verdicts that stand are not touched, and the set can be adopted again."),),
+    )

@@ -1,4 +1,4 @@
-"""Criteria and procedures in words, with where they come from and who adopted them."""
+"""Procedures in words, and who adopted what, where and when."""
 
 from __future__ import annotations
 
@@ -8,18 +8,12 @@ from dataclasses import dataclass
 from django.utils.translation import gettext as _
 from django.utils.translation import gettext_lazy, ngettext
 
-from qa_tracker.core.library_specs import CriterionSpec, MeasurandSpec, ProcedureSpec
-from qa_tracker.records.queries.library import AdoptionRow, CriteriaSetRow, CriterionRow, EditionRow
+from qa_tracker.core.library_specs import MeasurandSpec, ProcedureSpec
+from qa_tracker.records.queries.library import AdoptionRow, CriterionRow, EditionRow
 from qa_tracker.records.queries.sites import SiteRow
 from qa_tracker.services import wording
 from qa_tracker.web.presenters.charts import amount_words
 
-MEDIA = {
-    "phantom": gettext_lazy("on a phantom"),
-    "air": gettext_lazy("in air"),
-    "electrical": gettext_lazy("electrical"),
-    "any": "",
-}
 SIGNINGS = {
     "attestation": gettext_lazy("The person who does it attests to it; no countersignature."),
     "sampled": gettext_lazy("A sample is countersigned, and whatever does not conform."),
@@ -63,53 +57,6 @@ def adoptions_in_words(
 
 def _place(adoption: AdoptionRow, sites: Mapping[int, SiteRow]) -> str:
     return sites[adoption.site_id].name if adoption.site_id else _("the whole group")
-
-
-@dataclass(frozen=True)
-class ShownCriterion:
-    """A limit in words, with its source, which says how well each number is known."""
-
-    spec: CriterionSpec
-    words: str
-    source: str
-    where: str
-    from_memory: bool
-
-
-def criterion_in_words(row: CriterionRow) -> ShownCriterion:
-    """A criterion for reading before it is adopted."""
-    spec = row.spec
-    return ShownCriterion(
-        spec,
-        wording.criterion_words(spec),
-        wording.source_line(row, ""),
-        str(MEDIA.get(spec.medium, spec.medium)),
-        "memory" in (spec.standing.remedial, spec.standing.suspension),
-    )
-
-
-@dataclass(frozen=True)
-class SetLine:
-    """A set in the list: how it stands."""
-
-    row: CriteriaSetRow
-    adopted: tuple[ShownAdoption, ...]
-    from_memory: bool
-
-
-def set_lines(
-    sets: Sequence[CriteriaSetRow], adoptions: Sequence[AdoptionRow], sites: Mapping[int, SiteRow]
-) -> tuple[SetLine, ...]:
-    """Every set with its adoptions in force."""
-    in_force = [each for each in adoptions if each.ended_at is None]
-    return tuple(
-        SetLine(
-            row,
-            adoptions_in_words([each for each in in_force if each.criteria_set_id == row.id], sites),
-            any(criterion_in_words(each).from_memory for each in row.criteria),
-        )
-        for row in sets
-    )
 
 
 @dataclass(frozen=True)
