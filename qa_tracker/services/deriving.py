@@ -9,7 +9,7 @@ from decimal import Decimal
 from qa_tracker.core import decimals
 from qa_tracker.core.decimals import Exact
 from qa_tracker.core.errors import Invalid
-from qa_tracker.core.formula_check import order
+from qa_tracker.core.formula_check import is_listed, order
 from qa_tracker.core.formula_inputs import Qualified
 from qa_tracker.core.formulas import Derived, derive
 from qa_tracker.core.judgement import Judgement, not_assessable
@@ -86,15 +86,21 @@ def _given(item: Item, entry: Entry, value: Exact | None) -> object:
 
 
 def _values(item: Item, others: Sequence[Item], given: Mapping[str, object]) -> dict[str, object]:
-    """Readings by code at the item's aperture and condition; those of the whole device serve every part."""
+    """Readings by code: those of the item's own aperture and condition, and of the whole device.
+
+    A quantity of the whole device is made of the readings at every part, as a list; so are repeats.
+    """
     found: dict[str, list[object]] = {}
-    repeats: dict[str, int] = {}
+    listed: dict[str, bool] = {}
     for other in others:
-        here = other.aperture in (None, item.aperture) and other.condition in (None, item.condition)
+        here = all(
+            mine is None or its is None or its == mine
+            for mine, its in ((item.aperture, other.aperture), (item.condition, other.condition))
+        )
         if here and other.key in given:
             found.setdefault(other.spec.code, []).append(given[other.key])
-            repeats[other.spec.code] = other.spec.repeats
-    return {code: values if repeats[code] > 1 else values[0] for code, values in found.items()}
+            listed[other.spec.code] = is_listed(other.spec, item.spec)
+    return {code: values if listed[code] else values[0] for code, values in found.items()}
 
 
 def _around(item: Item, attributes: Attributes, items: Sequence[Item]) -> dict[str, object]:
