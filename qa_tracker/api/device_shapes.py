@@ -10,6 +10,7 @@ from typing import Annotated
 from ninja import Schema
 from pydantic import Field, field_validator, model_validator
 
+from qa_tracker.api.baseline_shapes import BaselineOut
 from qa_tracker.api.schemas import Given, Mark, Moment, Name, Secret, Short, Words
 
 
@@ -190,28 +191,6 @@ class PlanOut(Schema):
     roll: str
     responsible: str
     ended_at: Moment | None
-
-
-class BaselineOut(Schema):
-    """One epoch of a baseline, as entered, with what it was measured with."""
-
-    uid: uuid.UUID
-    measurand: str
-    aperture: str
-    condition: str
-    epoch: int
-    qualifier: str
-    entered: str
-    unit: str
-    console_model: str
-    console_software: str
-    test_object: str
-    method: str
-    reason: str
-    set_by: str
-    valid_from: Moment
-    ended_at: Moment | None
-    under_review: bool
 
 
 class WholeDeviceOut(DeviceOut):

@@ -6,6 +6,7 @@ import uuid
 from typing import Any
 
 from qa_tracker.api.authentication import ApiRequest, Caller
+from qa_tracker.api.baseline_shapes import baselines_out
 from qa_tracker.api.device_shapes import (
     AcceptIn,
     ConditionIn,
@@ -65,7 +66,7 @@ def show_device(request: ApiRequest, uid: uuid.UUID) -> dict[str, Any]:
         "apertures": rows.apertures_of(device.id, until),
         "conditions": rows.conditions_of(device.id, until),
         "plans": plans.plans_of(device.id, until),
-        "baselines": baselines.baselines_of(device.id, until),
+        "baselines": baselines_out(baselines.baselines_of(device.id, until)),
     }
 
 

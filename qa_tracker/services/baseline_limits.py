@@ -5,14 +5,14 @@ Also how much of the allowance against acceptance the device's change uses by th
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from decimal import Decimal
 
 from qa_tracker.core import conformity
 from qa_tracker.core.applicability import Circumstances, unfit
 from qa_tracker.core.decimals import Exact, from_scaled, plain, subtract
-from qa_tracker.core.epochs import Change
+from qa_tracker.core.epochs import Change, changes
 from qa_tracker.core.errors import Conflict
 from qa_tracker.core.library_specs import MeasurandSpec
 from qa_tracker.records.models import (
@@ -26,7 +26,7 @@ from qa_tracker.records.models import (
 )
 from qa_tracker.records.queries.baselines import BaselineRow
 from qa_tracker.records.queries.library import CriterionRow, criterion_spec
-from qa_tracker.services.baseline_rows import Moved
+from qa_tracker.services.baseline_rows import Moved, epoch_of
 from qa_tracker.services.items import criteria_for
 from qa_tracker.services.recording import read_json
 from qa_tracker.services.weighing import spread_of
@@ -46,6 +46,12 @@ class Asked:
     condition: Condition | None
     met: Circumstances
     adopted: Mapping[str, CriterionRow]
+
+    @property
+    def name(self) -> str:
+        """The field that refusals belong to: the measurand, with its part where it has one."""
+        parts = [part.pk if part else 0 for part in (self.aperture, self.condition)]
+        return ".".join([self.spec.code, *map(str, parts)]) if any(parts) else self.spec.code
 
     @property
     def quantity(self) -> str:
@@ -79,7 +85,7 @@ def refuse_failing(
         if level:
             raise Conflict(
                 "baseline.last_fails",
-                field=asked.spec.code,
+                field=asked.name,
                 measurand=asked.spec.name,
                 value=f"{'' if reading.qualifier == '=' else reading.qualifier} {reading.entered}".strip(),
                 moment=reading.measured_at,
@@ -98,7 +104,7 @@ def refuse_beyond(asked: Asked, exact: Exact, qualifier: str, test_object: TestO
     if found:
         raise Conflict(
             "baseline.beyond_limit",
-            field=asked.spec.code,
+            field=asked.name,
             value=exact.entered,
             criterion=found[0],
             level=found[1],
@@ -166,17 +172,47 @@ def moved_to(
     baseline
         The one in force, for a limit of its own spread.
     """
-    limits = [row for row in asked.criteria(baseline) if row.spec.criterion.basis == "baseline"]
-    if first is None or not limits:
+    if first is None:
         return Moved(change)
-    limit = limits[0].spec.criterion
+    return share_used(asked.spec, asked.criteria(baseline), asked.quantity, change, first, baseline)
+
+
+def share_used(
+    spec: MeasurandSpec,
+    criteria: Sequence[CriterionRow],
+    quantity: str,
+    change: Change,
+    first: Decimal,
+    baseline: BaselineRow | None,
+) -> Moved:
+    """A change from the first epoch, judged by the first limit that stands on a baseline."""
+    limits = [row for row in criteria if row.spec.criterion.basis == "baseline"]
+    if not limits:
+        return Moved(change)
     found = conformity.judge(
-        limit,
+        limits[0].spec.criterion,
         value=subtract(first, change.cumulative.copy_negate()),
-        kind=asked.spec.kind,
+        kind=spec.kind,
         baseline=first,
-        quantity=asked.quantity or None,
-        spread=spread_of(baseline, asked.spec.resolution),
+        quantity=quantity or None,
+        spread=spread_of(baseline, spec.resolution),
     )
     used = "" if found.used is None else plain(found.used)
     return Moved(change, used, found.lower_name or "", found.verdict)
+
+
+def moves_of(
+    epochs: Sequence[BaselineRow],
+    spec: MeasurandSpec | None,
+    adopted: Mapping[str, CriterionRow],
+    quantity: str,
+) -> dict[int, Moved]:
+    """What each epoch of one series changed, oldest first, by key; with the share used where a limit is adopted."""
+    found = changes([epoch_of(row) for row in epochs])
+    if spec is None:
+        return {key: Moved(change) for key, change in found.items()}
+    first = epochs[0].value
+    return {
+        row.id: share_used(spec, criteria_for(spec, dict(adopted), row), quantity, found[row.id], first, row)
+        for row in epochs
+    }

@@ -55,7 +55,7 @@ def tie_for(
     if not others or not needs_overlap(asked):
         return None
     if typed:
-        return Tie(others[0], parse(typed, asked.spec.resolution, field=asked.spec.code))
+        return Tie(others[0], parse(typed, asked.spec.resolution, field=asked.name))
     found = _stored(asked, others, taken_at)
     if found is not None:
         return found
@@ -63,7 +63,7 @@ def tie_for(
         return Tie(others[0], None, why_none.strip())
     raise Conflict(
         "baseline.no_overlap",
-        field=asked.spec.code,
+        field=asked.name,
         measurand=asked.spec.name,
         was=named(others[0].test_object),
         now=named(test_object),

@@ -5,7 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import hashlib
 import uuid
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import TypeVar
 
@@ -35,6 +35,7 @@ from qa_tracker.services.baseline_rows import Moved, Setting, SetUp, Source, cha
 from qa_tracker.services.guards import check_may, required, role_for
 
 R = TypeVar("R")
+G = TypeVar("G")
 Part = tuple[Aperture | None, Condition | None]
 
 
@@ -208,18 +209,24 @@ def known_measurands(site_id: int | None) -> dict[str, MeasurandSpec]:
 
 def propose(around: Around, wanted: Sequence[Wanted]) -> Proposed:
     """What setting these would write and change, or every refusal at once."""
-    found: list[Proposal] = []
+    found = all_or_refused(wanted, lambda each: _proposal(around, each))
+    return Proposed(around.device, around.reason, around.role, tuple(found))
+
+
+def all_or_refused(given: Iterable[G], make: Callable[[G], R]) -> list[R]:
+    """Make something of each; where some are refused, every refusal at once."""
+    found: list[R] = []
     errors: list[DomainError] = []
-    for each in wanted:
+    for each in given:
         try:
-            found.append(_proposal(around, each))
+            found.append(make(each))
         except DomainError as error:
             errors.append(error)
     if len(errors) == 1:
         raise errors[0]
     if errors:
         raise SeveralInvalid(tuple(errors))
-    return Proposed(around.device, around.reason, around.role, tuple(found))
+    return found
 
 
 def _proposal(around: Around, wanted: Wanted) -> Proposal:

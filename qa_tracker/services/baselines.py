@@ -30,6 +30,7 @@ from qa_tracker.services.baseline_proposals import (
     Terms,
     Value,
     Wanted,
+    all_or_refused,
     around,
     known_measurands,
     propose,
@@ -88,21 +89,18 @@ def propose_values(
     if not values:
         raise Invalid("baseline.values_missing", field="values")
     source = source_of(row, find_test_object(actor, test_object, at))
-    return propose(known, [_wanted(known, value, source, at) for value in values])
+    return propose(known, all_or_refused(values, lambda value: _wanted(known, value, source, at)))
 
 
 def _wanted(known: Around, value: Value, source: Source, at: dt.datetime) -> Wanted:
     spec = number_asked(known, value.measurand)
+    part = part_of(known.device, value, spec)
+    name = known.asked(spec, part).name
     if value.qualifier not in spec.qualifiers or value.qualifier == "not_seen":
         allowed = ", ".join(each for each in spec.qualifiers if each != "not_seen")
-        raise Invalid(
-            "reading.qualifier_not_allowed",
-            field=value.measurand,
-            qualifier=value.qualifier,
-            allowed=allowed,
-        )
-    exact = decimals.parse(value.text, spec.resolution, field=value.measurand)
-    return Wanted(spec, part_of(known.device, value, spec), exact, value.qualifier, source, at)
+        raise Invalid("reading.qualifier_not_allowed", field=name, qualifier=value.qualifier, allowed=allowed)
+    exact = decimals.parse(value.text, spec.resolution, field=name)
+    return Wanted(spec, part, exact, value.qualifier, source, at)
 
 
 def adopt_submission(

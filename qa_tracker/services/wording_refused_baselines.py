@@ -41,6 +41,9 @@ BASELINES: Final = {
         "The set-ups were measured with different consoles, software or test objects. A baseline has one of each: "
         "choose set-ups that agree."
     ),
+    "baseline.setups_line": N_(
+        "“%(line)s” can't be read. Write a day and a value on each line, such as 2030-01-31 8.5."
+    ),
     "baseline.none_chosen": N_("No baseline is chosen. Choose those that are to be kept."),
     "baseline.unknown": N_(
         "One of the baselines chosen is no longer in force. Look at the device again: it may have been replaced."

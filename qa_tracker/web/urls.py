@@ -12,4 +12,5 @@ urlpatterns = [
     path("health", health.show, name="health"),
     path("", include("qa_tracker.web.urls_checks")),
     path("", include("qa_tracker.web.urls_register")),
+    path("", include("qa_tracker.web.urls_baselines")),
 ]

@@ -5,7 +5,6 @@ from __future__ import annotations
 from django.urls import path
 
 from qa_tracker.web.views import (
-    baselines,
     criteria,
     device,
     device_actions,
@@ -48,8 +47,6 @@ urlpatterns = [
     path("devices/<uuid:uid>/condition/", device_actions.condition, name="condition-set"),
     path("devices/<uuid:uid>/plan/", plans.make, name="plan-make"),
     path("devices/<uuid:uid>/plan/<uuid:plan>/end/", plans.end, name="plan-end"),
-    path("devices/<uuid:uid>/baselines/", baselines.by_value, name="baseline-set"),
-    path("devices/<uuid:uid>/baselines/from-check/", baselines.from_check, name="baseline-from-check"),
     path("devices/<uuid:uid>/fault/", faults.open_fault, name="fault-open"),
     path("devices/<uuid:uid>/dossier/", dossiers.ask_for, name="dossier-ask"),
     path("faults/", faults.index, name="faults"),

@@ -6,7 +6,11 @@ import uuid
 from collections.abc import Callable
 from dataclasses import dataclass
 
+from django.utils.timezone import now
+
 from qa_tracker.records.models import CriteriaSet, Edition
+from qa_tracker.services import baselines, devices
+from qa_tracker.services.baselines import Value
 from tests import builders
 from tests.api.world import ROLES, World
 
@@ -84,6 +88,32 @@ def baseline(world: World) -> dict:
     return {"values": [value], "reason": "Acceptance", "password": PASSWORD}
 
 
+def unsigned(world: World) -> dict:
+    return {name: value for name, value in baseline(world).items() if name != "password"}
+
+
+def set_ups(world: World) -> dict:
+    series = {"measurand": "reverberation_depth", "aperture": world.spare.apertures.get().uid}
+    typed = [{"text": "8.5", "measured_on": "2024-01-05"}, {"text": "8.0", "measured_on": "2024-01-07"}]
+    return {"series": series, "set_ups": typed, "reason": "Two days"}
+
+
+def under_review(world: World) -> dict:
+    """A baseline of the probe, put under review by its scanner's new software."""
+    ward = world.ward
+    value = Value("reverberation_depth", "8.5", ward.probe.apertures.get().uid)
+    (made,) = baselines.set_values(
+        device=ward.probe.uid, values=[value], test_object=None, reason="Acceptance", password=PASSWORD,
+        actor=ward.physicist, at=now(),
+    )  # fmt: skip
+    devices.record_software(scanner=ward.scanner.uid, **software(world), actor=ward.physicist, at=now())
+    return {"baselines": [made.uid], "reason": "Same", "password": PASSWORD}
+
+
+def software(world: World) -> dict:
+    return {"version": "9.1", "options": "", "since_on": now().date()}
+
+
 def edition(world: World) -> dict:
     return {"edition": Edition.objects.first().uid, "site": world.ward.site.uid}
 
@@ -120,6 +150,12 @@ CALLS = {
     "adoptProcedure": Call(PHYSICIST, body=edition),
     "adoptCriteria": Call(PHYSICIST, body=criteria),
     "setBaselines": Call(PHYSICIST, spare, baseline),
+    "previewBaselines": Call(PHYSICIST, spare, unsigned, 200),
+    "previewSetUps": Call(PHYSICIST, spare, set_ups, 200),
+    "setBaselineFromSetUps": Call(PHYSICIST, spare, lambda world: set_ups(world) | {"password": PASSWORD}),
+    "keepBaselines": Call(PHYSICIST, probe, under_review),
+    "listUnderReview": Call(ALL, probe, done=200),
+    "recordSoftware": Call(LEADING, lambda world: world.ward.scanner.uid, software),
     "takeBaselines": Call(
         PHYSICIST, lambda world: world.submission.uid, lambda world: {"reason": "New", "password": PASSWORD}
     ),

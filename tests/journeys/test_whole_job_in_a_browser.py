@@ -214,7 +214,9 @@ def accept(physicist: Someone) -> None:
 def physicist_sets_baselines_and_plan(physicist: Someone, device: str, due_on: dt.date) -> None:
     physicist.page.goto(f"{device}baselines/")
     physicist.page.locator("[name^='reverberation_depth']").fill("62,5")
-    physicist.fill(reason="Acceptance", password=PASSWORD)
+    physicist.fill(reason="Acceptance")
+    physicist.act()
+    physicist.fill(password=PASSWORD)
     physicist.act()
     physicist.page.goto(f"{device}plan/")
     physicist.follow("Monthly in-air")

@@ -8,7 +8,6 @@ import pytest
 from django.urls import reverse
 
 from qa_tracker.records.models import (
-    Baseline,
     CheckPlan,
     Condition,
     Device,
@@ -226,22 +225,6 @@ def test_plan_when_ended_is_no_longer_in_force(ward, physicist):
     physicist.post(reverse("plan-end", args=[ward.probe.uid, plan.uid]), {"reason": "Spare now"})
     plan.refresh_from_db()
     assert plan.ended_at is not None
-
-
-def test_baselines_from_a_check_are_set_and_signed(ward, physicist):
-    submission = builders.submitted(ward.check, ward.technician)
-    given = {"submission": str(submission.uid), "reason": "Acceptance", "password": builders.PASSWORD}
-    answer = physicist.post(reverse("baseline-from-check", args=[ward.probe.uid]), given)
-    assert answer.status_code == 302
-    assert Baseline.objects.count() > 0
-
-
-def test_baseline_by_value_when_no_number_keeps_what_was_typed(ward, physicist):
-    name = f"reverberation_depth.{ward.probe.apertures.get().id}.0"
-    given = {name: "about 12", "reason": "New lens", "password": builders.PASSWORD}
-    answer = physicist.post(reverse("baseline-set", args=[ward.probe.uid]), given)
-    page = answer.content.decode()
-    assert (answer.status_code, 'value="about 12"' in page, "New lens" in page) == (422, True, True)
 
 
 def test_fault_when_acted_on_and_dismissed_is_closed(ward, physicist):

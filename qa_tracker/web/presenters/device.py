@@ -6,14 +6,11 @@ import datetime as dt
 import json
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from itertools import groupby
 
 from django.utils.translation import gettext as _
 
-from qa_tracker.core.decimals import plain
 from qa_tracker.core.library_specs import MeasurandSpec
 from qa_tracker.core.workflow import CHECK_AWAITED
-from qa_tracker.records.queries.baselines import BaselineRow
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.devices import ConditionRow, DeviceRow
 from qa_tracker.records.queries.plans import PlanRow
@@ -109,54 +106,6 @@ def window_words(before: int, grace: int) -> str:
     return _("from %(before)d days before to %(grace)d days after") % {"before": before, "grace": grace}
 
 
-@dataclass(frozen=True)
-class ShownEpoch:
-    """One epoch of a baseline with its change from the first."""
-
-    row: BaselineRow
-    value: str
-    change: str
-
-
-@dataclass(frozen=True)
-class ShownBaseline:
-    """The epochs of one series."""
-
-    name: str
-    where: str
-    epochs: tuple[ShownEpoch, ...]
-
-
-def baselines_in_words(rows: Sequence[BaselineRow], specs: Specs) -> tuple[ShownBaseline, ...]:
-    """Baselines by series, each epoch with the cumulative change from the first."""
-    return tuple(_series(list(group), specs) for _key, group in groupby(rows, key=lambda row: row.key))
-
-
-def _series(rows: list[BaselineRow], specs: Specs) -> ShownBaseline:
-    first = rows[0]
-    epochs = tuple(
-        ShownEpoch(each, amount_words(_qualified(each), each.unit), _change(each, first)) for each in rows
-    )
-    return ShownBaseline(name_of(first.measurand, specs), place_of(first.aperture, first.condition), epochs)
-
-
-def _qualified(row: BaselineRow) -> str:
-    return row.entered if row.qualifier == "=" else f"{row.qualifier} {row.entered}"
-
-
-def _change(row: BaselineRow, first: BaselineRow) -> str:
-    if row.epoch == first.epoch:
-        return ""
-    moved = row.value - first.value
-    sign = "+" if moved > 0 else "\N{MINUS SIGN}" if moved < 0 else ""
-    return amount_words(f"{sign}{plain(abs(moved))}", row.unit)
-
-
 def name_of(code: str, specs: Specs) -> str:
     """The name of a measurand; its code where no adopted procedure knows it."""
     return specs[code].name if code in specs else code
-
-
-def place_of(aperture: str, condition: str) -> str:
-    """Aperture and condition, as far as there are any."""
-    return ", ".join(part for part in (aperture, condition) if part)

@@ -10,6 +10,7 @@ from django.shortcuts import render
 from django.utils.timezone import now
 
 from qa_tracker.core.errors import NotFound
+from qa_tracker.core.schedule import local_day
 from qa_tracker.records.queries import (
     baselines,
     checks,
@@ -21,6 +22,7 @@ from qa_tracker.records.queries import (
     series,
     submissions,
 )
+from qa_tracker.records.queries.baseline_readings import Waiting, under_review_at
 from qa_tracker.records.queries.baselines import BaselineRow, SeriesKey
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow, DeviceRow
@@ -30,13 +32,12 @@ from qa_tracker.services import guards
 from qa_tracker.web import sight
 from qa_tracker.web.asof import Known, known
 from qa_tracker.web.presenters import charts, times
+from qa_tracker.web.presenters.baselines import Limits, baselines_in_words, place_of
 from qa_tracker.web.presenters.device import (
     Specs,
-    baselines_in_words,
     conditions_in_words,
     facts_of,
     name_of,
-    place_of,
     plans_in_words,
 )
 from qa_tracker.web.presenters.device_actions import offered
@@ -90,6 +91,8 @@ def _records(row: DeviceRow, moment: dt.datetime | None, at: dt.datetime, zone: 
     conditions = devices.conditions_of(row.id, moment)
     epochs = baselines.baselines_of(row.id, moment)
     placed = devices.placements_of(row.id, moment)
+    limits = Limits(specs, library.adopted_criteria(row.site_id, moment), conditions)
+    told = baselines_in_words(epochs, limits, local_day(until, zone))
     return {
         "apertures": apertures,
         "conditions": conditions_in_words(conditions),
@@ -97,14 +100,21 @@ def _records(row: DeviceRow, moment: dt.datetime | None, at: dt.datetime, zone: 
         "placements": placed,
         "placements_line": times.placements_line(placed, until),
         "plans": plans_in_words(plans.plans_of(row.id, moment), done, until, zone),
-        "baselines": baselines_in_words(epochs, specs),
+        "baselines": told,
+        "reviews": [each for each in told if each.under_review],
+        "waiting": _waiting(row) if moment is None else [],
         "strips": times.strips(done, until),
         "checks": _listed(done),
-        "charts": _charts(row, specs, apertures, conditions, epochs, moment, until),
+        "charts": _charts(row, limits, apertures, epochs, moment, until),
         "faults": faults.faults_of_device(row.id, moment),
         "signatures": submissions.signatures_of(row.uid, moment),
         "procedures": _startable(row, editions),
     }
+
+
+def _waiting(row: DeviceRow) -> list[Waiting]:
+    """Who has baselines under review, of a scanner and the probes on it."""
+    return under_review_at(row.id) if row.kind == "scanner" else []
 
 
 def _listed(done: list[CheckRow]) -> list[CheckRow]:
@@ -122,17 +132,16 @@ def _startable(row: DeviceRow, editions: list[EditionRow]) -> list[EditionRow]:
 
 def _charts(
     row: DeviceRow,
-    specs: Specs,
+    limits: Limits,
     apertures: list[ApertureRow],
-    conditions: list[ConditionRow],
     epochs: list[BaselineRow],
     moment: dt.datetime | None,
     until: dt.datetime,
 ) -> tuple[charts.Chart, ...]:
     points = series.every_series(row.id, times.months_before(until), moment)
     faces = {each.id: each.name for each in apertures}
-    presets = {each.id: each for each in conditions}
-    criteria = library.adopted_criteria(row.site_id, moment)
+    presets = {each.id: each for each in limits.conditions}
+    specs, criteria = limits.specs, limits.adopted
     names = {key: _names(key, specs, faces, presets) for key in points}
     lines = {}
     for key, rows in points.items():
