@@ -172,9 +172,9 @@ def test_next_edition_is_for_physicists_of_the_group(ward):
 
 def test_what_if_asks_first_and_then_tells_counts_and_readings(ward, page):
     made = published(ward)
-    assert "another verdict" not in page("criteria-what-if", made.uid)
+    assert "would change" not in page("criteria-what-if", made.uid)
     text = page("criteria-what-if", made.uid, asked="yes")
-    assert "1 of 1 readings would have another verdict" in text
+    assert "The one verdict would change" in text
     assert "Contiguous dead elements DROP conforming remedial 1" in text
     assert "the remedial level begins at 2: conforming." in text
     assert "the remedial level begins at 1: remedial." in text
@@ -188,19 +188,19 @@ def test_what_if_is_for_whoever_sees_criteria_and_within_their_sight(ward):
         person.username: words(builders.signed_in(person).get(reverse("criteria-what-if", args=[made.uid]), {"asked": "1"}))
         for person in (ward.technician, auditor, stranger)
     }  # fmt: skip
-    assert all("1 of 1 readings" in told[name] for name in ("castellane", "fair"))
-    assert "No stored reading was judged" in told["sunniva"]
+    assert all("The one verdict would change" in told[name] for name in ("castellane", "fair"))
+    assert "No stored verdict was given" in told["sunniva"]
     assert "C5-2207" not in told["sunniva"]
 
 
 @pytest.mark.parametrize(
     ("query", "status", "sentence"),
     [
-        ({"serial": "C5-2207"}, 200, "1 of 1 readings"),
+        ({"serial": "C5-2207"}, 200, "The one verdict would change"),
         ({"serial": "nothing"}, 422, "No device in your sight has the serial number “nothing”"),
-        ({"since": "2999-01-01"}, 200, "No stored reading was judged"),
+        ({"since": "2999-01-01"}, 200, "No stored verdict was given"),
         ({"until": "31 May"}, 422, "“31 May” is no day"),
-        ({"site": "AG", "page": "99"}, 200, "1 of 1 readings"),
+        ({"site": "AG", "page": "99"}, 200, "The one verdict would change"),
         ({"site": "XX"}, 404, ""),
     ],
 )
@@ -218,7 +218,7 @@ def test_what_if_costs_the_same_with_more_readings(ward, page, django_assert_max
         )
         builders.submitted(check, ward.technician, dark_elements="1")
     with django_assert_max_num_queries(len(few)):
-        assert "4 of 4 readings" in page("criteria-what-if", made.uid, asked="yes")
+        assert "4 of 4 verdicts would change" in page("criteria-what-if", made.uid, asked="yes")
 
 
 def test_adoption_is_ended_with_a_reason(ward):
