@@ -23,10 +23,19 @@ LINES: Final = {
         "%(value)s is not written as text. Put numbers in quotes: a JSON number may have been a binary float on "
         "its way."
     ),
+    "line.not_number": N_('%(field)s is %(value)s, which is no number. Write it as text, such as "20.3".'),
     "line.not_decimal": N_(
         "%(field)s: “%(value)s” is not a decimal number. Write digits with a point, and no unit or sign of comparison."
     ),
     "line.too_long": N_(
-        "%(field)s: “%(value)s” is longer than the %(digits)s digits that can be kept exactly."
+        "%(field)s: “%(value)s” has more than the %(digits)s digits that are judged exactly. Write fewer."
+    ),
+    "line.limit_too_long": N_(
+        "%(field)s: “%(value)s” is longer than a limit can be, which is %(digits)s digits and %(places)s decimal "
+        "places. Write fewer."
+    ),
+    "line.needs_the_register": N_(
+        "%(field)s can't be judged from a line: grades and a device's own spread stand in the register. Give levels "
+        "with absolute or percent."
     ),
 }
