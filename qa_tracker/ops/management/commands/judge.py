@@ -7,10 +7,10 @@ import json
 import os
 import sys
 from collections.abc import Iterator
-from contextlib import nullcontext
-from typing import Any, BinaryIO
+from contextlib import AbstractContextManager, nullcontext
+from typing import Any, BinaryIO, Final
 
-from django.core.management.base import BaseCommand, CommandError, CommandParser
+from django.core.management.base import BaseCommand, CommandError, CommandParser, DjangoHelpFormatter
 from django.utils import translation
 
 from qa_tracker.core.errors import DomainError, Invalid
@@ -18,59 +18,106 @@ from qa_tracker.core.judging_lines import answer, judge_line
 from qa_tracker.services.wording import refusal, verdict_sentence
 
 LONGEST_LINE = 1_000_000
+MARK = b"\xef\xbb\xbf"
+# JSON leaves these as they are, but many readers of lines end a line at them.
+LINE_ENDS: Final = {0x85: "\\u0085", 0x2028: "\\u2028", 0x2029: "\\u2029"}
 ABOUT = """\
-Each line is one JSON object, numbers as text:
+Each line holds one JSON object:
 
-  value, nominal, baseline, reference (the other reading of a ratio),
-  quantity (for bands), uncertainty (expanded, k = 2),
-  rule        simple (default), guarded or zones
-  criterion   basis      nominal, baseline, none or ratio
-              direction  either, above or below
-              strict     true for "more than" (default), false for "at least"
-              remedial and/or suspension: absolute, percent,
-                         governs: larger (default), smaller or either
-              bands      a list of: from, below, remedial, suspension
+  value        the reading
+  nominal      the true value, for basis nominal
+  baseline     the device's baseline, for basis baseline
+  reference    the other reading, for basis ratio
+  quantity     what bands are chosen by
+  uncertainty  expanded, k = 2
+  rule         simple (default), guarded or zones
+  criterion    basis       nominal, baseline, none or ratio
+               direction   either, above or below: which way is worse
+               strict      true (default): exactly the limit conforms;
+                           false: the limit itself is beyond
+               remedial    one level or both, each with absolute, percent
+               suspension  and governs: larger (default), smaller or either
+               bands       instead of levels, a list of objects with from,
+                           below (half-open), remedial, suspension
 
-Each answer is one JSON line in the same order: verdict, and where something
-was compared departure, allowance, used and (with an uncertainty) probability;
-always a sentence. A line that can't be read answers {"error": ...} and the
+Numbers are text, such as "20.3" or "5e2", with a point. A JSON number is taken
+only if it is whole, for it may have been a binary float. Null, a blank text and
+a key that is left out mean the same; a key not named here is refused. NaN and
+Infinity as text are not assessable. Empty lines are skipped.
+
+Each answer is one line of JSON, in the order of the lines: verdict (conforming,
+remedial, suspension, indeterminate or not_assessable); departure and allowance
+of the level that decides, as exact decimals; used, the share of the first
+level's allowance in percent; probability of conformity, where an uncertainty
+was given; and always a sentence. What was not compared is left out. A line that
+can't be read is answered by {"error": "what, why and what to do"}, and the
 others go on.
+
+For example, these two as one line each:
+
+  {"value": "20.3", "nominal": "20.0", "criterion": {"basis": "nominal",
+   "direction": "either", "remedial": {"absolute": "0.3"}}}
+  {"verdict": "conforming", "departure": "0.3", "allowance": "0.3",
+   "used": "100.0", "sentence": "20.3 is 0.3 more than the nominal value ..."}
 """
+
+
+class _HelpFormatter(DjangoHelpFormatter, argparse.RawDescriptionHelpFormatter):
+    """Leave the lines of the description as they are; what every command has stands last."""
 
 
 class Command(BaseCommand):
     """Answer each line with its verdict, the arithmetic and the sentence."""
 
-    help = "Judge readings from JSON lines, without a database. Exit status 1 if any line could not be read."
+    help = (
+        "Judge readings from JSON lines, by the limits given beside them, without a database.\n"
+        "Exit status 1 if any line could not be read."
+    )
     requires_system_checks = ()
 
     def create_parser(self, prog_name: str, subcommand: str, **kwargs: Any) -> CommandParser:
-        parser = super().create_parser(prog_name, subcommand, epilog=ABOUT, **kwargs)
-        parser.formatter_class = argparse.RawDescriptionHelpFormatter
-        return parser
+        return super().create_parser(
+            prog_name, subcommand, epilog=ABOUT, formatter_class=_HelpFormatter, **kwargs
+        )
 
     def add_arguments(self, parser: CommandParser) -> None:
         parser.add_argument(
-            "file", nargs="?", default="-", help="JSON lines to judge; - or nothing: standard input"
+            "file", metavar="FILE", nargs="?", default="-", help="JSON lines; - or nothing: standard input"
         )
 
     def handle(self, *args: Any, **options: Any) -> None:
+        self._write_lines_at_once()
         refused = False
         try:
-            with translation.override("en"), _opened(options["file"]) as lines:
-                for told in answers(lines):
+            # The sentences are written in English; without a language no catalogue is asked for each.
+            with translation.override(None), _opened(options["file"]) as file:
+                for told in answers(file):
                     refused = refused or "error" in told
-                    self.stdout.write(json.dumps(told, ensure_ascii=False))
+                    self.stdout.write(written(told))
             self.stdout.flush()
         except BrokenPipeError:
             # Whoever read the answers has had enough; nothing is left to be flushed into a closed pipe.
             os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        except OSError as error:
+            raise CommandError(
+                f"Judging stopped where no more could be read or written: {error.strerror}."
+            ) from error
         if refused:
             sys.exit(1)
 
+    def _write_lines_at_once(self) -> None:
+        """Write UTF-8 whatever the locale, and each answer before the next line is awaited.
 
-def _opened(name: str) -> Any:
+        Half of a surrogate pair, which UTF-8 can't hold, is written as the escape that JSON has for it.
+        """
+        if reconfigure := getattr(self.stdout, "reconfigure", None):
+            reconfigure(encoding="utf-8", errors="backslashreplace", newline="\n", line_buffering=True)
+
+
+def _opened(name: str) -> AbstractContextManager[BinaryIO]:
     if name == "-":
+        if sys.stdin is None:
+            raise CommandError("Standard input is closed. Name a file of JSON lines.")
         return nullcontext(sys.stdin.buffer)
     try:
         return open(name, "rb")  # closed by the caller's with
@@ -80,20 +127,24 @@ def _opened(name: str) -> Any:
         ) from error
 
 
-def answers(lines: BinaryIO) -> Iterator[dict[str, Any]]:
+def answers(file: BinaryIO) -> Iterator[dict[str, Any]]:
     """Answer every line that holds something."""
-    first = True
-    while raw := lines.readline(LONGEST_LINE + 1):
-        whole = raw.endswith(b"\n") or len(raw) <= LONGEST_LINE
-        while not raw.endswith(b"\n") and not whole and (rest := lines.readline(LONGEST_LINE)):
-            if rest.endswith(b"\n"):
-                break
-        if first:
-            raw, first = raw.removeprefix(b"\xef\xbb\xbf"), False
-        if not whole:
+    for raw in _lines(file):
+        if raw is None:
             yield _error(Invalid("line.too_large", most=LONGEST_LINE))
-        elif raw.strip():
-            yield answer_line(raw)
+        elif held := raw.removeprefix(MARK).strip():
+            yield answer_line(held)
+
+
+def _lines(file: BinaryIO) -> Iterator[bytes | None]:
+    """Give line after line; None for one that is too long, of which no more than a part is ever held."""
+    while raw := file.readline(LONGEST_LINE + 1):
+        if len(raw) <= LONGEST_LINE or raw.endswith(b"\n"):
+            yield raw
+            continue
+        while (rest := file.readline(LONGEST_LINE)) and not rest.endswith(b"\n"):
+            pass
+        yield None
 
 
 def answer_line(raw: bytes) -> dict[str, Any]:
@@ -106,6 +157,12 @@ def answer_line(raw: bytes) -> dict[str, Any]:
         str(judgement.code), judgement.parameters, judgement.verdict, judgement.level or ""
     )
     return {**answer(judgement), "sentence": sentence}
+
+
+def written(told: dict[str, Any]) -> str:
+    """Write an answer as one line; only an error can quote signs that end one."""
+    text = json.dumps(told, ensure_ascii=False, allow_nan=False)
+    return text.translate(LINE_ENDS) if "error" in told else text
 
 
 def _error(error: DomainError) -> dict[str, str]:
@@ -133,7 +190,7 @@ def _once_each(pairs: list[tuple[str, Any]]) -> dict[str, Any]:
     found = dict(pairs)
     if len(found) < len(pairs):
         names = [name for name, _ in pairs]
-        twice = next(name for name in names if names.count(name) > 1)
+        twice = next(name for name in names if names.count(name) > 1)[:40]
         raise Invalid("line.key_twice", field=twice, key=twice)
     return found
 
