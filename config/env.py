@@ -17,11 +17,17 @@ def text(name: str, default: str = "") -> str:
     return os.environ.get(name, "").strip() or default
 
 
-def data_dir() -> Path:
+def data_dir(*, made: bool = True) -> Path:
     """``DATA_DIR``, made on first use and readable by its owner only."""
     path = Path(text("DATA_DIR", str(BASE_DIR / ".data"))).expanduser().resolve()
-    path.mkdir(parents=True, exist_ok=True, mode=0o700)
+    if made:
+        path.mkdir(parents=True, exist_ok=True, mode=0o700)
     return path
+
+
+def passing_secret() -> str:
+    """A secret for a process that keeps nothing, and so has nothing to sign for later."""
+    return secrets.token_urlsafe(48)
 
 
 def kept_secret(path: Path) -> str:

@@ -12,8 +12,12 @@ from config import env
 from config.logging import logging_for
 
 BASE_DIR = env.BASE_DIR
-DATA_DIR: Path = env.data_dir()
-SECRET_KEY = env.text("SECRET_KEY") or env.kept_secret(DATA_DIR / "keys" / "secret_key")
+# Judging lines for a script keeps nothing: no folder is made and no key.
+JUDGING = sys.argv[1:2] == ["judge"]
+DATA_DIR: Path = env.data_dir(made=not JUDGING)
+SECRET_KEY = env.text("SECRET_KEY") or (
+    env.passing_secret() if JUDGING else env.kept_secret(DATA_DIR / "keys" / "secret_key")
+)
 DEBUG = False
 ALLOWED_HOSTS = env.text("ALLOWED_HOSTS", "127.0.0.1,localhost,[::1]").split(",")
 CSRF_TRUSTED_ORIGINS = [origin for origin in env.text("CSRF_TRUSTED_ORIGINS").split(",") if origin]
