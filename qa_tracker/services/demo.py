@@ -18,6 +18,7 @@ from qa_tracker.services.demo_fleet import PROBES, SCANNERS, WIRELESS_SITE, Tran
 from qa_tracker.services.demo_follow_up import follow_up_document
 from qa_tracker.services.demo_ground import lay_ground
 from qa_tracker.services.demo_large import Size, live_in_part, parts
+from qa_tracker.services.demo_limits import local_limits
 from qa_tracker.services.demo_people import CAST, people
 from qa_tracker.services.demo_routine import FOLLOW_UP_RHYTHM, PROBE_RHYTHMS, SCANNER_RHYTHMS, Routine
 from qa_tracker.services.demo_stories import Cable, SlowLoss
@@ -55,6 +56,7 @@ def load(*, at: dt.datetime, seed: int = SEED, size: Size | None = None) -> Load
         world = World(at, begin(at, months), seed, Timeline(at), months)
         publish_shipped(at=world.begun_at)
         library.publish_procedure(document=follow_up_document(), actor=None, at=world.begun_at)
+        library.publish_criteria(document=local_limits(), actor=None, at=world.begun_at)
         with history.past("demo") as world.past:
             lay_ground(world)
         if not size.larger:

@@ -25,6 +25,7 @@ from qa_tracker.records.models import (
     TestObject,
 )
 from qa_tracker.services.demo_fleet import EVERYWHERE_HOLIDAYS, KESTREL_BAY_HOLIDAYS, SITES
+from qa_tracker.services.demo_limits import state_uncertainties
 from qa_tracker.services.demo_people import CAST, PASSWORD, Invented
 from qa_tracker.services.demo_values import TESTER
 from qa_tracker.services.demo_world import World
@@ -44,6 +45,7 @@ def lay_ground(world: World) -> None:
     _holidays(world, moss)
     _pool(world, moss)
     _adoptions(world)
+    state_uncertainties(world)
     _measured_with(world)
 
 

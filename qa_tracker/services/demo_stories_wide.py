@@ -39,6 +39,7 @@ class DryingObject:
             self.routine.before[kept.device.pk] = self.reads(kept, serial)
         for month in range(DRIES_FROM, DRY_BY + 1):
             world.timeline.put(world.month(month - 0.5, 6), self.weighs(month))
+        world.timeline.put(world.month(1.6, 9), self.second_object)
         world.timeline.put(world.month(23.4, 9), self.compare)
 
     def share(self, month: int) -> float:
@@ -64,6 +65,22 @@ class DryingObject:
             world.nature(kept).fixed["penetration"] = Entry(f"{depth:.{places}f}")
 
         return before
+
+    def second_object(self, at: dt.datetime) -> None:
+        """Two of the probes get a baseline on AG's object too, read the same day as their own object."""
+        world = self.routine.world
+        oduya, _ = world.person("oduya")
+        for number, serial in enumerate(ON_THE_OTHER_OBJECT_MM):
+            kept, hour = world.probes[serial], at + number * HOUR
+            world.nature(kept).fixed["penetration"] = Entry(str(world.accepted(kept)))
+            done = self.routine.unplanned(
+                kept, FOLLOW_UP, "rao-lindqvist", hour, test_object=world.objects["AG"],
+                remark="Both objects read, for the day one of them is in doubt",
+            )  # fmt: skip
+            history_baselines.set_from_check(
+                world.past, kept, done, ("penetration",), by=oduya, reason="Second object, read the same day",
+                at=hour + 2 * HOUR, tied=True,
+            )  # fmt: skip
 
     def compare(self, at: dt.datetime) -> None:
         """Two of the probes on the second object, the same hour: it is the object, not the probes."""
@@ -206,10 +223,21 @@ class Bite:
         """A leakage log after use, by the nurse who cleaned the probe."""
 
         def happen(at: dt.datetime) -> None:
-            if kept.device.state == "in_use":
-                self.routine.unplanned(kept, TOE_LOG, "barak-yarden", at)
+            if kept.device.state != "in_use":
+                return
+            done = self.routine.unplanned(kept, TOE_LOG, "barak-yarden", at)
+            if ("toe_probe_leakage", None, None) not in kept.baselines:
+                self.first_step(kept, done, at)
 
         return happen
+
+    def first_step(self, kept: Kept, done: Done, at: dt.datetime) -> None:
+        """The first log gives the value that later ones may not step away from."""
+        oduya, _ = self.routine.world.person("oduya")
+        history_baselines.set_from_check(
+            self.routine.world.past, kept, done, ("toe_probe_leakage",), by=oduya, reason="First leakage log",
+            at=at + 2 * HOUR,
+        )  # fmt: skip
 
     def hole(self, at: dt.datetime) -> None:
         """176 against 210, 84 %: out of use at once."""

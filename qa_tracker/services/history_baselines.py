@@ -17,6 +17,7 @@ from qa_tracker.services.baseline_rows import (
     Setting,
     SetUp,
     Source,
+    Tie,
     change_of,
     epoch_of,
     put_epoch,
@@ -40,6 +41,7 @@ class _Wanted:
     exact: Exact
     qualifier: str = "="
     setups: tuple[SetUp, ...] = ()
+    tied: bool = False
 
 
 def set_from_check(
@@ -52,10 +54,15 @@ def set_from_check(
     reason: str,
     at: dt.datetime,
     texts: dict[str, str] | None = None,
+    tied: bool = False,
 ) -> list[Baseline]:
-    """Make readings of a submission the baselines of their series, signed; ``texts`` puts a mean in their place."""
+    """Make readings of a submission the baselines of their series, signed.
+
+    ``texts`` puts a mean in a reading's place; ``tied`` says that the object before was read the same day, as its
+    baseline says, so that the step between the two objects is none of the device's.
+    """
     wanted = [
-        _Wanted(one.item, _typed(one, texts or {}) or one.exact, one.entry.qualifier)
+        _Wanted(one.item, _typed(one, texts or {}) or one.exact, one.entry.qualifier, tied=tied)
         for one in done.judged.items
         if one.item.spec.code in codes and one.exact is not None
     ]
@@ -101,6 +108,8 @@ def _set(
 
 def _setting(past: Past, kept: Kept, wanted: _Wanted, source: Source, by: Person, reason: str) -> Setting:
     item = wanted.item
+    epochs = kept.baselines.get(item.series, [])
+    before = epochs[-1] if wanted.tied and epochs else None
     return Setting(
         kept.device,
         past.measurands[item.spec.code],
@@ -112,6 +121,7 @@ def _setting(past: Past, kept: Kept, wanted: _Wanted, source: Source, by: Person
         reason,
         by,
         setups=wanted.setups,
+        tie=Tie(before, Exact(before.entered, before.scaled, before.places)) if before else None,
     )
 
 

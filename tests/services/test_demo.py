@@ -172,12 +172,14 @@ def test_drying_object_when_told_loses_weight_while_reverberation_stays(loaded):
 
 @pytest.mark.parametrize(("serial", "change"), [("C-4105", "-0.3"), ("L-5205", "0.8")], ids=str)
 def test_drying_object_when_compared_is_the_object(loaded, serial, change):
-    reading = Reading.objects.get(
+    first, reading = Reading.objects.filter(
         device__serial=serial, measurand__code="penetration", submission__test_object__site__code="AG"
-    )
+    ).order_by("measured_at")
     base = reading.verdict.baseline
+    assert (first.verdict.code, reading.verdict.verdict) == ("other_object", "conforming")
+    assert (base.test_object.site.code, base.overlap_of.test_object.site.code) == ("AG", "KB")
     assert Decimal(reading.entered) - Decimal(base.entered) == Decimal(change)
-    assert "mismatch_object" in reading.verdict.parameters
+    assert "mismatch_object" not in reading.verdict.parameters
 
 
 @pytest.mark.parametrize("serial", ["C-4101", "C-4103", "C-4107"], ids=str)
@@ -330,3 +332,16 @@ def test_verdicts_when_judged_again_are_the_same(loaded):
 def test_demo_when_loaded_twice_is_refused(loaded):
     with pytest.raises(Conflict, match=r"demo\.loaded"):
         demo.load(at=AT)
+
+
+def test_transoesophageal_leakage_when_bitten_trips_every_limit(loaded):
+    verdict = Verdict.objects.get(measurand__code="toe_probe_leakage", verdict="suspension")
+    assert [verdict.criterion.code, *(each.criterion.code for each in verdict.further.order_by("position"))] == [
+        "TOE-80", "TOE-MAKER", "TOE-STEP",
+    ]  # fmt: skip
+    assert {each.verdict for each in verdict.further.all()} == {"suspension"}
+
+
+def test_every_verdict_is_in_the_demo(loaded):
+    found = set(Verdict.objects.values_list("verdict", flat=True))
+    assert found == {"conforming", "remedial", "suspension", "indeterminate", "not_assessable"}
