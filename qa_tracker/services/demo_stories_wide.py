@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from qa_tracker.records.models import Check
 from qa_tracker.services import history_baselines, history_devices
-from qa_tracker.services.demo_devices import BASELINE_CODES, set_preset
+from qa_tracker.services.demo_devices import set_preset
 from qa_tracker.services.demo_follow_up import CODE as FOLLOW_UP
 from qa_tracker.services.demo_routine import ANNUAL, TOE_LOG, Before, Routine
 from qa_tracker.services.demo_stories import DAY, HOUR, REPAIRED
@@ -166,7 +166,7 @@ class Software:
             self.gain_mm[kept.device.pk] = 2
             done = self.look(serial, 2, "replace", at + number * HOUR, {})
             history_baselines.set_from_check(
-                world.past, kept, done, BASELINE_CODES, by=oduya, reason=SOFTWARE_REASON,
+                world.past, kept, done, ("penetration",), by=oduya, reason=SOFTWARE_REASON,
                 at=at + number * HOUR + 2 * HOUR,
             )  # fmt: skip
             history_baselines.keep_under_review(

@@ -12,6 +12,7 @@ from qa_tracker.documents import content as frozen
 from qa_tracker.documents.labels import ENGLISH
 from qa_tracker.records.queries import baselines as baseline_rows
 from qa_tracker.records.queries import checks, devices, faults, library, people, plans, sites, submissions
+from qa_tracker.records.queries.baselines import BaselineRow
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.devices import REGISTER, DeviceRow
 from qa_tracker.records.queries.faults import FaultRow
@@ -225,13 +226,27 @@ def _baselines(writer: Writer, device: DeviceRow) -> tuple[frozen.Baseline, ...]
             epoch=str(row.epoch),
             from_on=writer.day(row.valid_from),
             reason=row.reason,
-            key=", ".join(
-                part for part in (row.console_model, row.console_software, row.test_object) if part
-            ),
+            key=", ".join(part for part in (*_key(row), *_rests_on(row)) if part),
             until_on=writer.day(row.ended_at),
             set_by=row.set_by,
         )
         for row in baseline_rows.baselines_of(device.id)
+    )
+
+
+def _key(row: BaselineRow) -> tuple[str, ...]:
+    return row.console_model, row.console_software, row.test_object
+
+
+def _rests_on(row: BaselineRow) -> tuple[str, ...]:
+    """What else a reader has to know of a baseline: its set-ups, its last day, and that it waits for a decision."""
+    return (
+        _("mean of %(count)d set-ups") % {"count": row.count} if row.count else "",
+        _("runs out on %(day)s") % {"day": row.expires_on.isoformat()} if row.expires_on else "",
+        _("under review") if row.under_review else "",
+        _("tied to the object before by a reading of %(value)s") % {"value": row.overlap_entered}
+        if row.overlap_entered
+        else "",
     )
 
 

@@ -35,7 +35,7 @@ def ward(shared_ward):
 def typed(*texts, days=None):
     return [
         Chosen(text, TODAY - dt.timedelta(days=day))
-        for text, day in zip(texts, days or range(len(texts)), strict=False)
+        for text, day in zip(texts, days or range(len(texts))[::-1], strict=False)
     ]
 
 
@@ -95,7 +95,7 @@ def test_leaf_says_every_set_up(ward):
     yesterday = TODAY - dt.timedelta(days=1)
     assert told["set_ups"] == {
         "count": 2, "standard_deviation": "0.707",
-        "readings": [["8.0", TODAY.isoformat(), None], ["9.0", yesterday.isoformat(), None]],
+        "readings": [["8.0", yesterday.isoformat(), None], ["9.0", TODAY.isoformat(), None]],
     }  # fmt: skip
 
 

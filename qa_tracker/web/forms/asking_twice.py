@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 from django.http import HttpRequest, HttpResponse
@@ -38,7 +38,7 @@ class Signing:
 
 
 Propose = Callable[[Typed], Ready]
-More = Callable[[Refused], tuple[Field, ...]]
+More = Callable[[Refused, Sequence[Field]], tuple[Field, ...]]
 
 
 def ask_twice(
@@ -46,7 +46,7 @@ def ask_twice(
 ) -> HttpResponse:
     """Ask; show what was asked for as it would be recorded; sign it.
 
-    ``more`` gives the fields that a refusal asks for besides. Nothing is recorded before the signature, and what is
+    ``more`` puts in the fields that a refusal asks for besides. Nothing is recorded before the signature, and what is
     signed is what was shown.
     """
     if request.method != "POST":
@@ -71,9 +71,7 @@ def ask_twice(
 
 
 def _again(request: HttpRequest, asked: Asked, answer: Refused, more: More) -> HttpResponse:
-    known = {each.name for each in asked.fields}
-    added = tuple(each for each in more(answer) if each.name not in known)
-    return show_again(request, replace(asked, fields=(*asked.fields, *added)), answer)
+    return show_again(request, replace(asked, fields=more(answer, asked.fields)), answer)
 
 
 def _sign(

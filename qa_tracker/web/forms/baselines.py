@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -95,23 +96,21 @@ class Known:
         """The newest baseline in force of each series."""
         return rows.in_force(self.row.id)
 
-    def overlap_fields(self, names: set[str]) -> tuple[Field, ...]:
-        """What is asked of the test object before, for the series named; and why nothing could be read on it."""
-        asked = [each for each in self.series if each.name in names and each.key in self.in_force]
+    def with_overlaps(self, fields: Sequence[Field], names: set[str]) -> tuple[Field, ...]:
+        """The fields, with what is asked of the test object before, and why nothing could be read on it.
+
+        Each comes after the field of its series, or at the end.
+        """
+        asked = {each.name: self._overlap_field(each) for each in self._tied(names)}
         if not asked:
-            return ()
-        return (
-            *(self._overlap_field(each) for each in asked),
-            Field(
-                NO_OVERLAP,
-                _("Why nothing could be read on the object before"),
-                "area",
-                _(
-                    "Such as broken or lost. It is said in the ledger, and shown with the baseline ever after."
-                ),
-                required=False,
-            ),
-        )
+            return tuple(fields)
+        found: list[Field] = []
+        for field in fields:
+            found += [field, *filter(None, [asked.pop(field.name, None)])]
+        return (*found, *asked.values(), _no_overlap_field())
+
+    def _tied(self, names: set[str]) -> list[Series]:
+        return [each for each in self.series if each.name in names and each.key in self.in_force]
 
     def _overlap_field(self, each: Series) -> Field:
         told = {"series": each.label, "object": self.in_force[each.key].test_object}
@@ -123,17 +122,29 @@ class Known:
             required=False,
         )
 
-    def overlaps_refused(self, answer: Refused) -> tuple[Field, ...]:
-        """The fields that a refusal for want of an overlap asks for."""
-        return self.overlap_fields(
-            {each.field for each in answer.refusals if each.code == "baseline.no_overlap"}
-        )
+    def overlaps_refused(self, answer: Refused, fields: Sequence[Field]) -> tuple[Field, ...]:
+        """The fields, with those that a refusal for want of an overlap asks for."""
+        names = {each.field for each in answer.refusals if each.code == "baseline.no_overlap"}
+        missing = names - {field.name.removeprefix(OVERLAP) for field in fields if OVERLAP in field.name}
+        if not missing:
+            return tuple(fields)
+        return self.with_overlaps([each for each in fields if each.name != NO_OVERLAP], missing)
 
 
-def overlaps_typed(request: HttpRequest, known: Known) -> tuple[Field, ...]:
-    """The overlap fields that the form has shown already."""
+def overlaps_typed(request: HttpRequest, known: Known, fields: Sequence[Field]) -> tuple[Field, ...]:
+    """The fields, with the overlap fields that the form has shown already."""
     names = {name.removeprefix(OVERLAP) for name in request.POST if name.startswith(OVERLAP)}
-    return known.overlap_fields(names) if names else ()
+    return known.with_overlaps(fields, names) if names else tuple(fields)
+
+
+def _no_overlap_field() -> Field:
+    return Field(
+        NO_OVERLAP,
+        _("Why nothing could be read on the object before"),
+        "area",
+        _("Such as broken or lost. It is said in the ledger, and shown with the baseline ever after."),
+        required=False,
+    )
 
 
 def terms_fields() -> tuple[Field, ...]:

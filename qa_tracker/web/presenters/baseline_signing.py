@@ -97,9 +97,9 @@ def _steps(proposal: Proposal) -> list[tuple[str, str]]:
     before = next((row for row in proposal.earlier if row.id == change.before), None)
     if before is None:
         return [(_("Change"), _("none: it is the first of its series"))]
-    now = value_words(before.qualifier, before.entered, before.unit)
-    share = share_words(proposal.moved) if proposal.moved.used else ""
-    total = ", ".join(filter(None, (signed_words(change.cumulative, unit), share)))
+    parts = (value_words(before.qualifier, before.entered, before.unit), before.test_object)
+    now = ", ".join(part for part in parts if part)
+    total = ", ".join((signed_words(change.cumulative, unit), *share_words(proposal.moved)))
     if change.untold:
         total += ", " + _("as far as it can be told")
     return [

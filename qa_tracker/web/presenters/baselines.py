@@ -133,8 +133,8 @@ def _moved(row: BaselineRow, moved: Moved, by_id: Mapping[int, BaselineRow]) -> 
     if moved.change.before is None:
         return []
     said = [signed_words(moved.change.cumulative, row.unit)]
-    if row.ended_at is None and moved.used:
-        said.append(share_words(moved))
+    if row.ended_at is None:
+        said += share_words(moved)
     tied = by_id.get(row.overlap_of_id or 0)
     if tied is not None:
         said.append(object_words(moved, tied.test_object, row.overlap_entered, row.unit))
@@ -145,10 +145,12 @@ def _moved(row: BaselineRow, moved: Moved, by_id: Mapping[int, BaselineRow]) -> 
     return said
 
 
-def share_words(moved: Moved) -> str:
-    """The share of the first level's allowance that a change from acceptance uses."""
+def share_words(moved: Moved) -> list[str]:
+    """The share of the first level's allowance that a change from acceptance uses; nothing of none."""
+    if not moved.used or not Decimal(moved.used):
+        return []
     told = {"share": moved.used, "level": wording.level_word(moved.level)}
-    return _("%(share)s %% of what the %(level)s allows") % told
+    return [_("%(share)s %% of what the %(level)s allows") % told]
 
 
 def object_words(moved: Moved, on: str, overlap: str, unit: str) -> str:

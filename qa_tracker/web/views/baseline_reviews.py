@@ -91,8 +91,8 @@ def _options(row: DeviceRow, today: object) -> tuple[Option, ...]:
 
 def _words(each: ShownBaseline, epoch: ShownEpoch) -> str:
     """Series, value, what it was measured with, and how far the device is from acceptance."""
-    with_it = (epoch.row.console_model, epoch.row.console_software, epoch.row.test_object)
+    console = f"{epoch.row.console_model} {epoch.row.console_software}".strip()
     change = ", ".join(epoch.changes)
     told = _("from acceptance %(change)s") % {"change": change} if change else ""
-    parts = (each.name, each.where, epoch.value, " ".join(part for part in with_it if part), told)
+    parts = (each.name, each.where, epoch.value, console, epoch.row.test_object, told)
     return ", ".join(part for part in parts if part)

@@ -76,25 +76,28 @@ def _asked(
         forms.show_button(),
         reverse("device", args=[known.row.uid]),
         known.row.label,
-        (
-            Field(
-                "setups",
-                _("Readings on record"),
-                "ticks",
-                _("Choose those that were set up anew, on different days."),
-                [_option(each, zone) for each in stored],
-                required=False,
+        forms.overlaps_typed(
+            request,
+            known,
+            (
+                Field(
+                    "setups",
+                    _("Readings on record"),
+                    "ticks",
+                    _("Choose those that were set up anew, on different days."),
+                    [_option(each, zone) for each in stored],
+                    required=False,
+                ),
+                Field(
+                    "typed",
+                    _("Further values"),
+                    "area",
+                    _("A day and a value on each line, such as 2030-01-31 8.5."),
+                    required=False,
+                ),
+                forms.object_field(request, at),
+                *forms.terms_fields(),
             ),
-            Field(
-                "typed",
-                _("Further values"),
-                "area",
-                _("A day and a value on each line, such as 2030-01-31 8.5."),
-                required=False,
-            ),
-            forms.object_field(request, at),
-            *forms.terms_fields(),
-            *forms.overlaps_typed(request, known),
         ),
         lead=series.label,
         notes=(

@@ -36,17 +36,22 @@ def from_check(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
         forms.show_button(),
         reverse("device", args=[uid]),
         row.label,
-        (
-            Field(
-                "submission",
-                _("Which check"),
-                "radio",
-                _("Every number in it that is judged against a baseline becomes the baseline of its series."),
-                options,
-                values=(options[0][0],) if options else (),
+        forms.overlaps_typed(
+            request,
+            known,
+            (
+                Field(
+                    "submission",
+                    _("Which check"),
+                    "radio",
+                    _(
+                        "Every number in it that is judged against a baseline becomes the baseline of its series."
+                    ),
+                    options,
+                    values=(options[0][0],) if options else (),
+                ),
+                *forms.terms_fields(),
             ),
-            *forms.terms_fields(),
-            *forms.overlaps_typed(request, known),
         ),
         lead=row.label,
         notes=() if options else (_("No check of this device is submitted yet."),),
@@ -94,11 +99,14 @@ def by_value(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
         forms.show_button(),
         reverse("device", args=[uid]),
         row.label,
-        (
-            *(_value_field(known, each) for each in known.series),
-            forms.object_field(request, at),
-            *forms.terms_fields(),
-            *forms.overlaps_typed(request, known),
+        forms.overlaps_typed(
+            request,
+            known,
+            (
+                *(_value_field(known, each) for each in known.series),
+                forms.object_field(request, at),
+                *forms.terms_fields(),
+            ),
         ),
         lead=row.label,
         notes=(

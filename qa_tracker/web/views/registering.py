@@ -8,6 +8,7 @@ from django.http import HttpRequest, HttpResponse
 from django.urls import reverse
 from django.utils.timezone import now
 from django.utils.translation import gettext as _
+from django.utils.translation import ngettext
 
 from qa_tracker.services import devices, guards
 from qa_tracker.web import sight
@@ -130,14 +131,15 @@ def software(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
         ),
         notes=(
             _(
-                "Test before and after on one day, with the same object and preset. Baselines measured with the "
-                "version before stay in force and are named on every verdict until they are replaced."
+                "Test before and after on one day, with the same object and preset. Baselines that were measured on "
+                "this scanner come under review: still compared, and every verdict says so, until a physicist keeps "
+                "or replaces them."
             ),
         ),
     )
 
     def act(typed: Typed) -> Done:
-        devices.record_software(
+        marked = devices.record_software(
             scanner=uid,
             version=typed.text("version", 60),
             options=typed.words("options"),
@@ -145,6 +147,11 @@ def software(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
             actor=request.user,
             at=at,
         )
-        return Done(_("The software version is recorded."), asked.back)
+        said = ngettext(
+            "The software version is recorded; %(count)d baseline is under review.",
+            "The software version is recorded; %(count)d baselines are under review.",
+            len(marked),
+        )
+        return Done(said % {"count": len(marked)}, asked.back)
 
     return ask(request, asked, act)
