@@ -11,6 +11,7 @@ from django.utils.translation import gettext as _
 from django.utils.translation import ngettext
 
 from qa_tracker.core.decimals import from_scaled, places_of, plain, round_half_even
+from qa_tracker.services import wording
 from qa_tracker.services.baseline_proposals import Proposal
 from qa_tracker.services.baseline_rows import named
 from qa_tracker.services.baseline_setups import Figures, figures_of
@@ -53,7 +54,7 @@ class ShownProposal:
     where: str
     value: str
     facts: tuple[Fact, ...]
-    beyond: bool
+    beyond: str
     figures: ShownFigures | None
 
 
@@ -62,15 +63,24 @@ def about_to_be_signed(proposal: Proposal) -> ShownProposal:
     setting, spec = proposal.setting, proposal.asked.spec
     aperture = setting.aperture.name if setting.aperture else ""
     condition = setting.condition.name if setting.condition else ""
-    beyond = bool(proposal.moved.used) and Decimal(proposal.moved.used) > WHOLE
     return ShownProposal(
         spec.name,
         place_of(aperture, condition),
         value_words(setting.qualifier, setting.exact.entered, spec.unit),
         tuple(_facts(proposal)),
-        beyond,
+        _beyond(proposal),
         shown_figures(proposal) if setting.setups else None,
     )
+
+
+def _beyond(proposal: Proposal) -> str:
+    """A warning where the change from acceptance is more than the first level allows."""
+    if not proposal.moved.used or Decimal(proposal.moved.used) <= WHOLE:
+        return ""
+    return _(
+        "Since acceptance the device has changed by more than the %(level)s allows. Against the new baseline this "
+        "will not show any more: sign only if it is known why."
+    ) % {"level": wording.level_word(proposal.moved.level)}
 
 
 def _facts(proposal: Proposal) -> list[Fact]:
