@@ -156,7 +156,7 @@ def last_reading(asked: Asked) -> Reading | None:
         measurand__code=asked.spec.code,
         aperture=asked.aperture,
         condition=asked.condition,
-    )
+    ).exclude(submission__check_of__state="void")
     return found.select_related("submission__test_object").order_by("-measured_at", "-id").first()
 
 

@@ -5,6 +5,8 @@ from __future__ import annotations
 import datetime as dt
 from collections.abc import Sequence
 
+from django.db.models import Q
+
 from qa_tracker.core.decimals import Exact, parse
 from qa_tracker.core.errors import Conflict
 from qa_tracker.records.models import Baseline, Reading, TestObject
@@ -82,7 +84,7 @@ def _stored(asked: Asked, others: Sequence[Baseline], taken_at: dt.datetime) -> 
         qualifier="=",
         submission__test_object__in=[each.test_object_id for each in others],
         measured_at__range=(taken_at - within, taken_at + within),
-    ).exclude(scaled=None)
+    ).exclude(Q(scaled=None) | Q(submission__check_of__state="void"))
     rows = list(found.select_related("submission").order_by("-id"))
     if not rows:
         return None

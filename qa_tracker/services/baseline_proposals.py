@@ -209,6 +209,9 @@ def known_measurands(site_id: int | None) -> dict[str, MeasurandSpec]:
 
 def propose(around: Around, wanted: Sequence[Wanted]) -> Proposed:
     """What setting these would write and change, or every refusal at once."""
+    series = [(each.spec.code, *each.part) for each in wanted]
+    if twice := next((key for key in series if series.count(key) > 1), None):
+        raise Invalid("baseline.series_twice", field=twice[0], measurand=around.specs[twice[0]].name)
     found = all_or_refused(wanted, lambda each: _proposal(around, each))
     return Proposed(around.device, around.reason, around.role, tuple(found))
 

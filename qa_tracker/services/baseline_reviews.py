@@ -11,14 +11,18 @@ from qa_tracker.core.errors import Conflict, Invalid
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Baseline, Person
 from qa_tracker.services.baseline_limits import moved_to, refuse_beyond
-from qa_tracker.services.baseline_proposals import (
-    FOR_GOOD,
-    Around,
-    Proposal,
-    Proposed,
-    around,
+from qa_tracker.services.baseline_proposals import FOR_GOOD, Around, around
+from qa_tracker.services.baseline_rows import (
+    Moved,
+    Setting,
+    SetUp,
+    Source,
+    change_of,
+    put_epoch,
+    setups_of,
+    sign,
+    told_of,
 )
-from qa_tracker.services.baseline_rows import Setting, SetUp, Source, change_of, put_epoch, setups_of, sign
 from qa_tracker.services.baselines import source_of
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.guards import check_password
@@ -61,11 +65,12 @@ def keep(
     row = find_device(actor, device, at)
     known = around(row, reason, FOR_GOOD, actor, at)
     found = _under_review(known, baselines)
+    settings = [_setting(known, each) for each in found]
+    told = [_told(known, each, setting) for each, setting in zip(found, settings, strict=True)]
     check_password(actor, password)
-    proposed = Proposed(row, known.reason, known.role, tuple(_proposal(known, each) for each in found))
     with ledger.command("baseline.kept", actor=actor, at=at, reason=known.reason) as act:
-        made = [put_epoch(act, each.setting, each.standing) for each in proposed.proposals]
-        sign(act, row, proposed.told(), actor, proposed.role, proposed.reason)
+        made = [put_epoch(act, each, known.standing[each.series]) for each in settings]
+        sign(act, row, told, actor, known.role, known.reason)
     return made
 
 
@@ -81,12 +86,9 @@ def _under_review(known: Around, uids: Sequence[uuid.UUID]) -> list[Baseline]:
     return found
 
 
-def _proposal(known: Around, row: Baseline) -> Proposal:
-    spec = known.specs.get(row.measurand.code)
-    if spec is None:
-        raise Invalid("baseline.measurand_unknown", field=row.measurand.code, measurand=row.measurand.code)
+def _setting(known: Around, row: Baseline) -> Setting:
     now_with = source_of(known.device, None)
-    setting = kept_setting(
+    return kept_setting(
         row,
         now_with.console_model or row.console_model,
         now_with.console_software or row.console_software,
@@ -94,8 +96,15 @@ def _proposal(known: Around, row: Baseline) -> Proposal:
         known.actor,
         setups_of([row.pk]).get(row.pk, ()),
     )
-    asked = known.asked(spec, (row.aperture, row.condition))
-    refuse_beyond(asked, setting.exact, row.qualifier, row.test_object)
+
+
+def _told(known: Around, row: Baseline, setting: Setting) -> dict[str, object]:
+    """As leaf and signature say it; a measurand that no adopted procedure asks for any more has no limits."""
     earlier = known.earlier[setting.series]
-    moved = moved_to(asked, change_of(setting, earlier), earlier[0].value, earlier[-1])
-    return Proposal(asked, setting, known.standing[setting.series], earlier, moved)
+    moved = Moved(change_of(setting, earlier))
+    spec = known.specs.get(row.measurand.code)
+    if spec is not None:
+        asked = known.asked(spec, (row.aperture, row.condition))
+        refuse_beyond(asked, setting.exact, row.qualifier, row.test_object)
+        moved = moved_to(asked, moved.change, earlier[0].value, earlier[-1])
+    return told_of(setting, 1 + max(each.epoch for each in earlier), moved)

@@ -5,9 +5,19 @@ from __future__ import annotations
 import datetime as dt
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
+from decimal import Decimal
+from fractions import Fraction
 
 from qa_tracker.core.baselines import summary
-from qa_tracker.core.decimals import Exact, from_scaled, parse, plain, round_half_even
+from qa_tracker.core.decimals import (
+    Exact,
+    from_scaled,
+    parse,
+    places_of,
+    plain,
+    round_half_even,
+    scaled_at,
+)
 from qa_tracker.core.epochs import Change, Epoch, changes
 from qa_tracker.records import ledger
 from qa_tracker.records.models import (
@@ -105,6 +115,14 @@ class Moved:
     used: str = ""
     level: str = ""
     verdict: str = ""
+
+
+def exact_mean(values: Sequence[Decimal], resolution: str) -> Exact:
+    """The mean, rounded once, half-even, to one more place than the measurand's resolution."""
+    places = places_of(Decimal(resolution)) + 1
+    total = sum((Fraction(value) for value in values), Fraction(0))
+    mean = round_half_even(total / len(values), from_scaled(1, places))
+    return Exact(plain(mean), scaled_at(mean, places), places)
 
 
 def setups_of(baseline_ids: Collection[int]) -> dict[int, tuple[SetUp, ...]]:

@@ -7,7 +7,6 @@ import uuid
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from decimal import Decimal
-from fractions import Fraction
 
 from qa_tracker.core.baselines import (
     LEAST_FOR_OUTLIERS,
@@ -17,7 +16,7 @@ from qa_tracker.core.baselines import (
     spread_floor,
     summary,
 )
-from qa_tracker.core.decimals import Exact, from_scaled, parse, places_of, plain, round_half_even, scaled_at
+from qa_tracker.core.decimals import Exact, parse, plain
 from qa_tracker.core.errors import Conflict, Invalid
 from qa_tracker.core.library_specs import MeasurandSpec
 from qa_tracker.core.schedule import local_day
@@ -34,7 +33,7 @@ from qa_tracker.services.baseline_proposals import (
     around,
     propose,
 )
-from qa_tracker.services.baseline_rows import SetUp, Source
+from qa_tracker.services.baseline_rows import SetUp, Source, exact_mean
 from qa_tracker.services.baselines import (
     number_asked,
     part_of,
@@ -214,14 +213,6 @@ def _source(asked: Asked, rows: Sequence[Submission], on: TestObject | None) -> 
     if len(keys) > 1 or len(objects) > 1:
         raise Conflict("baseline.setups_mixed", field="setups")
     return source_of_submissions(rows)
-
-
-def exact_mean(values: Sequence[Decimal], resolution: str) -> Exact:
-    """The mean, rounded once, half-even, to one more place than the measurand's resolution."""
-    places = places_of(Decimal(resolution)) + 1
-    total = sum((Fraction(value) for value in values), Fraction(0))
-    mean = round_half_even(total / len(values), from_scaled(1, places))
-    return Exact(plain(mean), scaled_at(mean, places), places)
 
 
 def figures_of(proposal: Proposal) -> Figures:

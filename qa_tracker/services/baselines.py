@@ -6,8 +6,10 @@ import datetime as dt
 import uuid
 from collections.abc import Mapping, Sequence
 
+from django.db import IntegrityError
+
 from qa_tracker.core import decimals
-from qa_tracker.core.errors import Invalid
+from qa_tracker.core.errors import Conflict, Invalid
 from qa_tracker.core.library_specs import MeasurandSpec
 from qa_tracker.records import ledger
 from qa_tracker.records.models import (
@@ -35,7 +37,7 @@ from qa_tracker.services.baseline_proposals import (
     known_measurands,
     propose,
 )
-from qa_tracker.services.baseline_rows import Source, put_epoch, sign
+from qa_tracker.services.baseline_rows import Source, exact_mean, put_epoch, sign
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.finding import test_object as find_test_object
 from qa_tracker.services.guards import check_password, check_shown
@@ -131,10 +133,15 @@ def propose_submission(
         raise Invalid("baseline.values_missing", field="submission")
     known = around(device, reason, terms, actor, at)
     readings = row.readings.select_related("measurand", "aperture", "condition", "submission__test_object")
-    taken = [reading for reading in readings if reading.scaled is not None and _compared(known, reading)]
+    taken: dict[tuple[int, int | None, int | None], list[Reading]] = {}
+    for reading in readings.order_by("id"):
+        if reading.scaled is not None and _compared(known, reading):
+            series = (reading.measurand_id, reading.aperture_id, reading.condition_id)
+            taken.setdefault(series, []).append(reading)
     if not taken:
         raise Invalid("baseline.values_missing", field="submission")
-    return propose(known, [_taken(known, reading, source_of_submissions([row])) for reading in taken])
+    source = source_of_submissions([row])
+    return propose(known, [_taken(known, repeats, source) for repeats in taken.values()])
 
 
 def _compared(known: Around, reading: Reading) -> bool:
@@ -142,11 +149,16 @@ def _compared(known: Around, reading: Reading) -> bool:
     return spec is not None and compared(spec, known.adopted)
 
 
-def _taken(known: Around, reading: Reading, source: Source) -> Wanted:
-    spec = known.specs[reading.measurand.code]
-    exact = decimals.Exact(reading.entered, reading.scaled or 0, reading.places or 0)
-    part = (reading.aperture, reading.condition)
-    return Wanted(spec, part, exact, reading.qualifier, source, reading.measured_at, reading)
+def _taken(known: Around, repeats: Sequence[Reading], source: Source) -> Wanted:
+    """The reading of a series, or the mean of its repeats where each is a number and no bound."""
+    first = repeats[0]
+    spec = known.specs[first.measurand.code]
+    found = [decimals.Exact(each.entered, each.scaled or 0, each.places or 0) for each in repeats]
+    exact = found[0]
+    if len(found) > 1 and all(each.qualifier == "=" for each in repeats):
+        exact = exact_mean([each.decimal for each in found], spec.resolution)
+    part = (first.aperture, first.condition)
+    return Wanted(spec, part, exact, first.qualifier, source, first.measured_at, first)
 
 
 def put_signed(
@@ -160,9 +172,13 @@ def put_signed(
     check_password(actor, password)
     if shown_sha256 is not None:
         check_shown(shown_sha256, proposed.shown_sha256)
-    with ledger.command("baseline.set", actor=actor, at=at, reason=proposed.reason) as act:
-        found = [put_epoch(act, each.setting, each.standing) for each in proposed.proposals]
-        sign(act, proposed.device, proposed.told(), actor, proposed.role, proposed.reason)
+    try:
+        with ledger.command("baseline.set", actor=actor, at=at, reason=proposed.reason) as act:
+            found = [put_epoch(act, each.setting, each.standing) for each in proposed.proposals]
+            sign(act, proposed.device, proposed.told(), actor, proposed.role, proposed.reason)
+    except IntegrityError as error:
+        # The epoch was taken by somebody else meanwhile.
+        raise Conflict("record.changed_meanwhile") from error
     return found
 
 

@@ -20,11 +20,11 @@ from qa_tracker.services.baseline_rows import (
     Tie,
     change_of,
     epoch_of,
+    exact_mean,
     put_epoch,
     sign,
     told_of,
 )
-from qa_tracker.services.baseline_setups import exact_mean
 from qa_tracker.services.baselines import source_of_submissions
 from qa_tracker.services.entries import Entry, read_entry
 from qa_tracker.services.history import Done, Kept, Past
@@ -64,7 +64,7 @@ def set_from_check(
     wanted = [
         _Wanted(one.item, _typed(one, texts or {}) or one.exact, one.entry.qualifier, tied=tied)
         for one in done.judged.items
-        if one.item.spec.code in codes and one.exact is not None
+        if one.item.spec.code in codes and one.exact is not None and one.item.repeat == 1
     ]
     return _set(past, kept, wanted, source_of_submissions([done.submission]), by, reason, at)
 

@@ -15,6 +15,9 @@ BASELINES: Final = {
         "The baseline of %(measurand)s stands on %(was)s, and depths don't pass to %(now)s by themselves. Read both "
         "objects within %(days)s days, or say why the one before could not be read."
     ),
+    "baseline.series_twice": N_(
+        "“%(measurand)s” is given twice for the same part of the device. Give one value for each series."
+    ),
     "baseline.expires_early": N_(
         "%(day)s has come already. Choose a later day for the baseline to run out, or leave it empty."
     ),

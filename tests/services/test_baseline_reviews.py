@@ -145,7 +145,7 @@ def test_set_ups_and_the_last_day_are_kept_with_the_value(ward):
     )  # fmt: skip
     event(ward)
     (row,) = keep(ward, made)
-    assert [each.entered for each in row.setups.order_by("position")] == ["8.0", "8.5"]
+    assert [each.entered for each in row.setups.order_by("position")] == ["8.5", "8.0"]
     assert (row.expires_on, row.entered) == (until, "8.25")
 
 
