@@ -210,7 +210,13 @@ def _is_of_shown(given: Parameters) -> bool:
 def _probability(given: Parameters) -> list[str]:
     if "probability" not in given:
         return []
-    return [_("The probability of conformity is %(probability)s.") % {"probability": given["probability"]}]
+    told = {"probability": given["probability"]}
+    # Four decimals: nothing measured is certain, so neither 0 nor 1 is said.
+    if given["probability"] == "0.0000":
+        return [_("The probability of conformity is below 0.0001.")]
+    if given["probability"] == "1.0000":
+        return [_("The probability of conformity is above 0.9999.")]
+    return [_("The probability of conformity is %(probability)s.") % told]
 
 
 def _within(given: Parameters, says: str) -> list[str]:

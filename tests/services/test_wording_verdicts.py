@@ -349,3 +349,11 @@ def test_number_and_unit_are_never_parted_at_a_line_end():
     found = judge(LOSS, value="145.4", kind="number", baseline="152.0", unit="mm")
     told = verdict_sentence(found.code, found.parameters, found.verdict, found.level)
     assert told.startswith("145.4\N{NO-BREAK SPACE}mm is 6.6\N{NO-BREAK SPACE}mm less")
+
+
+@pytest.mark.parametrize(("value", "words"), [("100", "above 0.9999"), ("900", "below 0.0001")])
+def test_probability_is_never_said_to_be_certain(value, words):
+    limit = from_json({"basis": "none", "direction": "above", "suspension": {"absolute": "500"}})
+    found = judge(limit, value=value, kind="number", uncertainty="10")
+    told = verdict_sentence(found.code, found.parameters, found.verdict, found.level or "")
+    assert told.endswith(f"The probability of conformity is {words}.")

@@ -210,6 +210,11 @@ def attempts_of(check_id: int, until: dt.datetime | None = None) -> list[NotTest
     return [_not_tested_row(row) for row in found.select_related("by").order_by("id")]
 
 
+def _instrument_words(submission: Submission) -> str:
+    used = submission.instrument
+    return f"{used.maker} {used.model} {used.serial}" if used else ""
+
+
 def submissions_of(check_ids: list[int], until: dt.datetime | None = None) -> dict[int, list[SubmissionRow]]:
     """Submissions of checks, oldest first, up to the moment they were recorded."""
     found = Submission.objects.filter(check_of_id__in=check_ids).order_by("check_of_id", "number")
@@ -239,7 +244,7 @@ def submissions_of(check_ids: list[int], until: dt.datetime | None = None) -> di
                 each.measured_at,
                 each.recorded_at,
                 f"{each.test_object.name} {each.test_object.serial}" if each.test_object else "",
-                f"{each.instrument.kind} {each.instrument.serial}" if each.instrument else "",
+                _instrument_words(each),
                 f"{each.console.model} {each.console.serial}" if each.console else "",
                 each.console_software,
                 each.port,

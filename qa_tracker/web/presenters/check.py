@@ -23,6 +23,7 @@ class ShownSubmission:
     edition: EditionRow
     readings: tuple[ShownReading, ...]
     partial_reason: str
+    decided_by: str = ""
 
 
 def shown_submission(row: SubmissionRow, edition: EditionRow) -> ShownSubmission:
@@ -38,7 +39,16 @@ def shown_submission(row: SubmissionRow, edition: EditionRow) -> ShownSubmission
         readings.append(_with_reason(shown, untested) if untested else shown)
     readings += [_untested(one, edition.spec) for one in reasons.values()]
     reason = wording.reason_word(row.partial_reason) if row.partial_reason else ""
-    return ShownSubmission(row, edition, tuple(readings), reason)
+    return ShownSubmission(row, edition, tuple(readings), reason, _decided_by(row, tuple(readings)))
+
+
+def _decided_by(row: SubmissionRow, readings: tuple[ShownReading, ...]) -> str:
+    """Which reading made the verdict of the whole; of a conforming one every reading did."""
+    if row.verdict in ("", "conforming"):
+        return ""
+    made = (row.verdict, row.verdict_level)
+    found = (each for each in readings if each.shown and (each.shown.verdict, each.shown.level) == made)
+    return next((", ".join(filter(None, (each.name, each.where))) for each in found), "")
 
 
 def _with_reason(shown: ShownReading, untested: NotTestedRow) -> ShownReading:
