@@ -198,3 +198,12 @@ def test_baseline_runs_out_on_the_day_typed_and_not_in_the_past(ward):
     assert refused(ward, typed("8.0", "8.5"), terms=Terms(expires_on=TODAY)) == "baseline.expires_early"
     later = TODAY + dt.timedelta(days=365)
     assert put(ward, typed("8.0", "8.5"), terms=Terms(expires_on=later)).expires_on == later
+
+
+def test_past_moment_has_the_baseline_of_then_with_its_set_ups(ward):
+    put(ward, typed("8.0", "8.5"))
+    before = now()
+    put(ward, typed("9.0", "9.5", "9.5"))
+    for moment, count, entered in ((before, 2, "8.25"), (now(), 3, "9.33"), (None, 3, "9.33")):
+        ((row,),) = rows.choices_in_force(ward.probe.id, moment).values()
+        assert (row.count, row.entered, row.aperture, row.set_by) == (count, entered, "main", "Maren Oduya")
