@@ -63,6 +63,11 @@ QUALIFIED_CHANGE: Final = {
     ("=", "equal"): N_("%(value)s is the same as %(reference)s"),
 }
 RULES: Final = {"guarded": N_("guarded acceptance"), "zones": N_("zones with an indeterminate verdict")}
+DECIDED_BY: Final = {
+    "simple": N_("simple acceptance"),
+    "guarded": N_("guarded acceptance"),
+    "zones": N_("three zones"),
+}
 SHARES: Final = {
     "=": N_("It uses %(used)s of %(whose)s."),
     ">": N_("It uses more than %(used)s of %(whose)s."),
@@ -207,23 +212,40 @@ def _is_of_shown(given: Parameters) -> bool:
     return of > 0 and abs(100 * share / of - Decimal(given["used"])) <= Decimal("0.1")
 
 
+def _likelihood(given: Parameters) -> str:
+    """The probability of conformity to four decimals; nothing measured is certain, so neither 0 nor 1 is said."""
+    told = given["probability"]
+    bounds = {"0.0000": _("below 0.0001"), "1.0000": _("above 0.9999")}
+    return bounds.get(told, told)
+
+
 def _probability(given: Parameters) -> list[str]:
     if "probability" not in given:
         return []
-    told = {"probability": given["probability"]}
-    # Four decimals: nothing measured is certain, so neither 0 nor 1 is said.
-    if given["probability"] == "0.0000":
-        return [_("The probability of conformity is below 0.0001.")]
-    if given["probability"] == "1.0000":
-        return [_("The probability of conformity is above 0.9999.")]
-    return [_("The probability of conformity is %(probability)s.") % told]
+    return [_("The probability of conformity is %(probability)s.") % {"probability": _likelihood(given)}]
+
+
+def _certainty(given: Parameters) -> list[str]:
+    """The probability, with the rule and the uncertainty where the sentence has not named them."""
+    if "probability" not in given:
+        return []
+    told = {
+        "rule": _(DECIDED_BY[given.get("rule", "simple")]),
+        "uncertainty": _size(given, "uncertainty"),
+        "probability": _likelihood(given),
+    }
+    sentence = _(
+        "Decided by %(rule)s; with the expanded uncertainty of %(uncertainty)s (k = 2) the probability of "
+        "conformity is %(probability)s."
+    )
+    return [sentence % told]
 
 
 def _within(given: Parameters, says: str) -> list[str]:
     told = _judged(given, says) + _share(given)
     if given["strict"] == "yes" and Decimal(given["departure"]) == Decimal(given["allowance"]):
         told.append(_("Exactly the limit conforms."))
-    return told + _probability(given)
+    return told + _certainty(given)
 
 
 def _within_open(given: Parameters, says: str) -> list[str]:
@@ -265,7 +287,7 @@ def _open_baseline(given: Parameters, says: str) -> list[str]:
 
 
 def _beyond(given: Parameters, says: str) -> list[str]:
-    return _judged(given, says) + _share(given) + _probability(given)
+    return _judged(given, says) + _share(given) + _certainty(given)
 
 
 def _guard_band(given: Parameters, says: str) -> list[str]:

@@ -356,4 +356,6 @@ def test_probability_is_never_said_to_be_certain(value, words):
     limit = from_json({"basis": "none", "direction": "above", "suspension": {"absolute": "500"}})
     found = judge(limit, value=value, kind="number", uncertainty="10")
     told = verdict_sentence(found.code, found.parameters, found.verdict, found.level or "")
-    assert told.endswith(f"The probability of conformity is {words}.")
+    assert told.endswith(
+        f"with the expanded uncertainty of 10 (k = 2) the probability of conformity is {words}."
+    )
