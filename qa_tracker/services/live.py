@@ -3,14 +3,23 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from typing import Protocol
 
 from qa_tracker.core.errors import DomainError, SeveralInvalid
 from qa_tracker.services.entries import Entry
-from qa_tracker.services.judging import Judged, judge_all
-from qa_tracker.services.sheets import Sheet
+from qa_tracker.services.judging import Asked, Judged, judge_all
 
 
-def judge_what_can_be(laid: Sheet, entries: Mapping[str, Entry]) -> tuple[Judged, tuple[DomainError, ...]]:
+class Laid(Protocol):
+    """What is laid out for entering: a check's sheet, or an edition that is tried."""
+
+    @property
+    def asked(self) -> Asked:
+        """What is asked, and under what it is judged."""
+        ...
+
+
+def judge_what_can_be(laid: Laid, entries: Mapping[str, Entry]) -> tuple[Judged, tuple[DomainError, ...]]:
     """Judge the fields that are filled in.
 
     Returns
@@ -27,7 +36,7 @@ def judge_what_can_be(laid: Sheet, entries: Mapping[str, Entry]) -> tuple[Judged
     return judged, tuple(refused)
 
 
-def _refusals(laid: Sheet, entries: Mapping[str, Entry]) -> tuple[DomainError, ...]:
+def _refusals(laid: Laid, entries: Mapping[str, Entry]) -> tuple[DomainError, ...]:
     try:
         judge_all(laid.asked, entries, whole=True)
     except SeveralInvalid as several:
