@@ -23,7 +23,7 @@ from qa_tracker.core.procedure_differences import procedure_differences
 from qa_tracker.records.models import Edition, EditionDraft, Person
 from qa_tracker.records.queries import edition_drafts as rows
 from qa_tracker.records.queries import library as published_rows
-from qa_tracker.records.queries.edition_drafts import DraftRow
+from qa_tracker.records.queries.edition_drafts import DraftRow, EditionName
 from qa_tracker.services import cautions, library
 from qa_tracker.services.guards import check_may
 
@@ -143,6 +143,11 @@ def discard(*, procedure: uuid.UUID, actor: Person, at: dt.datetime) -> None:
     """Throw the actor's draft away. Writes EditionDraft."""
     check_may(actor, "procedure.adopt", None, at)
     EditionDraft.objects.filter(procedure__uid=procedure, person=actor).delete()
+
+
+def editions(procedure: uuid.UUID) -> list[EditionName]:
+    """The published editions of a procedure, the newest first."""
+    return rows.editions_of(procedure)
 
 
 def looked_through(writing: Writing) -> Found:

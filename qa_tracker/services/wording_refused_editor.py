@@ -36,6 +36,19 @@ EDITOR: Final = {
         "%(field)s: “%(measurand)s” already stands for a measurand of the kind %(kind)s, in %(unit)s, and one code "
         "means one quantity everywhere. Keep its kind and unit, or use another code."
     ),
+    "edition_draft.not_a_code": N_(
+        "%(field)s can't be “%(value)s”. Use small letters, digits and underscores, and begin with a letter."
+    ),
+    "edition_draft.not_a_rule": N_(
+        "“%(value)s” is no recurrence. Give a whole number, or a rule such as FREQ=MONTHLY;BYDAY=1MO."
+    ),
+    "edition_draft.kind_lacks": N_(
+        "%(field)s is empty, which a measurand of the kind %(kind)s can't do without. Fill it in, or choose another "
+        "kind."
+    ),
+    "edition_draft.empty": N_("%(field)s is empty. Fill it in."),
+    "edition_draft.no_step": N_("There is no step. Write what is to be done, a step at a time."),
+    "edition_draft.no_measurand": N_("Nothing is measured. Add a measurand."),
     "edition_draft.no_document": N_("There is no document. Paste the whole edition as JSON."),
     "edition_draft.not_json": N_(
         "The document can't be read: line %(line)s, column %(column)s. Correct the JSON there."

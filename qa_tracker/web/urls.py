@@ -10,6 +10,7 @@ urlpatterns = [
     path("sign-in/", sign_in.SignIn.as_view(), name="sign-in"),
     path("sign-out/", sign_in.SignOut.as_view(), name="sign-out"),
     path("health", health.show, name="health"),
+    path("criteria/procedures/", include("qa_tracker.web.urls_procedures")),
     path("", include("qa_tracker.web.urls_checks")),
     path("", include("qa_tracker.web.urls_register")),
     path("", include("qa_tracker.web.urls_baselines")),

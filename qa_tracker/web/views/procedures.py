@@ -15,6 +15,7 @@ from django.utils.translation import gettext as _
 from qa_tracker.core.errors import NotFound
 from qa_tracker.records.queries import library as rows
 from qa_tracker.records.queries import sites
+from qa_tracker.records.queries.edition_drafts import drafts_of, editions_of, find_draft
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.services import cautions, finding, guards, library
 from qa_tracker.web.forms.adopting import adopting, adopting_site
@@ -30,6 +31,7 @@ from qa_tracker.web.presenters.library import (
     recurrence_of,
     who_words,
 )
+from qa_tracker.web.presenters.procedure_differences import shown_differences
 
 
 def index(request: HttpRequest) -> HttpResponse:
@@ -39,6 +41,8 @@ def index(request: HttpRequest) -> HttpResponse:
     context = {
         "adopted": [each for each in lines if each.adopted],
         "others": [each for each in lines if not each.adopted],
+        "may_write": guards.may(request.user, "procedure.adopt", None, now()),
+        "drafts": drafts_of(request.user.pk),
     }
     return render(request, "procedures.html", context)
 
@@ -76,8 +80,20 @@ def _page(request: HttpRequest, row: EditionRow, asked: Asked | None, at: dt.dat
         "cautions": cautions.texts(row.spec.cautions),
         "adoptions": adoptions_in_words(own, held),
         "adopting": asked,
+        "may_write": guards.may(request.user, "procedure.adopt", None, at),
+        "draft": find_draft(row.procedure_uid, request.user.pk),
+        "others": [each for each in editions_of(row.procedure_uid) if each.uid != row.uid],
     }
     return render(request, "edition.html", context, status=422 if asked and asked.refused else 200)
+
+
+def compare(request: HttpRequest, old: uuid.UUID, new: uuid.UUID) -> HttpResponse:
+    """Two editions of a procedure side by side."""
+    before, after = _edition(old), _edition(new)
+    if before.procedure_id != after.procedure_id:
+        raise NotFound("edition.unknown")
+    laid = shown_differences(before.spec, after.spec)
+    return render(request, "editions_compare.html", {"old": before, "new": after, "laid": laid})
 
 
 def adopt(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
