@@ -156,6 +156,15 @@ TABLE = [
         f"{HD} adopted the criteria “tg1”, edition 1998, for AG.",
     ),
     (
+        "uncertainty.stated",
+        {"measurand": "penetration", "site": None, "kind": "expanded", "source": "Certificate 7"}, "",
+        f"{HD} stated the uncertainty of penetration for the whole group (expanded): Certificate 7.",
+    ),
+    (
+        "uncertainty.ended", {"measurand": "penetration", "site": "AG"}, "New object",
+        f"{HD} ended the stated uncertainty of penetration for AG: New object.",
+    ),
+    (
         "criteria.ended", {"set": "tg1", "edition": "1998", "site": None}, "The limits are from memory.",
         f"{HD} ended the criteria “tg1”, edition 1998, for the whole group: The limits are from memory.",
     ),

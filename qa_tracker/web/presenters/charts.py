@@ -98,6 +98,8 @@ def _levels(
     return tuple(
         Line(level, origin + sign * _size(limit, origin), start, end)
         for level, limit in of.levels()
+        # What a device's own spread allows is worked out of its set-ups, reading by reading.
+        if not limit.of_own_spread
         for sign in signs
     )
 
