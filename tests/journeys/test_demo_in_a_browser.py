@@ -108,6 +108,25 @@ def test_story_is_told_on_the_devices_page(visit, serial, words):
         assert re.search(re.escape(word), text, re.IGNORECASE), word
 
 
+def test_formula_shows_what_it_gives_and_where_it_is_wrong_as_one_types(visit):
+    page = visit("oduya", NARROW)
+    page.goto("/criteria/procedures/")
+    page.locator("main a").filter(has_text="After repair, software, move or swap").first.click()
+    page.get_by_role("button", name="Write the next edition").click()
+    page.get_by_role("link", name="Depth of penetration, difference", exact=True).click()
+    page.fill("#id_formula", "penetration - depht")
+    page.get_by_text("“depht” is nothing a formula here may name").wait_for()
+    assert page.locator("pre.caret").inner_text().endswith("\n              ^^^^^")
+    page.fill("#id_formula", "penetration - penetration_before")
+    page.fill("[name='sample.penetration']", "146,4")
+    page.fill("[name='sample.penetration_before']", "152")
+    page.get_by_text("= -6\N{NO-BREAK SPACE}mm").wait_for()
+    assert page.evaluate("document.documentElement.scrollWidth - window.innerWidth") <= 0
+    page.reload()
+    assert page.input_value("[name='sample.penetration']") == "146,4"
+    assert page.troubles == []
+
+
 def test_pictures_for_the_readme(visit):
     page = visit("castellane", NARROW)
     shot(page, "due-390")

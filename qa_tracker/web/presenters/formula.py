@@ -147,7 +147,7 @@ def _caret(formula: str, refusal: DomainError | None) -> Caret | None:
     column = refusal.parameters.get("column") if refusal else None
     if not isinstance(column, int):
         return None
-    at = str(refusal.parameters.get("at", "")) if refusal else ""
+    at = str(refusal.parameters.get("at", "")).removesuffix("…") if refusal else ""
     if formula[column - 1 : column - 1 + len(at)] != at:
         at = ""  # it names the whole of which the mark shows the joint
     start = max(0, min(column - 1 - WIDTH // 3, len(formula) - WIDTH))

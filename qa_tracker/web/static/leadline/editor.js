@@ -57,7 +57,8 @@
 
   async function answered(response) {
     const isJson = (response.headers.get("Content-Type") || "").startsWith("application/json");
-    if (!isJson) return failed(response.redirected ? words.signedOut : `${words.unsaved} (${response.status})`, response.redirected);
+    const signedOut = response.redirected || response.status === 403;
+    if (!isJson) return failed(signedOut ? words.signedOut : `${words.offline} (${response.status})`, signedOut);
     const told = await response.json();
     if (response.status === 409) return keptElsewhere(told);
     failures = 0;
