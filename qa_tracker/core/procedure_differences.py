@@ -110,27 +110,29 @@ def steps_beside(old: Sequence[str], new: Sequence[str]) -> tuple[StepDifference
 def head_keys(spec: ProcedureSpec) -> dict[str, Value]:
     """Write what an edition says before its steps as one flat row of keys; what is empty has None.
 
+    Lists whose order says nothing are sorted, here and in ``measurand_keys``.
+
     The yearly part is named ``yearly.*``, and what it applies to ``applies_to.*``.
     """
     flat: dict[str, Value] = {
         "title": spec.title,
         "when": spec.when,
         **_recurrence_keys(spec.recurrence, ""),
-        "performed_by": spec.performed_by,
+        "performed_by": _sorted(spec.performed_by),
         **{f"minutes_{kind}": str(minutes) if minutes else None for kind, minutes in spec.minutes},
         "signing": spec.signing,
         "needs_test_object": spec.needs_test_object,
         "needs_instrument": spec.needs_instrument,
         "decontamination_gate": spec.decontamination_gate,
-        "applies_kinds": spec.applies_to.kinds,
-        "applies_arrays": spec.applies_to.array_kinds,
-        "applies_contacts": spec.applies_to.contact_classes,
-        "cautions": spec.cautions,
+        "applies_kinds": _sorted(spec.applies_to.kinds),
+        "applies_arrays": _sorted(spec.applies_to.array_kinds),
+        "applies_contacts": _sorted(spec.applies_to.contact_classes),
+        "cautions": _sorted(spec.cautions),
         "standing": spec.standing,
         "note": spec.note,
     }
     if spec.yearly is not None:
-        flat |= {"yearly.performed_by": spec.yearly.performed_by}
+        flat |= {"yearly.performed_by": _sorted(spec.yearly.performed_by)}
         flat |= _recurrence_keys(spec.yearly.recurrence, "yearly.")
     return _empty_as_none(flat)
 
@@ -158,7 +160,7 @@ def measurand_keys(spec: MeasurandSpec) -> dict[str, Value]:
             "per": spec.per,
             "by_condition": spec.by_condition,
             "repeats": str(spec.repeats),
-            "qualifiers": spec.qualifiers,
+            "qualifiers": _sorted(spec.qualifiers),
             "required": spec.required,
             "one_of": spec.one_of,
             "criteria": spec.criteria,
@@ -169,18 +171,22 @@ def measurand_keys(spec: MeasurandSpec) -> dict[str, Value]:
             "reference_from": spec.reference_from,
             "own_baseline": spec.own_baseline,
             "grades": tuple(f"{each.value}: {each.name}" for each in spec.grades),
-            "suggests_quarantine_on": spec.suggests_quarantine_on,
+            "suggests_quarantine_on": _sorted(spec.suggests_quarantine_on),
             "low": band.low if band else None,
             "high": band.high if band else None,
             "hide_last": spec.hide_last,
             "prompt": spec.prompt,
-            "kinds": spec.kinds,
-            "not_for_array_kinds": spec.not_for_array_kinds,
+            "kinds": _sorted(spec.kinds),
+            "not_for_array_kinds": _sorted(spec.not_for_array_kinds),
             "sound_speed_correction": spec.sound_speed_correction,
             "yearly": spec.yearly,
             "note": spec.note,
         }
     )
+
+
+def _sorted(names: Sequence[str] | None) -> tuple[str, ...]:
+    return tuple(sorted(names or ()))
 
 
 def _empty_as_none(flat: dict[str, Value]) -> dict[str, Value]:

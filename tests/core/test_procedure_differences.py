@@ -35,6 +35,12 @@ def test_key_of_the_head_when_changed_is_named_with_both_values(document):
     assert head == {"minutes_probe": ("4", "5"), "grace_days": ("7", "9")}
 
 
+def test_lists_whose_order_says_nothing_when_in_another_order_differ_nowhere(document):
+    document["cautions"].reverse()
+    document["performed_by"].reverse()
+    assert beside(document).none
+
+
 def test_measurand_when_added_removed_and_changed_is_told_apart(document):
     first = document["measurands"].pop(0)
     document["measurands"][0]["name"] = "Face"

@@ -157,7 +157,7 @@ class OtherValue:
 
 def others_of(there: Part, typed: dict[str, str]) -> tuple[OtherValue, ...]:
     """Where another window kept something else than what was typed here."""
-    names = sorted({*there.typed, *typed})
+    names = sorted({*there.typed, *typed}, key=lambda name: (place_of(name), name))
     return tuple(
         OtherValue(label(name), there.typed.get(name, ""))
         for name in names
