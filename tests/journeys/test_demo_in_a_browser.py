@@ -28,7 +28,18 @@ PAGES = {
         "/ledger/",
         "/criteria/",
     ),
-    "oduya": ("/", "/checks/", "/register/", "/criteria/procedures/", "/register/test-objects/", "/faults/"),
+    "oduya": (
+        "/",
+        "/checks/",
+        "/register/",
+        "/criteria/procedures/",
+        "/criteria/differences/",
+        "/criteria/uncertainties/",
+        "/criteria/uncertainties/new/",
+        "/criteria/figures/",
+        "/register/test-objects/",
+        "/faults/",
+    ),
     "fairweather": ("/register/", "/checks/", "/dossiers/", "/dossiers/verify/", "/ledger/", "/criteria/"),
     "moss": ("/people/", "/sites/", "/mailbox/", "/tokens/"),
 }
@@ -89,6 +100,22 @@ def test_every_page_fits_and_asks_no_other_host(visit, username, viewport):
         assert wider <= 0, f"{address} is {wider} px wider than the window"
         policy = answer.headers["content-security-policy"]
         assert "unsafe" not in policy
+    assert page.troubles == []
+
+
+VERDICTS = ("conforming", "remedial", "suspension", "indeterminate", "not_assessable")
+
+
+@pytest.mark.parametrize("viewport", [WIDE, NARROW], ids=["1280", "390"])
+def test_a_check_of_every_verdict_fits_and_says_why(visit, viewport):
+    page = visit("oduya", viewport)
+    for verdict in VERDICTS:
+        page.goto(f"/checks/?verdict={verdict}")
+        page.locator("main ul.rows a[href*='/checks/']").last.click()
+        page.wait_for_load_state()
+        assert page.evaluate("document.documentElement.scrollWidth - window.innerWidth") <= 0, verdict
+        assert page.locator(".sentence").count() > 0
+        assert ("made by:" in page.inner_text("main")) == (verdict != "conforming"), verdict
     assert page.troubles == []
 
 
