@@ -15,10 +15,16 @@ from typing import Any, Final
 from qa_tracker.core import library
 from qa_tracker.core.decimals import parse
 from qa_tracker.core.errors import DomainError, Invalid
-from qa_tracker.core.library_specs import CriterionSpec, MeasurandSpec, ProcedureSpec
+from qa_tracker.core.library_specs import CriterionSpec, MeasurandSpec, ProcedureSpec, RecurrenceSpec
+from qa_tracker.core.schedule import LONGEST_WINDOW
 from qa_tracker.core.schedule_rule import parse_rule
 
-_MOST: Final = 500
+_MOST: Final = 200
+# As long as the columns of the tables are, and as often as anybody reads one value.
+_CODE: Final = 60
+_TITLE: Final = 160
+_EDITIONS: Final = 9999
+_REPEATS: Final = 50
 _PLACE: Final = re.compile(r"measurands\[(\d+)\](?:\.(.*))?")
 _ITEM: Final = re.compile(r"(\w+)\[(\d+)\].*")
 _STEP: Final = {"text": "…"}
@@ -122,33 +128,32 @@ def in_order(refusals: Sequence[DomainError]) -> tuple[DomainError, ...]:
 
 def _stand_in(given: dict[str, Any], place: str) -> bool:
     """Put something sound where a refusal was; False where that changes nothing, so that no round is endless."""
-    before = copy.deepcopy(given)
     found = _PLACE.fullmatch(place)
     if found and isinstance(given.get("measurands"), list):
-        _mend_measurand(given["measurands"], int(found[1]), found[2] or "")
-    else:
-        _mend_head(given, place)
-    return given != before
+        return _mend_measurand(given["measurands"], int(found[1]), found[2] or "")
+    return _mend_head(given, place)
 
 
-def _mend_head(given: dict[str, Any], place: str) -> None:
+def _mend_head(given: dict[str, Any], place: str) -> bool:
     item = _ITEM.fullmatch(place)
     key = re.split(r"[.\[]", place)[0]
     if item and key == "steps":
-        given[key][int(item[2])] = dict(_STEP)
-    elif key in _HEAD:
+        before, given[key][int(item[2])] = given[key][int(item[2])], dict(_STEP)
+        return bool(before != _STEP)
+    before = given.pop(key, None)
+    if key in _HEAD:
         given[key] = copy.deepcopy(_HEAD[key])
-    else:
-        given.pop(key, None)
+    return bool(before != given.get(key))
 
 
-def _mend_measurand(measurands: list[Any], index: int, place: str) -> None:
+def _mend_measurand(measurands: list[Any], index: int, place: str) -> bool:
     key = re.split(r"[.\[]", place)[0]
     sound = copy.deepcopy(_MEASURAND) | {"code": f"unread_{index}"}
-    if not key or not isinstance(measurands[index], dict):
-        measurands[index] = sound
-        return
     measurand = measurands[index]
+    if not key or not isinstance(measurand, dict):
+        measurands[index] = sound
+        return bool(measurand != sound)
+    before = dict(measurand)
     if key == "grades" and measurand.get("kind") == "grade":
         measurand |= {"grades": [{"value": "unread", "name": "…"}], "suggests_quarantine_on": []}
     elif key in ("kind", "formula"):
@@ -158,23 +163,47 @@ def _mend_measurand(measurands: list[Any], index: int, place: str) -> None:
         measurand[key] = sound[key]
     else:
         measurand.pop(key, None)
+    return before != measurand
 
 
 def _beyond_shape(spec: ProcedureSpec) -> Iterator[DomainError]:
-    """Refuse what can be read and yet makes no sense: a rule nothing follows, a step or band of no width."""
+    """Refuse what can be read and yet can't be kept or makes no sense: a rule nothing follows, a step of no width."""
+    for place, words, most in (("procedure", spec.procedure, _CODE), ("title", spec.title, _TITLE)):
+        if len(words) > most:
+            yield Invalid("edition_draft.too_long", field=place, length=len(words), most=most)
+    if spec.edition > _EDITIONS:
+        yield Invalid("edition_draft.too_many", field="edition", count=spec.edition, most=_EDITIONS)
     if spec.recurrence is not None:
-        try:
-            parse_rule(spec.recurrence.rule)
-        except Invalid as refusal:
-            yield type(refusal)(refusal.code, field="recurrence.rule", **refusal.parameters)
+        yield from _wrong_recurrence(spec.recurrence)
     for index, measurand in enumerate(spec.measurands):
         place = f"measurands[{index}]"
+        if len(measurand.code) > _CODE:
+            yield Invalid(
+                "edition_draft.too_long", field=f"{place}.code", length=len(measurand.code), most=_CODE
+            )
+        if measurand.repeats > _REPEATS:
+            yield Invalid(
+                "edition_draft.too_many", field=f"{place}.repeats", count=measurand.repeats, most=_REPEATS
+            )
         if parse(measurand.resolution).scaled <= 0:
             yield Invalid("number.step", field=f"{place}.resolution", step=measurand.resolution)
         band = measurand.plausible
         if band is not None and parse(band.low).decimal >= parse(band.high).decimal:
             yield Invalid(
                 "edition_draft.band_reversed", field=f"{place}.plausible", low=band.low, high=band.high
+            )
+
+
+def _wrong_recurrence(recurrence: RecurrenceSpec) -> Iterator[DomainError]:
+    try:
+        parse_rule(recurrence.rule)
+    except Invalid as refusal:
+        yield type(refusal)(refusal.code, field="recurrence.rule", **refusal.parameters)
+    for key in ("before_days", "grace_days"):
+        days = getattr(recurrence, key)
+        if days > LONGEST_WINDOW:
+            yield Invalid(
+                "schedule.days_out_of_range", field=f"recurrence.{key}", days=days, most=LONGEST_WINDOW
             )
 
 

@@ -28,6 +28,7 @@ from qa_tracker.services import cautions, library
 from qa_tracker.services.guards import check_may
 
 MOST_TRIES = 5
+LONGEST_DOCUMENT = 500_000
 
 
 @dataclass(frozen=True)
@@ -200,6 +201,8 @@ def publish_document(*, text: str, actor: Person, at: dt.datetime) -> Edition:
 def _parsed(text: str) -> Any:
     if not text.strip():
         raise Invalid("edition_draft.no_document", field="document")
+    if len(text) > LONGEST_DOCUMENT:
+        raise Invalid("edition_draft.too_long", field="document", length=len(text), most=LONGEST_DOCUMENT)
     try:
         return json.loads(text)
     except json.JSONDecodeError as error:

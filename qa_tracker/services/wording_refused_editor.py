@@ -36,6 +36,10 @@ EDITOR: Final = {
         "%(field)s: “%(measurand)s” already stands for a measurand of the kind %(kind)s, in %(unit)s, and one code "
         "means one quantity everywhere. Keep its kind and unit, or use another code."
     ),
+    "edition_draft.too_long": N_(
+        "%(field)s is %(length)s signs long, and at most %(most)s can be kept. Shorten it."
+    ),
+    "edition_draft.too_many": N_("%(field)s is %(count)s, and %(most)s is the most there can be. Lower it."),
     "edition_draft.not_a_code": N_(
         "%(field)s can't be “%(value)s”. Use small letters, digits and underscores, and begin with a letter."
     ),

@@ -106,6 +106,19 @@ def test_step_and_band_that_hold_nothing_are_refused(document):
     assert {code for _, code in told(document)} == {"number.step", "edition_draft.band_reversed"}
 
 
+def test_more_than_can_be_kept_is_refused(document):
+    document["measurands"][GRADE] |= {"code": "a" * 61, "repeats": 51}
+    document |= {"title": "T" * 161, "edition": 10000}
+    document["recurrence"] = {"rule": "FREQ=DAILY", "before_days": 1, "grace_days": 100000}
+    assert [code for _, code in told(document)] == [
+        "edition_draft.too_long",
+        "edition_draft.too_many",
+        "schedule.days_out_of_range",
+        "edition_draft.too_long",
+        "edition_draft.too_many",
+    ]
+
+
 def test_criterion_of_another_unit_is_refused(document):
     number = CODES.index("penetration")
     document["measurands"][number]["criteria"] = ["TG1-UNIF"]

@@ -160,6 +160,7 @@ def test_discarded_draft_is_gone_and_what_was_not_there_is_refused(who, draft):
     [
         pytest.param(" ", "edition_draft.no_document", id="nothing"),
         pytest.param('{"title": }', "edition_draft.not_json", id="no JSON"),
+        pytest.param(" " * 500_000 + "{}", "edition_draft.too_long", id="longer than any edition"),
         pytest.param("[" * 100000, "edition_draft.not_json", id="nested without end"),
     ],
 )

@@ -24,9 +24,6 @@ from qa_tracker.services.wording_words import capital
 from qa_tracker.web.forms.fields import Field, Option, Words
 from qa_tracker.web.presenters import edition_words as words
 
-LONGEST = 6000
-"""Most characters of one input that are kept."""
-
 
 @dataclass(frozen=True)
 class Group:
@@ -149,7 +146,7 @@ def _typed(one: Field, given: QueryDict) -> str:
         return " ".join([*before, *(value for value in marked if value not in before)])
     if one.kind == "tick":
         return YES if given.get(one.name) else ""
-    return str(given.get(one.name, ""))[:LONGEST]
+    return str(given.get(one.name, ""))
 
 
 def steps_in(given: QueryDict) -> dict[str, str]:
@@ -161,7 +158,7 @@ def steps_in(given: QueryDict) -> dict[str, str]:
         (name for name in given if name.startswith("step-") and name[5:].isdecimal()),
         key=lambda name: int(name[5:]),
     )
-    texts = [str(given[name])[:LONGEST] for name in names]
+    texts = [str(given[name]) for name in names]
     verb, _, number = given.get("do", "").partition("-")
     place = names.index(f"step-{number}") if f"step-{number}" in names else None
     if verb == "add":

@@ -15,7 +15,7 @@ from qa_tracker.core.typed_text import Typed, neat
 from qa_tracker.core.units import UNITS
 from qa_tracker.services import wording
 from qa_tracker.services.wording_words import capital
-from qa_tracker.web.forms.edition_editor import LONGEST, Group, field, filled, named, of_table, typed_in
+from qa_tracker.web.forms.edition_editor import Group, field, filled, named, of_table, typed_in
 from qa_tracker.web.forms.fields import Field, Option
 from qa_tracker.web.presenters import edition_words as words
 
@@ -201,7 +201,7 @@ def measurand_in(given: QueryDict, groups: Sequence[Group], before: Typed) -> di
     typed = typed_in(groups, given)
     limits = [typed.pop(f"{LIMIT}{number}", "") for number in range(1, MOST_LIMITS + 1)]
     typed["criteria"] = " ".join(dict.fromkeys(code for code in limits if code))
-    typed["formula"] = str(given.get("formula", ""))[:LONGEST]
+    typed["formula"] = str(given.get("formula", ""))
     samples = {name: text for name, text in before.items() if name.startswith(SAMPLE)}
-    samples |= {name: str(given[name])[:400] for name in given if name.startswith(SAMPLE)}
+    samples |= {name: str(given[name]) for name in given if name.startswith(SAMPLE)}
     return {name: text for name, text in (typed | samples).items() if text}
