@@ -54,7 +54,6 @@ CHUNK = 1 << 15
 """Rows judged at once: temporaries stay in the processor's cache."""
 
 
-
 @dataclass(frozen=True)
 class Columns:
     """Readings judged by one criterion or many, one row each, all at ``places`` decimal places.

@@ -117,7 +117,10 @@ def criteria_set(uid: uuid.UUID) -> CriteriaSet:
 
 
 def test_object(
-    actor: Person, uid: uuid.UUID | None, at: dt.datetime, grants: Grants = None  # noqa: PT028  # no test
+    actor: Person,
+    uid: uuid.UUID | None,
+    at: dt.datetime,
+    grants: Grants = None,  # noqa: PT028  # no test
 ) -> TestObject | None:
     """A test object of a site in sight."""
     if uid is None:

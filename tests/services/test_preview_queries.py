@@ -27,9 +27,7 @@ def queries(ward, used):
     """Preview a survey as for signing; the number of its readings and of its queries."""
     check = checks.open_unplanned(device=ward.probe.uid, procedure=ANNUAL, actor=ward.physicist, at=now())
     laid = checks.sheet(check=check.uid, test_object=used.uid, actor=ward.physicist, at=now())
-    entries = {
-        item.key: builders.Entry(builders.good_answer(item), confirmed=True) for item in laid.items
-    }
+    entries = {item.key: builders.Entry(builders.good_answer(item), confirmed=True) for item in laid.items}
     typed = Typed(entries, test_object=used.uid, cleaned_before="Wipe")
     with CaptureQueriesContext(connection) as asked:
         seen = checks.preview(check=check.uid, typed=typed, whole=True, actor=ward.physicist, at=now())
