@@ -36,7 +36,7 @@ PAGES = {
         "/criteria/differences/",
         "/criteria/uncertainties/",
         "/criteria/uncertainties/new/",
-        "/criteria/figures/",
+        "/figures/",
         "/register/test-objects/",
         "/faults/",
     ),

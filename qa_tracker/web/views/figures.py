@@ -6,17 +6,17 @@ from django.http import HttpRequest, HttpResponse
 from django.shortcuts import render
 
 from qa_tracker.services import cautions
-from qa_tracker.web.presenters.figures import shown_figures
-
-CAUTIONS = ("alara", "display-only", "obstetric-dwell")
+from qa_tracker.web.forms.figure_list import FIGURES
+from qa_tracker.web.forms.figures import shown_figures
+from qa_tracker.web.presenters.known_numbers import known_numbers
 
 
 def show(request: HttpRequest) -> HttpResponse:
     """Every figure, worked out from what the address says; nothing is stored."""
-    dwell = cautions.published()["obstetric-dwell"]
+    typed = {name: str(value) for name, value in request.GET.items()}
     context = {
-        "figures": shown_figures({name: str(value) for name, value in request.GET.items()}),
-        "cautions": cautions.texts(CAUTIONS),
-        "dwell": dwell,
+        "figures": shown_figures(FIGURES, typed),
+        "dwell": cautions.published()["obstetric-dwell"],
+        "numbers": known_numbers(),
     }
     return render(request, "figures.html", context)
