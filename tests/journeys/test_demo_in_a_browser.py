@@ -15,7 +15,7 @@ from playwright.sync_api import Page
 
 from tests.journeys.conftest import clean_environment, standalone
 
-pytestmark = pytest.mark.journey
+pytestmark = [pytest.mark.journey, pytest.mark.xdist_group("demo in a browser")]
 WIDE, NARROW = {"width": 1280, "height": 900}, {"width": 390, "height": 844}
 PAGES = {
     "castellane": (

@@ -21,7 +21,7 @@ import pytest
 
 from config.env import BASE_DIR
 
-pytestmark = pytest.mark.journey
+pytestmark = [pytest.mark.journey, pytest.mark.xdist_group("standalone")]
 
 READY_LIMIT_S = 60
 OWN_PLACE = ("LEADLINE_TEST_DIR", "DATABASE_URL", "REDIS_URL", "EMAIL_HOST", "SECRET_KEY")

@@ -33,6 +33,8 @@ from qa_tracker.services import demo, rechecking, upkeep
 from qa_tracker.services.demo_fleet import PROBE_MODELS
 from qa_tracker.services.wording_leaves import SENTENCES
 
+pytestmark = pytest.mark.xdist_group("demo")
+
 AT = dt.datetime(2026, 3, 18, 10, 30, tzinfo=dt.UTC)
 CLASSES = {
     "convex": 8, "linear": 8, "linear 18 MHz": 4, "phased": 6, "endovaginal": 5, "3D": 2, "micro-convex": 2,
