@@ -50,7 +50,10 @@ def fits(criterion: Criterion, places: int, values: Whole, references: Whole) ->
     bounds = [departure]
     for _, limit in criterion.levels():
         absolute, percent, divisor = whole_limit(limit, places)
-        bounds += [abs(absolute or 0), (percent or 0) * reference, departure * divisor if percent else 0]
+        bounds.append(abs(absolute or 0))
+        if percent is not None:
+            # Each factor too: a zero beside it hides it in the product.
+            bounds += [percent, divisor, percent * reference, departure * divisor]
     return max(bounds) <= FITS
 
 

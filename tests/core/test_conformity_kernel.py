@@ -111,6 +111,22 @@ def test_kernel_keeps_the_part_that_governs_when_the_share_lies_between_two_step
     assert codes.tolist() == [3 if step >= bound else 0 for step in range(4)]
 
 
+@pytest.mark.parametrize(
+    ("limit", "value", "reference", "code"),
+    [
+        (Limit(None, D("0")), 2**58, 1, 3),
+        (Limit(D("1"), D("0")), 2**58, 1, 3),
+        (Limit(D("1"), D(10**20)), 2, 0, 3),
+        (Limit(D("1"), D("0.000000000000000001")), 0, 0, 0),
+    ],
+    ids=["nothing allowed", "the larger of one and nothing", "a huge share of zero", "a fine share of zero"],
+)
+def test_kernel_is_exact_when_a_zero_hides_how_large_a_product_grows(limit, value, reference, code):
+    criterion = Criterion("baseline", "above", True, limit)
+    columns = Columns(np.array([value]), np.array([reference]), 0)
+    assert verdict_codes(criterion, columns).tolist() == [code]
+
+
 def test_kernel_is_exact_beyond_64_bits():
     criterion = Criterion("none", "above", True, Limit(D(10**25)))
     assert verdict_codes(criterion, Columns(column(10**25, 10**25 + 1), column(0, 0), 0)).tolist() == [0, 3]
