@@ -13,6 +13,7 @@ import pytest
 
 from config.env import BASE_DIR
 
+pytestmark = pytest.mark.xdist_group("load demo")
 SMALL = ("--scanners", "1", "--probes", "2", "--years", "1")
 OWN_PLACE = ("LEADLINE_TEST_DIR", "DATABASE_URL", "SECRET_KEY")
 
@@ -28,7 +29,6 @@ DIGEST = """
 import hashlib
 from qa_tracker.records.models import Reading
 
-pytestmark = pytest.mark.xdist_group("load demo")
 found = Reading.objects.order_by("id").values_list("device__serial", "measurand__code", "entered")
 print(hashlib.sha256(repr(list(found)).encode()).hexdigest())
 """
