@@ -3,21 +3,14 @@
 from __future__ import annotations
 
 from fractions import Fraction
-from math import inf
 
+import definition_in_fractions as definition
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from qa_tracker.core.conformity import judge
 from qa_tracker.core.criteria import Criterion, Limit
 from qa_tracker.core.decimals import from_scaled
-
-LEVEL_RANK = {("conforming", None): 0, ("indeterminate", "remedial"): 1, ("not_assessable", None): 2}
-LEVEL_RANK |= {
-    ("remedial", "remedial"): 3,
-    ("indeterminate", "suspension"): 4,
-    ("suspension", "suspension"): 5,
-}
 
 # Coarse numbers meet their limits often, long ones leave 64 bits.
 COARSE = st.builds(from_scaled, st.integers(-60, 60), st.integers(0, 1))
@@ -55,39 +48,10 @@ RATIOS = st.builds(
 )
 
 
-def _interval(criterion, value, qualifier, reference):
-    """The departure as an interval of real numbers: low, high, whether its finite end is left out."""
-    x = Fraction(value) - (Fraction(reference) if criterion.basis in ("nominal", "baseline") else 0)
-    low, high = {"=": (x, x), ">": (x, inf), "<": (-inf, x)}[qualifier]
-    if criterion.direction == "below":
-        low, high = -high, -low
-    if criterion.direction == "either":
-        if low < 0 < high:
-            return Fraction(0), inf, False
-        low, high = sorted((abs(low), abs(high)))
-    return low, high, qualifier != "="
-
-
-def _allowed(criterion, limit, reference):
-    parts = [] if limit.absolute is None else [Fraction(limit.absolute)]
-    if limit.percent is not None:
-        parts.append(Fraction(limit.percent) * abs(Fraction(reference)) / 100)
-    size = max(parts) if limit.governs == "larger" else min(parts)
-    return -size if criterion.direction == "below" and criterion.basis in ("none", "ratio") else size
-
-
 def _expected(criterion, value, qualifier, reference, uncertainty, rule):
-    low, high, left_out = _interval(criterion, value, qualifier, reference)
-    moves = {"simple": (0, 0), "guarded": (-1, -1), "zones": (-1, 1)}[rule]
-    found = [("conforming", None)]
-    for level, limit in criterion.levels():
-        clear, beyond = (
-            _allowed(criterion, limit, reference) + move * Fraction(uncertainty) for move in moves
-        )
-        some_beyond = high > clear or (high == clear and not criterion.strict and not left_out)
-        all_beyond = low > beyond or (low == beyond and (left_out or not criterion.strict))
-        found += [("indeterminate", level)] * some_beyond + [(level, level)] * all_beyond
-    return max(found, key=LEVEL_RANK.__getitem__)
+    change = Fraction(value) - (Fraction(reference) if criterion.basis in ("nominal", "baseline") else 0)
+    within = definition.bounds(criterion, reference, uncertainty, rule)
+    return definition.worst(criterion, definition.interval(criterion, change, qualifier), within)
 
 
 # Ten readings to an example: 2,000 in all.

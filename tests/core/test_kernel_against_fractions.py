@@ -1,15 +1,16 @@
-"""A million random decimals through the kernel and through fractions: no verdict differs.
+"""A million random decimals through the kernel and through the definition in fractions: no verdict differs.
 
-Values lie at every limit and one unit of resolution to each side of it, and anywhere. What a limit allows is worked
-out in ``Fraction``; the readings, whole numbers of a resolution, are then compared with it by its own numerator and
-denominator, which is how fractions are compared.
+Readings lie at every limit and one unit of resolution to each side of it, and anywhere about. Those at the limits are
+judged one by one in ``Fraction``. All are judged by witnesses besides: as bounds are whole in halves of one common
+denominator, a half-line is known by three of its points, the one next to its end, a far one, and zero if it holds it.
 """
 
 from __future__ import annotations
 
-from decimal import Decimal
 from fractions import Fraction
+from math import lcm
 
+import definition_in_fractions as definition
 import numpy as np
 import pytest
 
@@ -18,142 +19,165 @@ from qa_tracker.core.decimals import from_scaled
 from qa_tracker.core.verdict_groups import verdict_codes_by_criterion
 from qa_tracker.core.verdict_kernel import Columns
 
-ROWS = 1_000_000
-CRITERIA, PLACES = 400, 3
-RULES = ("simple", "guarded", "zones")
-UNCERTAIN, PROVEN = {"remedial": 1, "suspension": 4}, {"remedial": 3, "suspension": 5}
+# Name: rule, whether some readings are qualified. Each at every count of places: a million readings in all.
+WAYS = {
+    "simple": ("simple", False),
+    "qualified": ("simple", True),
+    "guarded": ("guarded", True),
+    "zones": ("zones", True),
+}
+PLACES = (0, 1, 2, 3, 6)
 SHAPES = [
     (basis, direction)
     for basis in ("nominal", "baseline", "none", "ratio")
     for direction in ("either", "above", "below")
     if (basis, direction) != ("ratio", "either")
 ]
+CRITERIA = 8 * len(SHAPES)
+ROWS = 570
+"""Readings of one criterion."""
+SMALL, VAST = 10**4, 2 * 10**17
+"""Sizes of readings in units of resolution; products with the vast ones leave 64 bits."""
+MARKS = {-1: "<", 0: "=", 1: ">"}
+UNCERTAIN, PROVEN = {"remedial": 1, "suspension": 4}, {"remedial": 3, "suspension": 5}
 
 
-def decimal(rng, most, places):
-    return from_scaled(int(rng.integers(0, most * 10**places)), places)
-
-
-def limit(rng, basis):
-    absolute = decimal(rng, 30, int(rng.integers(0, PLACES + 1)))
-    percent = decimal(rng, 100, int(rng.integers(0, 3)))
-    if basis == "none":
+def limit(rng, basis, kind, places, size):
+    """A limit of a kind: absolute, percent or both; one in eight percentages is zero."""
+    steps = int(rng.integers(-size // 3 if basis == "none" else 0, size // 3))
+    absolute, finer = from_scaled(steps, places), int(rng.integers(0, 3))
+    percent = from_scaled(int(rng.integers(0, 60 * 10**finer)) * int(rng.integers(8) > 0), finer)
+    if basis == "none" or (kind == 0 and basis != "ratio"):
         return Limit(absolute)
-    if basis == "ratio":
+    if basis == "ratio" or kind == 1:
         return Limit(None, percent)
-    governs = ("larger", "smaller", "either")[int(rng.integers(3))]
-    return (Limit(absolute), Limit(None, percent), Limit(absolute, percent, governs))[int(rng.integers(3))]
+    return Limit(absolute, percent, ("larger", "smaller", "either")[int(rng.integers(3))])
 
 
-def criterion(rng, number):
-    basis, direction = SHAPES[number % len(SHAPES)]
-    levels = [limit(rng, basis), limit(rng, basis)]
+def criterion(rng, number, places, size):
+    """Every shape, strict and not, with absolute, relative and combined limits, of one level or two."""
+    round_of, shape = divmod(number, len(SHAPES))
+    basis, direction = SHAPES[shape]
+    levels = [limit(rng, basis, round_of // 2, places, size) for _ in range(2)]
     if number % 5 == 0:
         levels[number % 2] = None
-    return Criterion(basis, direction, bool(number % 2), *levels)
+    return Criterion(basis, direction, round_of % 2 == 0, *levels)
 
 
-def allowed(part, reference):
-    """What a limit allows at a reference, worked in fractions."""
-    share = None if part.percent is None else Fraction(part.percent) / 100 * abs(reference)
-    absolute = None if part.absolute is None else Fraction(part.absolute)
-    if share is None or absolute is None:
-        return absolute if share is None else share
-    return max(share, absolute) if part.governs == "larger" else min(share, absolute)
+def in_steps(within, places):
+    """Bounds in units of resolution."""
+    return [(level, clear * 10**places, beyond * 10**places) for level, clear, beyond in within]
 
 
-def departures(of, values, reference):
-    change = values - reference if of.basis in ("nominal", "baseline") else values
-    if of.direction == "either":
-        return np.abs(change)
-    return change if of.direction == "above" else -change
+def at_the_limits(of, places, setting, rule, signs):
+    """Readings at each bound and one unit to each side of it, with the verdict by definition."""
+    reference, uncertainty = setting
+    known = from_scaled(max(uncertainty, 0), places)
+    within = in_steps(definition.bounds(of, from_scaled(reference, places), known, rule), places)
+    centre = reference if of.basis in ("nominal", "baseline") else 0
+    whole = {near for _, *ends in within for end in ends for near in (end.__floor__(), end.__ceil__())}
+    changes = {side * (near + step) for near in whole for side in (1, -1) for step in (-1, 0, 1)}
+    for change in sorted(changes):
+        for sign in signs:
+            departure = definition.interval(of, change, MARKS[sign])
+            rank = definition.RANK[definition.worst(of, departure, within)]
+            if rank < 2 and rule != "simple" and uncertainty < 0:
+                rank = 2
+            yield (
+                change + centre,
+                reference,
+                sign,
+                uncertainty,
+                2 if definition.without_size(of, reference) else rank,
+            )
 
 
-def beyond(of, departure, bound, moved):
-    """Whether departures, in units of resolution, are beyond a fraction moved by whole units."""
-    left, right = departure * bound.denominator, bound.numerator + moved * bound.denominator
-    return left > right if of.strict else left >= right
+def anywhere(rng, of, size, signs, count):
+    """Readings about their references, of which a few are zero; a few uncertainties are unknown."""
+    references = rng.integers(-size // 10, size, count) * (rng.integers(0, 20, count) > 0)
+    spread = rng.integers(-size // 2, size // 2, count)
+    values = spread + references if of.basis in ("nominal", "baseline") else spread
+    uncertainties = np.where(rng.integers(0, 8, count) > 0, rng.integers(0, size // 10, count), -1)
+    return np.stack([values, references, rng.choice(np.array(signs), count), uncertainties])
 
 
-def expected(of, values, reference, uncertainty, rule):
-    """The codes of one criterion's readings at one reference, by the definition."""
-    departure, codes = departures(of, values, reference), np.zeros(len(values), np.int64)
-    mirrored = -1 if of.direction == "below" and of.basis in ("none", "ratio") else 1
-    for level, part in of.levels():
-        bound = mirrored * allowed(part, Fraction(reference, 10**PLACES)) * 10**PLACES
-        inner = 0 if rule == "simple" else -uncertainty
-        outer = {"simple": 0, "guarded": -uncertainty, "zones": uncertainty}[rule]
-        codes[beyond(of, departure, bound, inner)] = UNCERTAIN[level]
-        codes[beyond(of, departure, bound, outer)] = PROVEN[level]
+def by_witnesses(of, places, rows, rule):
+    """The codes of readings, from a few points of each half-line and whole numbers alone."""
+    values, references, signs, uncertainties = rows
+    limits = dict(of.levels())
+    shares = {level: Fraction(part.percent or 0) / 100 for level, part in limits.items()}
+    half = 2 * lcm(*(share.denominator for share in shares.values()))
+    change = values - references if of.basis in ("nominal", "baseline") else values
+    end, far = half * change + signs, 1 << (200 if rows.dtype == object else 60)
+    points = [end, np.where(signs != 0, signs * far, end), np.where(signs * change < 0, 0, end)]
+    turned = {"either": np.abs, "above": np.positive, "below": np.negative}[of.direction]
+    codes = np.zeros(len(values), np.int64)
+    for level, part in limits.items():
+        allowed = allowances(of, part, shares[level], references, places, half)
+        for number, (codes_of, every) in enumerate(((UNCERTAIN, np.any), (PROVEN, np.all))):
+            bound = allowed + half * definition.MOVES[rule][number] * np.maximum(uncertainties, 0)
+            beyond = [turned(point) > bound if of.strict else turned(point) >= bound for point in points]
+            codes[every(np.array(beyond, np.bool_), axis=0)] = codes_of[level]
+    if rule != "simple":
+        codes[(codes < 2) & np.array(uncertainties < 0, np.bool_)] = 2
+    if definition.without_size(of, 0):
+        codes[np.array(references <= 0 if of.basis == "ratio" else references == 0, np.bool_)] = 2
     return codes
 
 
-def readings(rng, of, reference, count, uncertainty):
-    """Whole numbers of a resolution: at each limit and where a rule moves it to, one to each side, and anywhere."""
-    centre = reference if of.basis in ("nominal", "baseline") else 0
-    values = rng.integers(-200_000, 200_000, count)
-    near = []
+def allowances(of, part, share, references, places, half):
+    """What a level allows, one for each reference, in units of resolution divided by ``half``."""
+    by_share = np.abs(references) * share.numerator * (half // share.denominator)
+    absolute = half * int((part.absolute or 0) * 10**places) + 0 * references
+    if part.absolute is None or part.percent is None:
+        found = by_share if part.absolute is None else absolute
+    else:
+        found = (np.maximum if part.governs == "larger" else np.minimum)(absolute, by_share)
+    return -found if of.direction == "below" and of.basis in ("none", "ratio") else found
+
+
+def where_parts_meet(of, places, size):
+    """A reference whose share is less than a step more than the absolute part, where there is one."""
     for _, part in of.levels():
-        bound = allowed(part, Fraction(reference, 10**PLACES)) * 10**PLACES
-        for edge in (bound.numerator // bound.denominator, -(-bound.numerator // bound.denominator)):
-            near += [
-                centre + sign * (edge + moved) + step
-                for sign in (1, -1)
-                for moved in (0, -uncertainty, uncertainty)
-                for step in (-1, 0, 1)
-            ]
-    values[: count // 2] = np.resize(np.array(near, np.int64), count // 2)
-    return values
+        if part.absolute is not None and part.percent:
+            meeting = Fraction(part.absolute) * 10**places * 100 / Fraction(part.percent)
+            if meeting < size:
+                return meeting.__floor__() + 1
+    return size // 3
 
 
-def lacks_a_size(of, reference):
-    """Whether a share of this reference means nothing: it is all that a level has, or may decide it alone."""
-    alone = any(
-        part.percent is not None and (part.absolute is None or part.governs != "larger")
-        for _, part in of.levels()
-    )
-    return alone and (reference <= 0 if of.basis == "ratio" else reference == 0)
+def readings(rng, of, places, size, way):
+    """Readings of one criterion, and the verdicts that the definition gives on them."""
+    rule, qualified = WAYS[way]
+    signs = (-1, 0, 0, 1) if qualified else (0,)
+    references = (int(rng.integers(-size // 10, size)), where_parts_meet(of, places, size))
+    known = [(reference, int(rng.integers(0, size // 10))) for reference in references]
+    near = [row for setting in known for row in at_the_limits(of, places, setting, rule, sorted(set(signs)))]
+    near += at_the_limits(of, places, (known[0][0], -1), rule, (0,))
+    numbers = np.array(near, np.int64).T[:, :ROWS]
+    about = anywhere(rng, of, size, signs, ROWS - numbers.shape[1])
+    rows = np.concatenate([numbers[:4], about], axis=1)
+    wanted = by_witnesses(of, places, rows.astype(object) if size == VAST else rows, rule)
+    assert wanted[: numbers.shape[1]].tolist() == numbers[4].tolist()
+    return rows, wanted
 
 
-@pytest.mark.parametrize("rule", RULES)
-def test_kernel_agrees_with_fractions_for_a_million_decimals(rule):
-    rng = np.random.default_rng(RULES.index(rule) + 2026)
-    criteria = [criterion(rng, number) for number in range(CRITERIA)]
-    count = ROWS // 3 // CRITERIA + 1
-    uncertainty = int(rng.integers(0, 3000))
-    values, references, wanted = [], [], []
-    for of in criteria:
-        reference = int(rng.integers(-3, 60)) * int(rng.integers(1, 3000))
-        own = readings(rng, of, reference, count, uncertainty)
-        values.append(own)
-        references.append(np.full(count, reference))
-        missing = lacks_a_size(of, reference)
-        wanted.append(np.full(count, 2) if missing else expected(of, own, reference, uncertainty, rule))
-    index = np.repeat(np.arange(CRITERIA, dtype=np.int32), count)
-    rows = Columns(
-        np.concatenate(values),
-        np.concatenate(references),
-        PLACES,
-        uncertainties=np.full(len(index), uncertainty),
-    )
-    found = verdict_codes_by_criterion(criteria, index, rows, rule)
-    assert (found == np.concatenate(wanted)).all()
-    assert {0, 2, 3, 5} <= set(found.tolist())
+@pytest.mark.parametrize("places", PLACES)
+@pytest.mark.parametrize("way", WAYS)
+def test_kernel_agrees_with_fractions_for_a_million_decimals(way, places):
+    rng = np.random.default_rng([2026, list(WAYS).index(way), places])
+    sizes = [VAST if number % 7 == 0 else SMALL for number in range(CRITERIA)]
+    criteria = [criterion(rng, number, places, size) for number, size in enumerate(sizes)]
+    found = [readings(rng, of, places, size, way) for of, size in zip(criteria, sizes, strict=True)]
+    rows, wanted = np.concatenate([part for part, _ in found], axis=1), np.concatenate([w for _, w in found])
+    index = np.repeat(np.arange(CRITERIA, dtype=np.int32), ROWS)
+    # Rows that stand together and rows that are scattered are found in two ways.
+    order = rng.permutation(len(index)) if places % 2 else np.arange(len(index))
+    values, references, signs, uncertainties = rows[:, order]
+    columns = Columns(values, references, places, signs.astype(np.int8), uncertainties)
+    codes = verdict_codes_by_criterion(criteria, index[order], columns, WAYS[way][0])
+    assert np.flatnonzero(codes != wanted[order]).tolist() == []
 
 
-LITERAL = {
-    "20.3 against 20.0 with 0.3": (Limit(Decimal("0.3")), 203, 200),
-    "1.5 % of 40": (Limit(None, Decimal("1.5")), 406, 400),
-    "0.1 + 0.2": (Limit(Decimal("0.2")), 3, 1),
-}
-
-
-@pytest.mark.parametrize("name", LITERAL)
-@pytest.mark.parametrize(("strict", "code"), [(True, 0), (False, 3)])
-def test_exactly_the_limit_conforms_only_when_it_reads_more_than(name, strict, code):
-    part, value, reference = LITERAL[name]
-    rows = Columns(np.array([value, value + 1]), np.array([reference, reference]), 1)
-    found = verdict_codes_by_criterion(
-        [Criterion("nominal", "either", strict, part)], np.zeros(2, np.int32), rows
-    )
-    assert found.tolist() == [code, 3]
+def test_readings_come_to_a_million():
+    assert len(WAYS) * len(PLACES) * CRITERIA * ROWS >= 1_000_000
