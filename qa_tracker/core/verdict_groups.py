@@ -20,6 +20,8 @@ from qa_tracker.core.verdict_kernel import CHUNK, NOT_ASSESSABLE, Columns, Rule,
 
 FEW = 1 << 10
 """Rows a run of one criterion has on average, from which runs are judged where they stand."""
+BLOCK = 1 << 18
+"""Scattered rows gathered at once: what is fetched here and there stays near the processor."""
 
 
 def verdict_codes_by_criterion(
@@ -31,7 +33,8 @@ def verdict_codes_by_criterion(
 ) -> NDArray[np.uint8]:
     """Judge every row by the criterion its index names, in chunks.
 
-    Rows of one criterion that stand together are judged where they stand; scattered ones are gathered first.
+    Rows of one criterion that stand together are judged where they stand; scattered ones are gathered first,
+    a block at a time.
 
     Parameters
     ----------
@@ -40,27 +43,40 @@ def verdict_codes_by_criterion(
     index
         Position in ``criteria`` per row, shape (n,); -1 where the reading lies outside every band.
     threads
-        That work side by side where rows stand together.
+        That work side by side, 1 or more; the codes are the same.
 
     Returns
     -------
     uint8 array, shape (n,)
-        As ``verdict_codes``; not assessable where the index is -1.
+        As ``verdict_codes``; not assessable where the index is -1. No rows give an empty answer.
+
+    Examples
+    --------
+    >>> from decimal import Decimal
+    >>> from qa_tracker.core.criteria import Limit
+    >>> loss = Criterion("baseline", "below", True, Limit(Decimal("6")), Limit(Decimal("10")))
+    >>> upper = Criterion("none", "above", False, Limit(Decimal("2")))
+    >>> rows = Columns(np.array([145, 20, 19, 20]), np.array([152, 0, 0, 0]), places=1)
+    >>> verdict_codes_by_criterion([loss, upper], np.array([0, 1, 1, -1]), rows).tolist()
+    [0, 3, 0, 2]
     """
     codes = np.full(len(index), NOT_ASSESSABLE, np.uint8)
     _check_index(index, len(criteria))
-    starts = _run_starts(index)
-    if len(starts) * FEW > len(index) + FEW * len(criteria):
-        return _by_groups(criteria, index, columns, rule, codes)
-    judge_run = partial(_judge_run, criteria, index, columns, rule, codes)
-    runs = [(int(a), int(b)) for a, b in pairwise([*starts, len(index)])]
+    changes = index[1:] != index[:-1]
+    if np.count_nonzero(changes) * FEW <= len(index) + FEW * len(criteria):
+        judge_rows = _judge_run
+        parts = _parts(_runs(changes, len(index)), max(CHUNK, len(index) // (4 * threads)))
+    else:
+        judge_rows = _judge_block
+        parts = _parts([(0, len(index))], max(BLOCK, FEW * len(criteria)))
+    judge_part = partial(judge_rows, criteria, index, columns, rule, codes)
     if threads == 1:
-        for start, end in runs:
-            judge_run(start, end)
+        for start, end in parts:
+            judge_part(start, end)
         return codes
-    # NumPy lets go of the interpreter while it computes, so chunks of one run may go side by side.
+    # NumPy lets go of the interpreter while it computes, so parts may go side by side.
     with ThreadPoolExecutor(threads) as pool:
-        list(pool.map(lambda part: judge_run(*part), _parts(runs, threads)))
+        list(pool.map(lambda part: judge_part(*part), parts))
     return codes
 
 
@@ -69,19 +85,16 @@ def _check_index(index: NDArray[Any], count: int) -> None:
         raise Invalid("kernel.index", count=str(count))
 
 
-def _run_starts(index: NDArray[Any]) -> NDArray[np.intp]:
-    """Return where each run of equal criteria begins."""
-    if not len(index):
-        return np.empty(0, np.intp)
-    return np.concatenate(([0], np.flatnonzero(index[1:] != index[:-1]) + 1))
+def _runs(changes: NDArray[np.bool_], rows: int) -> list[tuple[int, int]]:
+    """Return where each run of equal criteria begins and ends."""
+    return list(pairwise([0, *(np.flatnonzero(changes) + 1).tolist(), rows]))
 
 
-def _parts(runs: list[tuple[int, int]], threads: int) -> Iterator[tuple[int, int]]:
-    """Cut runs so that every thread has something to do."""
-    rows = max(CHUNK, (runs[-1][1] if runs else 0) // (4 * threads))
+def _parts(runs: list[tuple[int, int]], most: int) -> Iterator[tuple[int, int]]:
+    """Cut what is longer than ``most`` rows."""
     for start, end in runs:
-        for first in range(start, end, rows):
-            yield first, min(first + rows, end)
+        for first in range(start, end, most):
+            yield first, min(first + most, end)
 
 
 def _judge_run(
@@ -102,26 +115,29 @@ def _judge_run(
         codes[rows] = verdict_codes(criteria[position], columns.rows(rows), rule)
 
 
-def _by_groups(
+def _judge_block(
     criteria: Sequence[Criterion],
     index: NDArray[Any],
     columns: Columns,
     rule: Rule,
     codes: NDArray[np.uint8],
-) -> NDArray[np.uint8]:
-    """Gather each criterion's rows, judge them, and put the codes back where they belong."""
-    for position, rows in _groups(index, len(criteria)):
+    start: int,
+    end: int,
+) -> None:
+    """Gather each criterion's rows of a block, judge them, and put the codes back where they belong."""
+    block = slice(start, end)
+    readings, into = columns.rows(block), codes[block]
+    for position, rows in _groups(index[block], len(criteria)):
         if position >= 0:
-            codes[rows] = verdict_codes(criteria[position], columns.rows(rows), rule)
-    return codes
+            into[rows] = verdict_codes(criteria[position], readings.rows(rows), rule)
 
 
 def _groups(index: NDArray[Any], count: int) -> Iterator[tuple[int, NDArray[np.intp]]]:
     """Yield each criterion's rows, a chunk at a time."""
     # Small integers are sorted by radix, in time proportional to the rows.
-    narrow = index.astype(np.int16) if count < 1 << 15 else index
+    narrow = index.astype(np.int16 if count < 1 << 15 else np.int64)
     order = np.argsort(narrow, kind="stable")
-    ends = np.searchsorted(narrow[order], np.arange(-1, count + 1))
-    for position, (start, end) in enumerate(pairwise(ends), start=-1):
-        for first in range(int(start), int(end), CHUNK):
-            yield position, order[first : min(first + CHUNK, int(end))]
+    ends = np.searchsorted(narrow[order], np.arange(-1, count + 1, dtype=narrow.dtype))
+    for position, (start, end) in enumerate(pairwise(ends.tolist()), start=-1):
+        for first, last in _parts([(start, end)], CHUNK):
+            yield position, order[first:last]

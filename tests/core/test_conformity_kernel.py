@@ -2,16 +2,18 @@
 
 from __future__ import annotations
 
+import doctest
 from decimal import Decimal as D
 
 import numpy as np
 import pytest
 
+from qa_tracker.core import verdict_groups
 from qa_tracker.core.conformity import judge, severity
 from qa_tracker.core.criteria import Criterion, Limit
 from qa_tracker.core.decimals import from_scaled
 from qa_tracker.core.errors import Invalid
-from qa_tracker.core.verdict_groups import verdict_codes_by_criterion
+from qa_tracker.core.verdict_groups import BLOCK, verdict_codes_by_criterion
 from qa_tracker.core.verdict_kernel import (
     CHUNK,
     LARGEST,
@@ -144,11 +146,14 @@ def test_kernel_marks_rows_outside_every_band_not_assessable():
     assert verdict_codes_by_criterion(CRITERIA, np.array([-1, 1]), columns).tolist() == [2, 3]
 
 
-def test_kernel_keeps_the_order_of_rows_across_chunks():
-    count = 2 * CHUNK + 5
-    index = np.arange(count) % 2 * 3
+@pytest.mark.parametrize("threads", [1, 2])
+@pytest.mark.parametrize("together", [True, False], ids=["together", "scattered"])
+def test_kernel_keeps_the_order_of_rows_across_chunks_and_threads(together, threads):
+    count = BLOCK + 2 * CHUNK + 5
+    index = np.arange(count) * 2 // count * 3 if together else np.arange(count) % 2 * 3
     values = np.where(np.arange(count) % 5 == 0, 90, 0)
-    codes = verdict_codes_by_criterion(CRITERIA, index, Columns(values, np.zeros(count, np.int64), 1))
+    columns = Columns(values, np.zeros(count, np.int64), 1)
+    codes = verdict_codes_by_criterion(CRITERIA, index, columns, threads=threads)
     assert np.array_equal(codes, np.where(values == 90, 5, 0))
 
 
@@ -176,3 +181,7 @@ def test_kernel_refuses_a_criterion_without_level_or_index():
 def test_kernel_refuses_a_limit_finer_than_its_columns():
     with pytest.raises(Invalid, match=r"number\.loss"):
         verdict_codes(CRITERIA[0], Columns(np.array([1]), np.array([1]), 0))
+
+
+def test_example_of_many_criteria_gives_what_it_says():
+    assert doctest.testmod(verdict_groups) == (0, 6)
