@@ -275,7 +275,8 @@ def far_outside(value: Decimal, low: Decimal, high: Decimal) -> bool:
     """Tell whether a value lies further outside the band low..high than the band is wide.
 
     The distance that asks again is the larger of the band's width and 15 % of its larger end, so a band of no
-    width does not ask about every change.
+    width does not ask about every change. A band without negative numbers asks about each of them: what is never
+    below zero was typed with a stray sign, by which a leakage of 600 would be better than any limit.
 
     Examples
     --------
@@ -286,4 +287,4 @@ def far_outside(value: Decimal, low: Decimal, high: Decimal) -> bool:
     """
     least, most, number = Fraction(low), Fraction(high), Fraction(value)
     margin = max(most - least, ASK_AGAIN_SHARE * max(abs(least), abs(most)))
-    return number < least - margin or number > most + margin
+    return number < 0 <= least or number < least - margin or number > most + margin

@@ -126,6 +126,7 @@ def test_not_seen_is_a_reading_without_a_number(ward):
         ("85.0", "reading.confirm_tenfold"),
         ("1.0", "reading.confirm_tenfold"),
         ("601", "reading.confirm_outside"),
+        ("-10.0", "reading.confirm_outside"),
         ("9.0", None),
         ("600", None),
     ],
