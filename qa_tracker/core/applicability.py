@@ -30,6 +30,8 @@ class Circumstances:
         Local day.
     test_object_id, test_object
         What the check was measured on: key and name.
+    qualifier
+        Of the reading. Nothing seen is compared with no baseline, so none keeps a limit from judging it.
     """
 
     array_kind: str = ""
@@ -40,6 +42,7 @@ class Circumstances:
     measured_on: dt.date | None = None
     test_object_id: int | None = None
     test_object: str = ""
+    qualifier: str = "="
 
 
 @dataclass(frozen=True)
@@ -88,7 +91,7 @@ def _other_class(spec: CriterionSpec, met: Circumstances) -> Judgement | None:
 
 
 def _unfit_baseline(spec: CriterionSpec, met: Circumstances, baseline: Standing | None) -> Judgement | None:
-    if baseline is None or spec.criterion.basis != "baseline":
+    if baseline is None or spec.criterion.basis != "baseline" or met.qualifier == "not_seen":
         return None
     if baseline.expires_on and met.measured_on and met.measured_on >= baseline.expires_on:
         return not_assessable(Say.EXPIRED_BASELINE, expired_on=baseline.expires_on.isoformat())

@@ -78,9 +78,11 @@ class Again:
         if expires_on is not None and local_day(row.measured_at, self._zone(row)) < expires_on:
             expires_on = None
         objects = row.baseline_id is not None, row.baseline_object_id, row.test_object_id
-        key = (spec.id, device, measurand.medium, method, expires_on, objects)
+        seen = "not_seen" if row.qualifier == "not_seen" else "="
+        key = (spec.id, device, measurand.medium, method, expires_on, objects, seen)
         if key not in self._fits:
-            met = Circumstances(*device, measurand.medium, method, expires_on, row.test_object_id)
+            on = expires_on, row.test_object_id, ""
+            met = Circumstances(*device, measurand.medium, method, *on, seen)
             standing = Standing(row.baseline_object_id, "", expires_on) if row.baseline_id else None
             self._fits[key] = unfit(spec, met, standing) is None
         return self._fits[key]

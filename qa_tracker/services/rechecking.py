@@ -126,6 +126,7 @@ def _circumstances(verdict: Verdict, measurand: MeasurandSpec, known: Known) -> 
         local_day(submission.measured_at, site.time_zone if site else "UTC"),
         on.id if on else None,
         f"{on.name} {on.serial}" if on else "",
+        verdict.reading.qualifier if verdict.reading else "=",
     )
 
 

@@ -157,6 +157,7 @@ def _refusal(item: Item, criterion: CriterionRow, entry: Entry, under: MeasuredW
         measured_on=under.measured_on,
         test_object_id=under.test_object_id,
         test_object=under.test_object,
+        qualifier=entry.qualifier,
     )
     return unfit(criterion.spec, met, standing_of(item.baseline))
 

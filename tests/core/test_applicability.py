@@ -64,6 +64,12 @@ FIT = {
         "TG1-PEN", Circumstances(measured_on=DAY), Standing(expires_on=DAY + dt.timedelta(days=1)),
     ),
     "no baseline": ("TG1-PEN", Circumstances(measured_on=DAY), None),
+    "nothing seen on another object": (
+        "TG1-PEN", Circumstances(test_object_id=1, qualifier="not_seen"), THERE,
+    ),
+    "nothing seen after the baseline ran out": (
+        "TG1-PEN", Circumstances(measured_on=DAY, qualifier="not_seen"), Standing(expires_on=DAY),
+    ),
     "a nominal is no baseline": (
         "TG1-VERT", Circumstances(measured_on=DAY), replace(HERE, expires_on=DAY),
     ),
