@@ -7,6 +7,7 @@ import uuid
 from dataclasses import dataclass
 
 from django.db.models import Q, QuerySet
+from django.db.models.functions import Coalesce
 
 from qa_tracker.core.workflow import CHECK_AWAITED, CHECK_DONE
 from qa_tracker.records.models import Check
@@ -150,8 +151,12 @@ def submitted_checks(scope: Scope, most: int = 200) -> list[CheckRow]:
 def checks_of_device(
     device_id: int, *, until: dt.datetime | None = None, most: int | None = None
 ) -> list[CheckRow]:
-    """A device's checks, newest first, up to a moment."""
-    found = _joined().filter(device_id=device_id).order_by("-due_on", "-id")
+    """A device's checks, newest first by when they were done or due, up to a moment.
+
+    Not by the due day: a check without a plan has none, and would be the first to fall off the end of a list.
+    """
+    newest = Coalesce("submitted_at", "due_at").desc(nulls_last=True)
+    found = _joined().filter(device_id=device_id).order_by(newest, "-id")
     if until is not None:
         found = found.filter(Q(submitted_at=None, due_at__lte=until) | Q(submitted_at__lte=until))
     return [_row(check) for check in found[:most]]
