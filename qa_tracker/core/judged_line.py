@@ -73,7 +73,8 @@ def _from_nothing(criterion: Criterion, judged: Judged, parameters: Mapping[str,
     if criterion.basis == "none":
         return replace(judged, origin=origin)
     percents = [limit.percent if limit else None for limit in (criterion.remedial, criterion.suspension)]
-    value = Decimal(parameters["ratio"])
+    # Not the rounded ratio of the sentence: the share would then differ from the one that stands in it.
+    value = HUNDRED * judged.value / judged.origin if judged.value and judged.origin else judged.value
     return replace(judged, origin=origin, value=value, remedial=percents[0], suspension=percents[1])
 
 

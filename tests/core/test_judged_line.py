@@ -50,6 +50,7 @@ def drawn(criterion: dict[str, object], **given: str) -> figures.AllowanceLine |
         pytest.param(UPPER, {"value": "1.6"}, "40.0", id="upper limit on the value"),
         pytest.param(LOWER, {"value": "4"}, "50.0", id="lower limit on the value"),
         pytest.param(RATIO, {"value": "176", "reference": "210"}, "104.8", id="ratio in percent"),
+        pytest.param(RATIO, {"value": "5", "reference": "3"}, "208.3", id="ratio that rounding would move"),
         pytest.param(BANDS, {"value": "3.5", "quantity": "2.5"}, "50.0", id="band of the test frequency"),
     ],
 )
@@ -58,6 +59,10 @@ def test_the_share_is_that_of_the_verdict(criterion, given, share):
     used = conformity.judge(from_json(criterion), kind="number", **given).used
     assert line.share_percent == (Decimal(share) if share else used)
     assert line.share_percent == used
+
+
+def test_a_ratio_a_hair_above_its_level_reaches_it():
+    assert drawn(RATIO, value="168.05", reference="210").reached == "remedial"
 
 
 @pytest.mark.parametrize(("grade", "reached"), [("green", ""), ("amber", "remedial"), ("red", "suspension")])
