@@ -209,7 +209,7 @@ def _choices(item: Item, value: str) -> tuple[Choice, ...]:
 
 
 def _beside(item: Item) -> tuple[str, ...]:
-    """Resolution, baseline or nominal, limit and last value: what a reader of the scale wants to see."""
+    """Resolution, baseline or nominal, limits and last value: what a reader of the scale wants to see."""
     spec = item.spec
     said = []
     if spec.kind in ("number", "image"):
@@ -221,8 +221,11 @@ def _beside(item: Item) -> tuple[str, ...]:
         said.append(_("Baseline %(value)s, since %(day)s.") % {"value": value, "day": since})
     if item.nominal is not None:
         said.append(_("Nominal %(value)s.") % {"value": value_words(spec, "=", item.nominal, spec.unit)})
-    if item.criterion is not None and not item.criterion.spec.criterion.grades:
-        said.append(_("Limit: %(limit)s.") % {"limit": wording.criterion_words(item.criterion.spec)})
+    said += [
+        _("Limit: %(limit)s.") % {"limit": wording.criterion_words(each.spec)}
+        for each in item.criteria
+        if not each.spec.criterion.grades
+    ]
     if item.last is not None:
         said.append(_("The last value is shown once yours is in.") if spec.hide_last else last_words(item))
     return tuple(said)
