@@ -10,13 +10,13 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Context, Decimal
 from fractions import Fraction
-from functools import lru_cache
 
 import numpy as np
-from scipy.special import chdtrc, chdtri, ndtr, ndtri, stdtrit
+from scipy.special import stdtrit
 
 from qa_tracker.core.decimals import from_scaled, places_of, round_half_even, ten_to
 from qa_tracker.core.errors import Invalid
+from qa_tracker.core.interval_factors import tolerance_factor
 
 LEAST_SETUPS = 10
 """Independent set-ups that a limit of the device's own spread needs (common practice, no source)."""
@@ -25,8 +25,6 @@ LEAST_FOR_OUTLIERS = 15
 OUTLIER_SHARE = Decimal("0.05")
 SHOWN_DIGITS = 4
 _DIGITS = Context(prec=34, rounding=ROUND_HALF_EVEN)
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(160)
-_FARTHEST = 9.0
 
 
 @dataclass(frozen=True)
@@ -41,7 +39,8 @@ class Summary:
 def summary(values: Sequence[Decimal]) -> Summary:
     """Return count, mean and standard deviation, worked in fractions and given to 34 digits.
 
-    ``m = sum(x) / n``, ``s = sqrt(sum((x - m)**2) / (n - 1))``; NIST/SEMATECH e-Handbook, 1.3.5.1 and 1.3.5.6.
+    ``m = sum(x) / n``, ``s = sqrt(sum((x - m)**2) / (n - 1))``; NIST/SEMATECH e-Handbook, 1.3.5.1 and 1.3.5.6. A
+    mean that ends within 34 digits is exact.
 
     Parameters
     ----------
@@ -51,12 +50,30 @@ def summary(values: Sequence[Decimal]) -> Summary:
     Raises
     ------
     Invalid
-        ``baseline.no_setups`` of none, ``number.not_finite`` for NaN and infinity.
+        As ``mean_and_variance``.
 
     Examples
     --------
     >>> summary([Decimal("8.5"), Decimal("9.0"), Decimal("8.0")])
     Summary(count=3, mean=Decimal('8.5'), standard_deviation=Decimal('0.5'))
+    """
+    mean, variance = mean_and_variance(values)
+    deviation = None if variance is None else _DIGITS.sqrt(_decimal(variance))
+    return Summary(len(values), _decimal(mean), deviation)
+
+
+def mean_and_variance(values: Sequence[Decimal]) -> tuple[Fraction, Fraction | None]:
+    """Return mean and variance (divisor n - 1; None of a single value) exactly.
+
+    Raises
+    ------
+    Invalid
+        ``baseline.no_setups`` of none, ``number.not_finite`` for NaN and infinity.
+
+    Examples
+    --------
+    >>> mean_and_variance([Decimal("0.1"), Decimal("0.4")])
+    (Fraction(1, 4), Fraction(9, 200))
     """
     if not values:
         raise Invalid("baseline.no_setups")
@@ -65,103 +82,36 @@ def summary(values: Sequence[Decimal]) -> Summary:
     exact = [Fraction(value) for value in values]
     mean = sum(exact, Fraction(0)) / len(exact)
     if len(exact) == 1:
-        return Summary(1, _decimal(mean), None)
-    variance = sum(((value - mean) ** 2 for value in exact), Fraction(0)) / (len(exact) - 1)
-    return Summary(len(exact), _decimal(mean), _DIGITS.sqrt(_decimal(variance)))
+        return mean, None
+    return mean, sum(((value - mean) ** 2 for value in exact), Fraction(0)) / (len(exact) - 1)
 
 
 def _decimal(value: Fraction) -> Decimal:
     return _DIGITS.divide(Decimal(value.numerator), Decimal(value.denominator))
 
 
-@lru_cache(maxsize=4096)
-def tolerance_factor(count: int, coverage: Decimal, confidence: Decimal) -> float:
-    """Return the exact two-sided factor k of a normal tolerance interval, mean and spread both unknown.
-
-    ``mean +- k s`` holds at least the coverage of the population with the confidence. k solves
-
-    ``sqrt(2 n / pi) * int_0^inf P(X > f r(x)^2 / k^2) exp(-n x^2 / 2) dx = confidence``
-
-    with X chi-square of f = n - 1 degrees of freedom, and ``r(x)`` the half width around x that holds the coverage
-    of a standard normal. Odeh and Owen 1980, Tables for Normal Tolerance Limits, Table 3.4.1; ISO 16269-6:2014.
-
-    Parameters
-    ----------
-    count
-        Set-ups, 2 or more.
-    coverage, confidence
-        In percent, between 0 and 100.
-
-    Returns
-    -------
-    float
-        To 1e-6 relative or better.
-
-    Raises
-    ------
-    Invalid
-        ``baseline.too_few_setups`` below 2, ``criterion.own_spread_share`` outside 0 to 100.
-
-    Examples
-    --------
-    >>> round(tolerance_factor(20, Decimal(95), Decimal(95)), 6)
-    2.760346
-    """
-    if count < 2:
-        raise Invalid("baseline.too_few_setups", setups=str(count), least="2")
-    for share in (coverage, confidence):
-        if not 0 < share < 100:
-            raise Invalid("criterion.own_spread_share", field="", value=str(share))
-    held, sure, freedom = float(coverage) / 100, float(confidence) / 100, count - 1
-    offsets = (_NODES + 1) * _FARTHEST / 2
-    weights = _WEIGHTS * _FARTHEST / 2 * 2 * np.exp(-(offsets**2) / 2) / math.sqrt(2 * math.pi)
-    widths = _half_widths(offsets / math.sqrt(count), held)
-
-    def surely(k: float) -> float:
-        return float(np.sum(weights * chdtrc(freedom, freedom * widths**2 / k**2)))
-
-    # Never smaller than with a known mean and spread at the mean; doubled until it is enough.
-    low = float(ndtri((1 + held) / 2)) * math.sqrt(freedom / float(chdtri(freedom, sure))) / 2
-    high = 2 * low
-    while surely(high) < sure:
-        high *= 2
-    while high - low > 1e-12 * high:
-        middle = (low + high) / 2
-        low, high = (middle, high) if surely(middle) < sure else (low, middle)
-    return (low + high) / 2
-
-
-def _half_widths(offsets: np.ndarray, held: float) -> np.ndarray:
-    """Solve Phi(x + r) - Phi(x - r) = held for r, by Newton from above: the left side is concave in r."""
-    widths = offsets + float(ndtri((1 + held) / 2))
-    for _ in range(60):
-        short = ndtr(offsets + widths) - ndtr(offsets - widths) - held
-        slope = (np.exp(-((offsets + widths) ** 2) / 2) + np.exp(-((offsets - widths) ** 2) / 2)) / math.sqrt(
-            2 * math.pi
-        )
-        step = short / slope
-        widths = widths - step
-        if float(np.max(np.abs(step))) < 1e-14:
-            break
-    return widths
-
-
 def spread_floor(resolution: Decimal) -> Decimal:
     """Return resolution / sqrt(12), the standard deviation that a resolution alone gives.
 
-    JCGM 100:2008 (GUM), F.2.2.1: a rectangular distribution as wide as the resolution.
+    A rectangular distribution as wide as the resolution: JCGM 100:2008 (GUM), 4.3.7 and F.2.2.1. To 34 digits, in
+    the resolution's unit; ``number.step`` unless the resolution is above zero.
 
     Examples
     --------
     >>> round(spread_floor(Decimal("0.5")), 4)
     Decimal('0.1443')
     """
+    if not resolution.is_finite() or resolution <= 0:
+        raise Invalid("number.step", field="resolution", step=str(resolution))
     return _DIGITS.divide(resolution, _DIGITS.sqrt(Decimal(12)))
 
 
 @dataclass(frozen=True)
 class OwnAllowance:
-    """What a device's own spread allows: ``size = factor * spread``; ``floored`` where the resolution gave the spread."""
+    """What a device's own spread allows: ``size = factor * spread``.
+
+    ``floored`` where the resolution gave the spread; ``spread`` is rounded to four digits, for showing only.
+    """
 
     factor: float
     spread: Decimal
@@ -186,14 +136,15 @@ def own_allowance(
     count
         Independent set-ups, ``LEAST_SETUPS`` or more.
     standard_deviation, resolution
-        In the measurand's unit.
+        In the measurand's unit; zero or more, and above zero.
     coverage, confidence
         In percent.
 
     Raises
     ------
     Invalid
-        ``baseline.too_few_setups``; as ``tolerance_factor``.
+        ``baseline.too_few_setups``; ``baseline.spread`` for a deviation below zero, NaN or infinite; as
+        ``spread_floor`` and ``tolerance_factor``.
 
     Examples
     --------
@@ -202,6 +153,8 @@ def own_allowance(
     """
     if count < LEAST_SETUPS:
         raise Invalid("baseline.too_few_setups", setups=str(count), least=str(LEAST_SETUPS))
+    if not standard_deviation.is_finite() or standard_deviation < 0:
+        raise Invalid("baseline.spread", field="standard_deviation", entered=str(standard_deviation))
     floor = spread_floor(resolution)
     spread = max(standard_deviation, floor)
     factor = tolerance_factor(count, coverage, confidence)
@@ -230,32 +183,36 @@ class Outliers:
 def generalised_esd(values: Sequence[Decimal], most: int, significance: Decimal = OUTLIER_SHARE) -> Outliers:
     """Test for up to ``most`` outliers; the number found is the largest i with ``R_i > lambda_i``.
 
-    Rosner 1983, Technometrics 25(2):165-172; NIST/SEMATECH e-Handbook, 1.3.5.17.3. With ``most`` 1 it is the
-    two-sided Grubbs test.
+    ``R_i = max |x - m| / s`` of what is left after i - 1 were taken out, the farthest each time;
+    ``lambda_i = t (n - i) / sqrt((n - i - 1 + t^2) (n - i + 1))``, t Student's quantile of n - i - 1 degrees of
+    freedom at ``1 - significance / (2 (n - i + 1))``. Rosner 1983, Technometrics 25(2):165-172; NIST/SEMATECH
+    e-Handbook, 1.3.5.17.3. With ``most`` 1 it is the two-sided Grubbs test.
 
     Parameters
     ----------
     values
-        At least ``most`` + 2 finite decimals.
+        At least ``most`` + 2 finite decimals. Where nothing varies none is found; of two equally far the first is.
     most
         Outliers looked for, 1 or more.
     significance
-        Between 0 and 1.
+        More than 0 and less than 1.
 
     Raises
     ------
     Invalid
-        ``baseline.too_few_setups`` for fewer values.
+        ``baseline.too_few_setups`` for fewer values, ``number.not_finite``, ``baseline.outlier_terms`` for the rest.
 
     Examples
     --------
     >>> generalised_esd([Decimal(n) for n in (1, 2, 1, 2, 1, 2, 30)], 1).positions
     (6,)
     """
+    if most < 1 or not significance.is_finite() or not 0 < significance < 1:
+        raise Invalid("baseline.outlier_terms", most=str(most), significance=str(significance))
     if len(values) < most + 2:
         raise Invalid("baseline.too_few_setups", setups=str(len(values)), least=str(most + 2))
     left = list(range(len(values)))
-    numbers = np.array([float(value) for value in values])
+    numbers = _centred(values)
     statistics, critical, taken = [], [], []
     for number in range(1, most + 1):
         rest = numbers[left]
@@ -266,6 +223,12 @@ def generalised_esd(values: Sequence[Decimal], most: int, significance: Decimal 
         taken.append(left.pop(at))
     found = [i for i in range(most) if statistics[i] > critical[i]]
     return Outliers(tuple(statistics), tuple(critical), tuple(taken[: found[-1] + 1] if found else ()))
+
+
+def _centred(values: Sequence[Decimal]) -> np.ndarray:
+    """Take the mean away before anything is a double, so that a small spread on a large value is not lost."""
+    mean, _ = mean_and_variance(values)
+    return np.array([float(Fraction(value) - mean) for value in values])
 
 
 def _esd_critical(count: int, number: int, significance: float) -> float:

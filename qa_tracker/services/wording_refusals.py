@@ -20,6 +20,7 @@ from qa_tracker.services.wording_refused_formulas import FORMULAS
 from qa_tracker.services.wording_refused_lines import LINES
 from qa_tracker.services.wording_refused_records import RECORDS
 from qa_tracker.services.wording_refused_requests import REQUESTS
+from qa_tracker.services.wording_refused_statistics import STATISTICS
 from qa_tracker.services.wording_refused_uncertainty import UNCERTAINTY
 from qa_tracker.services.wording_refused_values import VALUES
 from qa_tracker.services.wording_verbs import MOVES, PERMITTED
@@ -49,6 +50,7 @@ SENTENCES: Final[Mapping[str, str]] = (
     | FORMULAS
     | LINES
     | UNCERTAINTY
+    | STATISTICS
     | BASELINES
     | EDITOR
 )

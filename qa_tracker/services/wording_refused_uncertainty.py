@@ -21,10 +21,6 @@ UNCERTAINTY: Final = {
     "uncertainty.too_few_repeats": N_(
         "There are %(count)s readings to estimate from. Give two or more repeats, one a line."
     ),
-    "baseline.no_setups": N_("There is no set-up to make a baseline of. Choose or type at least one."),
-    "baseline.too_few_setups": N_(
-        "There are %(setups)s set-ups where %(least)s are needed. Measure more, on other days."
-    ),
     "uncertainty.reason_missing": N_("It is not said why the statement ends. Give the reason."),
     "uncertainty.unknown": N_(
         "There is no such statement in force: it may have been ended or replaced. Go back to the list."
