@@ -1,30 +1,31 @@
-"""Measurement uncertainty: from repeats, standard and expanded, combined; and the risks of deciding with it."""
+"""Measurement uncertainty: from repeats, standard and expanded, and combined; kept exact, or rounded up."""
 
 from __future__ import annotations
 
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
-from decimal import Decimal
+from decimal import Context, Decimal
 from fractions import Fraction
 
-import numpy as np
-from scipy.special import ndtr, stdtrit
+from scipy.special import stdtrit
 
-from qa_tracker.core.baselines import summary
-from qa_tracker.core.comparison import probability_within
-from qa_tracker.core.decimals import from_scaled
+from qa_tracker.core.baselines import mean_and_variance, summary
+from qa_tracker.core.decimals import MAX_PLACES, MAX_SCALED, from_scaled, places_of, plain, ten_to
 from qa_tracker.core.errors import Invalid
 
 SIGNIFICANT = 4
+"""Digits kept of an uncertainty that is rounded."""
 TWO = Decimal(2)
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(400)
-_FARTHEST = 9.0
+_SIZES = Context(prec=SIGNIFICANT)
 
 
 @dataclass(frozen=True)
 class Repeats:
-    """What repeats say of one reading and of their mean; all in the unit of the readings but ``student_t``."""
+    """What repeats say of one reading and of their mean; all in the unit of the readings but ``student_t``.
+
+    ``standard_deviation`` is given to 34 digits, the uncertainties as ``rounded_up`` gives them.
+    """
 
     count: int
     mean: Decimal
@@ -45,174 +46,140 @@ def from_repeats(values: Sequence[Decimal], confidence: Decimal = Decimal(95)) -
     Parameters
     ----------
     values
-        Two or more finite decimals.
+        Two or more finite decimals; of equal ones every uncertainty is 0.
     confidence
-        In percent, between 0 and 100.
+        In percent, more than 0 and less than 100.
 
     Raises
     ------
     Invalid
-        ``uncertainty.too_few_repeats`` below two.
+        ``uncertainty.too_few_repeats`` below two, ``number.not_finite``, ``uncertainty.confidence``.
 
     Examples
     --------
     >>> from_repeats([Decimal("10.1"), Decimal("10.3"), Decimal("10.2")]).expanded_of_one
     Decimal('0.4303')
     """
+    if not confidence.is_finite() or not 0 < confidence < 100:
+        raise Invalid("uncertainty.confidence", field="confidence", entered=str(confidence))
     if len(values) < 2:
         raise Invalid("uncertainty.too_few_repeats", field="repeats", count=str(len(values)))
     found = summary(values)
-    deviation = found.standard_deviation or Decimal(0)
-    t = float(stdtrit(len(values) - 1, (1 + float(confidence) / 100) / 2))
-    of_mean = float(deviation) / math.sqrt(len(values))
+    of_one = mean_and_variance(values)[1] or Fraction(0)
+    of_mean = of_one / len(values)
+    t = -float(stdtrit(len(values) - 1, float(100 - confidence) / 200))
     return Repeats(
         count=len(values),
         mean=found.mean,
-        standard_deviation=deviation,
+        standard_deviation=found.standard_deviation or Decimal(0),
         student_t=t,
-        standard_of_one=rounded_up(Fraction(deviation)),
-        expanded_of_one=rounded_up(Fraction(t * float(deviation))),
-        standard_of_mean=rounded_up(Fraction(of_mean)),
-        expanded_of_mean=rounded_up(Fraction(t * of_mean)),
+        standard_of_one=root_rounded_up(of_one),
+        expanded_of_one=root_rounded_up(of_one * Fraction(t) ** 2),
+        standard_of_mean=root_rounded_up(of_mean),
+        expanded_of_mean=root_rounded_up(of_mean * Fraction(t) ** 2),
     )
 
 
 def rounded_up(value: Fraction) -> Decimal:
-    """Return a value >= 0 as it is where four significant digits hold it, else rounded up to them.
+    """Return a value >= 0 exactly where it can be kept as a number that was entered, else rounded up.
 
-    An uncertainty is never rounded down: that would promise more than was measured.
+    Kept are 12 decimal places and 15 digits; anything else goes up to four significant digits, or to the last of 12
+    places. An uncertainty is never rounded down: that would promise more than was measured.
 
     Examples
     --------
-    >>> rounded_up(Fraction(1, 3)), rounded_up(Fraction("2.5"))
-    (Decimal('0.3334'), Decimal('2.5'))
+    >>> rounded_up(Fraction(1, 3)), rounded_up(Fraction("2.46912"))
+    (Decimal('0.3334'), Decimal('2.46912'))
     """
-    if value <= 0:
-        return Decimal(0)
-    size = math.floor(math.log10(value))
-    places = max(SIGNIFICANT - 1 - size, 0)
-    scaled = value * 10**places
-    # What a double can't hold exactly is a hair above the digit it stands for.
-    whole = round(scaled) if abs(scaled - round(scaled)) < Fraction(1, 10**8) else math.ceil(scaled)
+    scaled = value * ten_to(MAX_PLACES)
+    if scaled.denominator == 1:
+        whole, places = _shortest(scaled.numerator, MAX_PLACES)
+        if whole <= MAX_SCALED:
+            return from_scaled(whole, places)
+    places = _places(_SIZES.divide(Decimal(value.numerator), Decimal(value.denominator)))
+    return from_scaled(*_shortest(math.ceil(value * Fraction(10) ** places), places))
+
+
+def root_rounded_up(square: Fraction) -> Decimal:
+    """Return the root of a value >= 0 as ``rounded_up`` does, worked in whole numbers.
+
+    Examples
+    --------
+    >>> root_rounded_up(Fraction(25, 4)), root_rounded_up(Fraction(2))
+    (Decimal('2.5'), Decimal('1.415'))
+    """
+    root = Fraction(math.isqrt(square.numerator), math.isqrt(square.denominator))
+    if root**2 == square:
+        return rounded_up(root)
+    size = _SIZES.sqrt(_SIZES.divide(Decimal(square.numerator), Decimal(square.denominator)))
+    places = _places(size)
+    # The least whole number whose square is not below x is isqrt(ceil(x) - 1) + 1.
+    return from_scaled(*_shortest(math.isqrt(math.ceil(square * Fraction(100) ** places) - 1) + 1, places))
+
+
+def _places(size: Decimal) -> int:
+    """Count the places that hold four significant digits; below zero for digits before the point."""
+    return min(SIGNIFICANT - 1 - size.adjusted(), MAX_PLACES)
+
+
+def _shortest(whole: int, places: int) -> tuple[int, int]:
+    """Write whole / 10 ** places with no zeros at the end of its places, and none of its places below zero."""
+    if places < 0:
+        return whole * ten_to(-places), 0
     while places and whole % 10 == 0:
         whole, places = whole // 10, places - 1
-    return from_scaled(whole, places)
+    return whole, places
 
 
 def expanded_from_standard(standard: Decimal, coverage_factor: Decimal = TWO) -> Decimal:
-    """Return U = k u (GUM 6.2.1), exactly where four digits hold it, else rounded up.
+    """Return U = k u (GUM 6.2.1) as ``rounded_up`` does.
+
+    Raises
+    ------
+    Invalid
+        ``uncertainty.negative`` and ``number.not_finite`` for u, ``uncertainty.not_positive`` unless k > 0.
 
     Examples
     --------
-    >>> expanded_from_standard(Decimal("1.5"))
-    Decimal('3')
+    >>> expanded_from_standard(Decimal("1.23456"))
+    Decimal('2.46912')
     """
-    return rounded_up(Fraction(standard) * Fraction(coverage_factor))
+    return rounded_up(_size(standard) * _factor(coverage_factor))
 
 
 def standard_from_expanded(expanded: Decimal, coverage_factor: Decimal) -> Decimal:
-    """Return u = U / k; ``uncertainty.not_positive`` unless k > 0.
+    """Return u = U / k (GUM 4.3.3) as ``rounded_up`` does; refusals as ``expanded_from_standard``.
 
     Examples
     --------
     >>> standard_from_expanded(Decimal("1"), Decimal("1.96"))
     Decimal('0.5103')
     """
-    if coverage_factor <= 0:
-        raise Invalid("uncertainty.not_positive", field="coverage_factor", entered=str(coverage_factor))
-    return rounded_up(Fraction(expanded) / Fraction(coverage_factor))
+    return rounded_up(_size(expanded) / _factor(coverage_factor))
 
 
 def combined(*standard: Decimal) -> Decimal:
-    """Return the root sum of squares of uncorrelated standard uncertainties (GUM 5.1.2); 0 of none.
+    """Return the root sum of squares of uncorrelated standard uncertainties, as ``rounded_up`` does; 0 of none.
+
+    JCGM 100:2008 (GUM), 5.1.2, equation 10 with sensitivity coefficients of 1. Refused: ``uncertainty.negative``,
+    ``number.not_finite``.
 
     Examples
     --------
-    >>> combined(Decimal(3), Decimal(4))
-    Decimal('5')
+    >>> combined(Decimal(3), Decimal(4)), combined(Decimal(1), Decimal(1))
+    (Decimal('5'), Decimal('1.415'))
     """
-    return rounded_up(Fraction(math.hypot(*(float(each) for each in standard))))
+    return root_rounded_up(sum((_size(each) ** 2 for each in standard), Fraction(0)))
 
 
-@dataclass(frozen=True)
-class Risk:
-    """A consumer's risk (accepted, not conforming) and a producer's (conforming, not accepted)."""
-
-    consumer: float
-    producer: float
-
-
-def specific_risk(low: float, high: float, estimate: float, standard_uncertainty: float) -> float:
-    """Return the probability that what was measured does not conform: 1 - p of ``probability_within``.
-
-    JCGM 106:2012, 9.3.2 (specific risk). Limits are infinite where there is none.
-
-    Examples
-    --------
-    >>> round(specific_risk(-math.inf, 10.0, 9.0, 1.0), 4)
-    0.1587
-    """
-    return 1 - probability_within(low, high, estimate, standard_uncertainty)
+def _size(uncertainty: Decimal) -> Fraction:
+    places_of(uncertainty)
+    if uncertainty < 0:
+        raise Invalid("uncertainty.negative", field="uncertainty", uncertainty=plain(uncertainty))
+    return Fraction(uncertainty)
 
 
-def global_risk(
-    limits: tuple[float, float],
-    acceptance: tuple[float, float],
-    process: tuple[float, float],
-    standard_uncertainty: float,
-) -> Risk:
-    """Return the risks of accepting by measurement, over a normal population measured with a normal error.
-
-    ``R_C = int_(outside limits) g(y) P(accepted | y) dy``, ``R_P = int_(inside) g(y) P(rejected | y) dy``.
-    JCGM 106:2012, 9.5 (equations 19 and 20, numbers from memory).
-
-    Parameters
-    ----------
-    limits, acceptance
-        Lower and upper, infinite for none.
-    process
-        Mean and standard deviation (> 0) of the true values.
-    standard_uncertainty
-        Of one measurement, > 0.
-
-    Examples
-    --------
-    >>> round(global_risk((-2.0, 2.0), (-2.0, 2.0), (0.0, 1.0), 0.25).consumer, 4)
-    0.008
-    """
-    mean, spread = process
-    consumer = producer = 0.0
-    for start, end, inside in _pieces(limits, mean, spread):
-        true = (_NODES + 1) * (end - start) / 2 + start
-        density = np.exp(-(((true - mean) / spread) ** 2) / 2) / (spread * math.sqrt(2 * math.pi))
-        low, high = acceptance
-        accepted = ndtr((high - true) / standard_uncertainty) - ndtr((low - true) / standard_uncertainty)
-        share = _WEIGHTS * (end - start) / 2 * density
-        if inside:
-            producer += float(np.sum(share * (1 - accepted)))
-        else:
-            consumer += float(np.sum(share * accepted))
-    return Risk(consumer, producer)
-
-
-def _pieces(limits: tuple[float, float], mean: float, spread: float) -> list[tuple[float, float, bool]]:
-    """Cut the population at the limits, so that no step falls inside an interval of integration."""
-    first, last = mean - _FARTHEST * spread, mean + _FARTHEST * spread
-    low, high = (min(max(limit, first), last) for limit in limits)
-    pieces = [(first, low, False), (low, high, True), (high, last, False)]
-    return [piece for piece in pieces if piece[1] > piece[0]]
-
-
-def uncertainty_ratio(low: float, high: float, expanded: float) -> float:
-    """Return the test uncertainty ratio TUR = (high - low) / (2 U).
-
-    ANSI/NCSL Z540.3-2006, 3.11 (from memory); U at 95 %. ``uncertainty.not_positive`` unless U > 0.
-
-    Examples
-    --------
-    >>> uncertainty_ratio(-1.5, 1.5, 0.375)
-    4.0
-    """
-    if expanded <= 0:
-        raise Invalid("uncertainty.not_positive", field="expanded", entered=str(expanded))
-    return (high - low) / (2 * expanded)
+def _factor(coverage_factor: Decimal) -> Fraction:
+    if not coverage_factor.is_finite() or coverage_factor <= 0:
+        raise Invalid("uncertainty.not_positive", field="coverage_factor", entered=str(coverage_factor))
+    return Fraction(coverage_factor)

@@ -1,4 +1,4 @@
-"""Sentences of what the statistics of baselines refuse."""
+"""Sentences of what the statistics of baselines and the risks of deciding refuse."""
 
 from __future__ import annotations
 
@@ -15,5 +15,18 @@ STATISTICS: Final = {
     "baseline.outlier_terms": N_(
         "The outlier test can't look for %(most)s values at a significance of %(significance)s. Look for one or "
         "more, at more than 0 and less than 1."
+    ),
+    "uncertainty.confidence": N_(
+        "%(entered)s is no level of confidence. Give more than 0 and less than 100 percent."
+    ),
+    "risk.limits": N_(
+        "The limits run from %(low)s to %(high)s, so nothing lies between them. Give the lower one first."
+    ),
+    "risk.nothing_accepted": N_(
+        "A guard band of %(width)s on each side leaves nothing to accept from %(low)s to %(high)s. Take a smaller "
+        "multiple, or measure with less uncertainty."
+    ),
+    "risk.process": N_(
+        "%(entered)s can't be the standard deviation of what is measured. Give a number above zero."
     ),
 }

@@ -1,156 +1,132 @@
-"""Uncertainty, decision rules and risks against published examples."""
+"""Uncertainty, decision rules and risks against published examples: everything the file of answers holds."""
 
 from __future__ import annotations
 
-import csv
 import math
 from decimal import Decimal
-from fractions import Fraction
-from pathlib import Path
 
 import pytest
+from reference_rows import entries, rows
 from scipy.special import ndtri
 
+from qa_tracker.core.comparison import probability_within
 from qa_tracker.core.conformity import judge
 from qa_tracker.core.criteria import from_json
-from qa_tracker.core.errors import Invalid
-from qa_tracker.core.stated_uncertainty import expanded
-from qa_tracker.core.uncertainty import (
-    combined,
-    expanded_from_standard,
-    from_repeats,
-    global_risk,
-    rounded_up,
-    specific_risk,
-    standard_from_expanded,
-    uncertainty_ratio,
-)
+from qa_tracker.core.decision_risks import acceptance_limits, global_risk, specific_risk, uncertainty_ratio
+from qa_tracker.core.uncertainty import combined, expanded_from_standard, from_repeats
 
-FOLDER = Path(__file__).parents[2] / "fixtures" / "reference"
+GIVEN = entries("uncertainty_and_conformity.json")
+INF = math.inf
 
 
-def rows(name):
-    lines = (FOLDER / name).read_text("utf-8").splitlines()
-    return list(csv.DictReader(line for line in lines if not line.startswith("#")))
+def root_of(numbers):
+    return float(combined(*(Decimal(str(number)) for number in numbers)))
 
 
-def test_components_combine_as_in_the_gum():
-    # JCGM 100:2008, H.1.3.2: u(d) from 5.8, 3.9 and 6.7 nm is 9.7 nm
-    assert float(combined(Decimal("5.8"), Decimal("3.9"), Decimal("6.7"))) == pytest.approx(9.7, abs=0.05)
+def tail(multiple):
+    """The specific risk of a value at the acceptance limit, with U = 0.2 below a limit of 1."""
+    return specific_risk(-INF, 1.0, acceptance_limits((-INF, 1.0), 0.2, multiple)[1], 0.1)
 
 
-def test_specific_risk_at_the_acceptance_limit_is_that_of_the_guard_band():
-    # ILAC-G8:09/2019, Table 1: w = r U; exact tails recomputed
-    for row in rows("guard_band_multiples.csv"):
-        found = specific_risk(-math.inf, 1.0, 1.0 - float(row["r"]) * 0.2, 0.1)
-        assert found == pytest.approx(float(row["exact_tail"]), rel=1e-6)
+def resistors(i, risk):
+    process = (i["prior_mean"], i["prior_sd"])
+    return [
+        getattr(global_risk(i["tolerance"], accepted, process, i["u"]), risk) for accepted in i["acceptance"]
+    ]
 
 
-def test_specific_risk_agrees_with_jcgm_106():
-    # JCGM 106:2012, 7.4, from memory: p = 0.66 for a kinematic viscosity of 13.6 +- 1.8 mm2/s
-    assert 1 - specific_risk(12.5, 16.3, 13.6, 1.8) == pytest.approx(0.66263, abs=5e-7)
+def deaver(i, risk):
+    limit, found = i["SL_sigma"], []
+    for ratio, factor in zip(i["ratio_sigma_prior_to_u"], i["guard_factor"], strict=True):
+        accepted = (-limit * factor, limit * factor)
+        found.append(getattr(global_risk((-limit, limit), accepted, (0.0, 1.0), 1 / ratio), risk))
+    return found
 
 
-RESISTORS = {
-    # JCGM 106:2012, 9.5, setting from memory; risks by quadrature
-    (1499.8, 1500.2): (0.0189422, 0.0372078),
-    (1499.82, 1500.18): (0.0098783, 0.0690265),
-    (1499.72, 1500.28): (0.0694046, 0.0006806),
+CALCULATED = {
+    # JCGM 100:2008 (GUM), Annex H.1
+    ("GUM-H1", "u_d"): lambda i: root_of(i["u_d_parts"]),
+    ("GUM-H1", "u_c_nm"): lambda i: root_of(i["u_c_parts"]),
+    ("GUM-H1", "k99"): lambda i: (
+        from_repeats([Decimal(n % 2) for n in range(i["nu_eff"] + 1)], Decimal(99)).student_t
+    ),
+    ("GUM-H1", "U99_nm"): lambda i: float(expanded_from_standard(Decimal(i["u_c"]), Decimal(str(i["k99"])))),
+    # JCGM 106:2012, 7.2.2, 7.4 and 7.6.3
+    ("CONF-01", "p_c_full"): lambda i: 1 - specific_risk(-INF, i["T_U"], i["y"], i["u"]),
+    ("CONF-02", "p_c_full"): lambda i: 1 - specific_risk(i["T_L"], i["T_U"], i["y"], i["u"]),
+    ("CONF-02", "C_m"): lambda i: uncertainty_ratio(i["T_L"], i["T_U"], 2 * i["u"]),
+    # ILAC-G8:09/2019, Table 1; ISO 14253-1:2017
+    ("CONF-04", "r=1"): lambda _: tail(1),
+    ("CONF-04", "r=0.83"): lambda _: tail(0.83),
+    ("CONF-04", "r=1.5"): lambda _: tail(1.5),
+    ("CONF-04", "r=3"): lambda _: tail(3),
+    # ILAC-G8:09/2019, 4.2.1 to 4.2.3
+    ("CONF-05", "acceptance_limit_w=U"): lambda i: acceptance_limits(i["tolerance"], i["U"])[1],
+    # JCGM 106:2012, 9.5
+    ("RISK-02", "prior_conformance"): lambda i: probability_within(
+        *i["tolerance"], i["prior_mean"], i["prior_sd"]
+    ),
+    ("RISK-02", "R_C"): lambda i: resistors(i, "consumer"),
+    ("RISK-02", "R_P"): lambda i: resistors(i, "producer"),
+    # D. Deaver, How to maintain confidence in a world of declining test uncertainty ratios, pp. 7 and 10
+    ("RISK-04", "PFA"): lambda i: deaver(i, "consumer"),
+    ("RISK-04", "PFR"): lambda i: deaver(i, "producer"),
+}
+JUDGED = {
+    ("CONF-05", "simple"): ("simple", {"pass": "conforming", "fail": "remedial"}),
+    ("CONF-05", "binary_guarded"): ("guarded", {"pass": "conforming", "fail": "remedial"}),
+    ("CONF-05", "nonbinary"): (
+        "zones",
+        {
+            "pass": "conforming",
+            "conditional pass": "indeterminate",
+            "conditional fail": "indeterminate",
+            "fail": "remedial",
+        },
+    ),
 }
 
 
-@pytest.mark.parametrize("acceptance", RESISTORS)
-def test_global_risk_agrees_with_the_resistors(acceptance):
-    found = global_risk((1499.8, 1500.2), acceptance, (1500.0, 0.12), 0.04)
-    assert (found.consumer, found.producer) == pytest.approx(RESISTORS[acceptance], abs=1e-6)
+@pytest.mark.parametrize(("name", "key"), CALCULATED)
+def test_calculation_agrees_with_its_source(name, key):
+    given = GIVEN[name]
+    found = CALCULATED[name, key](given["inputs"])
+    assert found == pytest.approx(given["expected"][key], abs=given["tolerance"][key], rel=0)
+
+
+# ILAC-G8:09/2019, 4.2.1 to 4.2.3; the source's words beside our verdicts.
+@pytest.mark.parametrize(("name", "key"), JUDGED)
+def test_decisions_agree_with_ilac_g8(name, key):
+    rule, words = JUDGED[name, key]
+    inputs, expected = GIVEN[name]["inputs"], GIVEN[name]["expected"][key]
+    limit = from_json(
+        {"basis": "nominal", "direction": "either", "remedial": {"absolute": str(inputs["tolerance"][1])}}
+    )
+    known = {"kind": "number", "nominal": "0", "uncertainty": str(inputs["U"]), "rule": rule}
+    for sign in ("", "-"):
+        found = [judge(limit, value=f"{sign}{value}", **known).verdict for value in inputs["deviations"]]
+        assert found == [words[word] for word in expected]
+
+
+def test_every_answer_of_the_file_is_worked_out():
+    in_files = {("CONF-04", "file"), ("RISK-03", "rows")}
+    held = {(name, key) for name, given in GIVEN.items() for key in given["expected"]}
+    assert held - in_files == set(CALCULATED) | set(JUDGED)
+
+
+def test_specific_risk_at_the_acceptance_limit_is_that_of_the_guard_band():
+    # ILAC-G8:09/2019, Table 1: w = r U; the exact tails computed, no published value
+    for row in rows(GIVEN["CONF-04"]["file"]):
+        assert tail(float(row["r"])) == pytest.approx(float(row["exact_tail"]), rel=1e-9, abs=0)
 
 
 def test_global_risk_agrees_with_rp_19():
     # NCSLI RP-19 (draft), table: TUR 4, tolerance +-1, prior spread from the in-tolerance probability
-    for row in rows("ncsli_rp19_risk.csv"):
+    given = GIVEN["RISK-03"]
+    table = rows(given["file"])
+    assert len(table) == given["expected"]["rows"]
+    for row in table:
         spread = 1 / float(ndtri((1 + float(row["in_tolerance_probability"])) / 2))
         found = global_risk((-1.0, 1.0), (-1.0, 1.0), (0.0, spread), spread / 4)
-        assert 100 * found.consumer == pytest.approx(float(row["UFAR_percent"]), abs=3e-5)
-
-
-@pytest.mark.parametrize(
-    ("ratio", "factor", "consumer", "producer"), [(4, 1.0, 0.008, 0.015), (2, 0.91, 0.008, 0.066)]
-)
-def test_global_risk_agrees_with_deaver(ratio, factor, consumer, producer):
-    # D. Deaver, How to maintain confidence in a world of declining test uncertainty ratios, pp. 7 and 10
-    found = global_risk((-2.0, 2.0), (-2.0 * factor, 2.0 * factor), (0.0, 1.0), 1 / ratio)
-    assert found.consumer == pytest.approx(consumer, abs=5e-4)
-    assert found.producer == pytest.approx(producer, abs=1e-3)
-
-
-# ILAC-G8:09/2019, 4.2: limits +-0.003, U = 0.001; the source's words beside our verdicts.
-DEVIATIONS = ("0.0017", "0.0025", "0.0032", "0.0045", "0.002", "0.003")
-DECISIONS = {
-    "simple": ("conforming", "conforming", "remedial", "remedial", "conforming", "conforming"),
-    "guarded": ("conforming", "remedial", "remedial", "remedial", "conforming", "remedial"),
-    "zones": ("conforming", "indeterminate", "indeterminate", "remedial", "conforming", "indeterminate"),
-}
-
-
-@pytest.mark.parametrize("rule", DECISIONS)
-def test_decisions_agree_with_ilac_g8(rule):
-    limit = from_json({"basis": "nominal", "direction": "either", "remedial": {"absolute": "0.003"}})
-    found = [
-        judge(limit, value=text, kind="number", nominal="0", uncertainty="0.001", rule=rule).verdict
-        for text in DEVIATIONS
-    ]
-    assert tuple(found) == DECISIONS[rule]
-
-
-def test_ratio_is_the_span_over_twice_the_expanded_uncertainty():
-    assert uncertainty_ratio(12.5, 16.3, 3.6) == pytest.approx(0.52778, abs=5e-6)
-    with pytest.raises(Invalid):
-        uncertainty_ratio(0.0, 1.0, 0.0)
-
-
-def test_student_factor_of_repeats_is_the_tabled_one():
-    # JCGM 100:2008, Table G.2: t for 95 % is 12.71 (1 degree of freedom), 2.78 (4), 2.26 (9)
-    for count, t in ((2, 12.71), (5, 2.78), (10, 2.26)):
-        values = [Decimal(number % 2) for number in range(count)]
-        assert from_repeats(values).student_t == pytest.approx(t, abs=5e-3)
-
-
-def test_uncertainty_of_repeats_is_that_of_one_reading_and_of_the_mean():
-    found = from_repeats([Decimal(text) for text in ("146.0", "146.5", "145.5", "146.0")])
-    assert found.mean == 146
-    assert found.standard_of_one == Decimal("0.4083")
-    assert found.standard_of_mean == Decimal("0.2042")
-    assert found.expanded_of_one == Decimal("1.3")
-    with pytest.raises(Invalid):
-        from_repeats([Decimal(1)])
-
-
-@pytest.mark.parametrize(
-    ("value", "text"), [("1.2345", "1.235"), ("0.00012341", "0.0001235"), ("123456", "123456"), ("0", "0")]
-)
-def test_uncertainty_is_never_rounded_down(value, text):
-    assert str(rounded_up(Fraction(value))) == text
-
-
-def test_coverage_factor_leads_there_and_back():
-    assert expanded_from_standard(standard_from_expanded(Decimal("3"), Decimal("2"))) == 3
-    assert standard_from_expanded(Decimal("1"), Decimal("3")) == Decimal("0.3334")
-    with pytest.raises(Invalid):
-        standard_from_expanded(Decimal("1"), Decimal("0"))
-
-
-STATED = {
-    "standard": (("standard", "1.5", "", ()), "3"),
-    "expanded, k = 2": (("expanded", "3.00", "2", ()), "3.00"),
-    "expanded, k = 3": (("expanded", "3", "3", ()), "2"),
-    "expanded, k = 1.96": (("expanded", "1", "1.96", ()), "1.021"),
-    "kept from repeats": (("repeats", "1.3", "", ()), "1.3"),
-    "of the check's own repeats": (("repeats_of_check", "", "", (Decimal(1), Decimal(2))), "8.985"),
-    "of one reading only": (("repeats_of_check", "", "", (Decimal(1),)), ""),
-}
-
-
-@pytest.mark.parametrize("name", STATED)
-def test_expanded_uncertainty_is_brought_to_two_standard_ones(name):
-    arguments, text = STATED[name]
-    assert expanded(*arguments) == text
+        for share, key in ((found.consumer, "UFAR_percent"), (found.consumer_of_accepted, "CFAR_percent")):
+            assert 100 * share == pytest.approx(float(row[key]), abs=given["tolerance"][key], rel=0)
