@@ -116,7 +116,7 @@ def _stated(item: Item, repeats: Sequence[Decimal]) -> str:
     row = item.uncertainty
     if row is None or item.spec.kind not in NUMBERS:
         return ""
-    return expanded(row.kind, row.entered, row.coverage_factor, repeats)
+    return expanded(row.kind, row.entered, row.coverage_factor, repeats, item.spec.resolution)
 
 
 def rule_for(criterion: CriterionRow, uncertainty: UncertaintyRow | None, stated: str) -> Rule:

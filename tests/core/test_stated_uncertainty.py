@@ -17,6 +17,10 @@ STATED = {
     "expanded, of the least place": (("expanded", "0.000000000001", "3", ()), "0.000000000002"),
     "kept from repeats": (("repeats", "1.3", "", ()), "1.3"),
     "of the check's own repeats": (("repeats_of_check", "", "", (Decimal(1), Decimal(2))), "8.985"),
+    "of equal repeats, by the resolution": (("repeats_of_check", "", "", (Decimal(2),) * 3, "0.5"), "0.2887"),
+    "of equal repeats, resolution not known": (("repeats_of_check", "", "", (Decimal(2),) * 3), ""),
+    "kept from equal repeats": (("repeats", "0", "", (), "1"), "0.5774"),
+    "kept from repeats, above the resolution": (("repeats", "1.3", "", (), "1"), "1.3"),
     "of one reading only": (("repeats_of_check", "", "", (Decimal(1),)), ""),
 }
 
