@@ -29,6 +29,11 @@ def test_physicist_states_an_uncertainty_and_finds_it_in_the_list(ward):
         assert words in page
 
 
+def test_page_says_that_the_uncertainty_is_that_of_what_is_judged(ward):
+    page = builders.signed_in(ward.physicist).get(NEW).content.decode()
+    assert "where a limit stands on a baseline or on another reading, count theirs in" in page
+
+
 def test_refused_statement_keeps_what_was_typed(ward):
     browser = builders.signed_in(ward.physicist)
     answer = browser.post(NEW, GIVEN | {"entered": "about half", "source": ""})

@@ -70,7 +70,11 @@ def _asked(request: HttpRequest, back: str, at: dt.datetime) -> Asked:
             Field("kind", _("Stated as"), "radio", options=tuple(KINDS.items()), values=("expanded",)),
             Field(
                 "entered", _("Uncertainty"), "decimal",
-                _("In the measurand's unit; for a standard or an expanded uncertainty."), required=False,
+                _(
+                    "In the measurand's unit; for a standard or an expanded uncertainty. It is taken as that of "
+                    "what is judged: where a limit stands on a baseline or on another reading, count theirs in."
+                ),
+                required=False,
             ),
             Field(
                 "coverage_factor", _("Coverage factor k"), "decimal",
