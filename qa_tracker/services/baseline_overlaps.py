@@ -51,8 +51,17 @@ def tie_for(
     Raises
     ------
     Conflict
-        ``baseline.no_overlap``
+        ``baseline.no_overlap``; ``baseline.object_not_named`` where those before stand on one, since a baseline on
+        no object would be compared with readings on any
     """
+    on_an_object = next((each for each in standing if each.test_object_id is not None), None)
+    if test_object is None and on_an_object and needs_overlap(asked) and not why_none.strip():
+        raise Conflict(
+            "baseline.object_not_named",
+            field=asked.name,
+            measurand=asked.spec.name,
+            was=named(on_an_object.test_object),
+        )
     others = left_behind(standing, test_object)
     if not others or not needs_overlap(asked):
         return None

@@ -15,6 +15,10 @@ BASELINES: Final = {
         "The baseline of %(measurand)s stands on %(was)s, and depths don't pass to %(now)s by themselves. Read both "
         "objects within %(days)s days, or say why the one before could not be read."
     ),
+    "baseline.object_not_named": N_(
+        "The baseline of %(measurand)s stands on %(was)s, and one on no test object would be compared with readings "
+        "on any. Name the test object this value was measured on."
+    ),
     "baseline.series_twice": N_(
         "“%(measurand)s” is given twice for the same part of the device. Give one value for each series."
     ),

@@ -42,6 +42,13 @@ def test_baseline_on_another_object_is_refused_without_an_overlap(ward, two):
     assert (given["was"], given["now"], given["days"]) == ("Phantom A-1", "Phantom B-2", 14)
 
 
+def test_baseline_without_an_object_is_refused_where_the_one_before_stands_on_one(ward, two):
+    with pytest.raises(Conflict) as refused:
+        put(ward, penetration(ward, "146"), on=None)
+    assert refused.value.code == "baseline.object_not_named"
+    assert refused.value.parameters["was"] == f"{two[0].name} {two[0].serial}"
+
+
 def test_reading_on_the_object_before_is_found_among_the_stored_ones(ward, two):
     surveyed(ward, on=two[0], days_ago=13, penetration="149")
     surveyed(ward, on=two[0], days_ago=5, penetration="148")
