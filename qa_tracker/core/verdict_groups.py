@@ -6,8 +6,6 @@ How one criterion judges its rows is in ``verdict_kernel``; here rows are found,
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from concurrent.futures import ThreadPoolExecutor
-from functools import partial
 from itertools import pairwise
 from typing import Any
 
@@ -29,7 +27,6 @@ def verdict_codes_by_criterion(
     index: NDArray[Any],
     columns: Columns,
     rule: Rule = "simple",
-    threads: int = 1,
 ) -> NDArray[np.uint8]:
     """Judge every row by the criterion its index names, in chunks.
 
@@ -42,8 +39,6 @@ def verdict_codes_by_criterion(
         Without bands or grades: a banded one is put in once for each band (``Criterion.at``).
     index
         Position in ``criteria`` per row, shape (n,); -1 where the reading lies outside every band.
-    threads
-        That work side by side, 1 or more; the codes are the same.
 
     Returns
     -------
@@ -60,23 +55,15 @@ def verdict_codes_by_criterion(
     >>> verdict_codes_by_criterion([loss, upper], np.array([0, 1, 1, -1]), rows).tolist()
     [0, 3, 0, 2]
     """
-    codes = np.full(len(index), NOT_ASSESSABLE, np.uint8)
-    _check_index(index, len(criteria))
     changes = index[1:] != index[:-1]
-    if np.count_nonzero(changes) * FEW <= len(index) + FEW * len(criteria):
-        judge_rows = _judge_run
-        parts = _parts(_runs(changes, len(index)), max(CHUNK, len(index) // (4 * threads)))
-    else:
-        judge_rows = _judge_block
-        parts = _parts([(0, len(index))], max(BLOCK, FEW * len(criteria)))
-    judge_part = partial(judge_rows, criteria, index, columns, rule, codes)
-    if threads == 1:
-        for start, end in parts:
-            judge_part(start, end)
-        return codes
-    # NumPy lets go of the interpreter while it computes, so parts may go side by side.
-    with ThreadPoolExecutor(threads) as pool:
-        list(pool.map(lambda part: judge_part(*part), parts))
+    together = np.count_nonzero(changes) * FEW <= len(index) + FEW * len(criteria)
+    runs = _runs(changes, len(index)) if together else [(0, len(index))]
+    _check_index(index[[start for start, _ in runs]] if together else index, len(criteria))
+    judge_rows = _judge_run if together else _judge_block
+    codes = np.empty(len(index), np.uint8)
+    for start, end in _parts(runs, CHUNK if together else max(BLOCK, FEW * len(criteria))):
+        part = slice(start, end)
+        judge_rows(criteria, index[part], columns.rows(part), rule, codes[part])
     return codes
 
 
@@ -86,8 +73,8 @@ def _check_index(index: NDArray[Any], count: int) -> None:
 
 
 def _runs(changes: NDArray[np.bool_], rows: int) -> list[tuple[int, int]]:
-    """Return where each run of equal criteria begins and ends."""
-    return list(pairwise([0, *(np.flatnonzero(changes) + 1).tolist(), rows]))
+    """Return where each run of equal criteria begins and ends; there is none where there are no rows."""
+    return list(pairwise([0, *(np.flatnonzero(changes) + 1).tolist(), rows])) if rows else []
 
 
 def _parts(runs: list[tuple[int, int]], most: int) -> Iterator[tuple[int, int]]:
@@ -103,16 +90,10 @@ def _judge_run(
     columns: Columns,
     rule: Rule,
     codes: NDArray[np.uint8],
-    start: int,
-    end: int,
 ) -> None:
     """Judge rows that stand together and have one criterion, without copying them."""
-    position = int(index[start])
-    if position < 0:
-        return
-    for first in range(start, end, CHUNK):
-        rows = slice(first, min(first + CHUNK, end))
-        codes[rows] = verdict_codes(criteria[position], columns.rows(rows), rule)
+    position = int(index[0])
+    codes[:] = NOT_ASSESSABLE if position < 0 else verdict_codes(criteria[position], columns, rule)
 
 
 def _judge_block(
@@ -121,15 +102,12 @@ def _judge_block(
     columns: Columns,
     rule: Rule,
     codes: NDArray[np.uint8],
-    start: int,
-    end: int,
 ) -> None:
-    """Gather each criterion's rows of a block, judge them, and put the codes back where they belong."""
-    block = slice(start, end)
-    readings, into = columns.rows(block), codes[block]
-    for position, rows in _groups(index[block], len(criteria)):
+    """Gather each criterion's rows, judge them, and put the codes back where they belong."""
+    codes[:] = NOT_ASSESSABLE
+    for position, rows in _groups(index, len(criteria)):
         if position >= 0:
-            into[rows] = verdict_codes(criteria[position], readings.rows(rows), rule)
+            codes[rows] = verdict_codes(criteria[position], columns.rows(rows), rule)
 
 
 def _groups(index: NDArray[Any], count: int) -> Iterator[tuple[int, NDArray[np.intp]]]:

@@ -141,19 +141,20 @@ def test_kernel_marks_rows_that_lack_something_not_assessable():
     assert verdict_codes(ratio, Columns(np.array([5, 5, 5]), np.array([10, 0, -3]), 0)).tolist() == [0, 2, 2]
 
 
-def test_kernel_marks_rows_outside_every_band_not_assessable():
-    columns = Columns(np.array([0, 90]), np.array([0, 100]), 0)
-    assert verdict_codes_by_criterion(CRITERIA, np.array([-1, 1]), columns).tolist() == [2, 3]
+@pytest.mark.parametrize("times", [1, 20], ids=["together", "scattered"])
+def test_kernel_marks_rows_outside_every_band_not_assessable(times):
+    columns = Columns(np.array([0, 90] * times), np.array([100, 100] * times), 0)
+    codes = verdict_codes_by_criterion(CRITERIA, np.array([-1, 1] * times), columns)
+    assert codes.tolist() == [2, 3] * times
 
 
-@pytest.mark.parametrize("threads", [1, 2])
 @pytest.mark.parametrize("together", [True, False], ids=["together", "scattered"])
-def test_kernel_keeps_the_order_of_rows_across_chunks_and_threads(together, threads):
+def test_kernel_keeps_the_order_of_rows_across_chunks(together):
     count = BLOCK + 2 * CHUNK + 5
     index = np.arange(count) * 2 // count * 3 if together else np.arange(count) % 2 * 3
     values = np.where(np.arange(count) % 5 == 0, 90, 0)
     columns = Columns(values, np.zeros(count, np.int64), 1)
-    codes = verdict_codes_by_criterion(CRITERIA, index, columns, threads=threads)
+    codes = verdict_codes_by_criterion(CRITERIA, index, columns)
     assert np.array_equal(codes, np.where(values == 90, 5, 0))
 
 
@@ -169,13 +170,17 @@ def test_kernel_refuses_numbers_of_another_kind(kind):
         verdict_codes(CRITERIA[1], Columns(np.array([1], kind), np.array([1]), 0))
 
 
-def test_kernel_refuses_a_criterion_without_level_or_index():
+def test_kernel_refuses_a_criterion_without_level():
     one = Columns(np.array([1]), np.array([1]), 0)
     with pytest.raises(Invalid, match=r"kernel\.no_level"):
         verdict_codes(Criterion(grades=(("red", "suspension"),)), one)
-    for index in (6, -2):
-        with pytest.raises(Invalid, match=r"kernel\.index"):
-            verdict_codes_by_criterion(CRITERIA, np.array([index]), one)
+
+
+@pytest.mark.parametrize("index", [[6], [-2], [0, 6] * 20, [0, -2] * 20])
+def test_kernel_refuses_an_index_that_names_no_criterion(index):
+    many = Columns(np.ones(len(index), np.int64), np.ones(len(index), np.int64), 1)
+    with pytest.raises(Invalid, match=r"kernel\.index"):
+        verdict_codes_by_criterion(CRITERIA, np.array(index), many)
 
 
 def test_kernel_refuses_a_limit_finer_than_its_columns():
