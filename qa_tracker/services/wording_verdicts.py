@@ -302,6 +302,12 @@ def _guard_band(given: Parameters, says: str) -> list[str]:
         "%(finding)s; %(limit)s, and with the expanded uncertainty of %(uncertainty)s (k = 2) kept free "
         "the limit of acceptance is %(acceptance)s: %(verdict)s."
     )
+    if given["direction"] == "either" and Decimal(given["acceptance"]) < 0:
+        # No change is smaller than none: a limit of acceptance below zero would only puzzle.
+        sentence = _(
+            "%(finding)s; %(limit)s, but the expanded uncertainty of %(uncertainty)s (k = 2) is larger than that, "
+            "so this is not measured well enough to be accepted: %(verdict)s."
+        )
     return [sentence % told, *_band(given), *_share(given), *_probability(given)]
 
 

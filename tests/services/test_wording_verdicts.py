@@ -139,6 +139,14 @@ TABLE = [
         "83.3 % of the allowance. The probability of conformity is 0.8413.",
     ),
     (
+        "a guard band wider than the allowance", Say.GUARD_BAND, DISTANCE,
+        {"value": "100.0", "nominal": "100.0", "rule": "guarded", "uncertainty": "2"},
+        "100.0 mm is the same as the nominal value of 100.0 mm; the remedial level allows a deviation of 1.5 mm "
+        "(the larger of 1.5 mm and 1.5 % of 100.0 mm, which is 1.5 mm), but the expanded uncertainty of 2 mm "
+        "(k = 2) is larger than that, so this is not measured well enough to be accepted: remedial. The probability "
+        "of conformity is 0.8664.",
+    ),
+    (
         "in doubt at the upper level", Say.STRADDLES, LOSS,
         {"value": "145", "qualifier": "<", "baseline": "152"},
         "Less than 145 mm is more than 7 mm below the baseline of 152 mm; the suspension level allows a loss of "
