@@ -36,6 +36,7 @@ class CheckOut(Schema):
     verdict_level: str
     submitted_at: Moment | None
     excuse: str
+    satisfied_by: uuid.UUID | None
 
 
 class DueOut(CheckOut):
@@ -45,8 +46,9 @@ class DueOut(CheckOut):
 
 
 class WholeCheckOut(CheckOut):
-    """A check with all that was done for it."""
+    """A check with all that was done for it; `satisfies` names the other checks that it satisfied."""
 
+    satisfies: list[uuid.UUID]
     submissions: list[SubmissionOut]
     attempts: list[NotTestedOut]
 
@@ -94,7 +96,10 @@ class EntryIn(Given):
 
 
 class TypedIn(Given):
-    """Everything given for a check; `entries` by item key."""
+    """Everything given for a check; `entries` by item key.
+
+    `outside_reason` says why a physicist accepts what was measured before the window.
+    """
 
     entries: dict[str, EntryIn]
     measured_at: Moment | None = None
@@ -105,6 +110,7 @@ class TypedIn(Given):
     cleaned_after: Short = ""
     partial_reason: Mark = ""
     remark: Words = ""
+    outside_reason: Short = ""
 
 
 class JudgeIn(TypedIn):

@@ -74,6 +74,7 @@ def whole_check(caller: Caller, uid: uuid.UUID) -> dict[str, Any]:
     check = check_row(caller, uid)
     done = submissions.submissions_of([check.id]).get(check.id, [])
     return vars(check) | {
+        "satisfies": [each.uid for each in rows.checks_satisfied_by(check.id)],
         "submissions": [submission_out(each) for each in done],
         "attempts": submissions.attempts_of(check.id),
     }

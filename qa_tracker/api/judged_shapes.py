@@ -160,6 +160,7 @@ class SubmissionOut(Schema):
     shown_sha256: str
     verdict: str
     verdict_level: str
+    reason: str
     leaf_uid: uuid.UUID
     readings: list[ReadingOut]
     not_tested: list[NotTestedOut]

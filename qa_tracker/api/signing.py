@@ -73,6 +73,7 @@ def _typed(body: TypedIn) -> Typed:
         cleaned_after=body.cleaned_after,
         partial_reason=body.partial_reason,
         remark=body.remark,
+        outside_reason=body.outside_reason.strip(),
     )
 
 

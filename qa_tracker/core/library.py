@@ -7,7 +7,7 @@ A document arrives as parsed JSON and leaves as frozen rows, or is refused with 
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from typing import Any
 
 from qa_tracker.core.criteria import Band, Criterion
@@ -186,6 +186,52 @@ def covers(
         if asked_of(measurand, device_kind=device_kind, array_kind=array_kind)
     }
     return not unread(other, asked, device_kind=device_kind, array_kind=array_kind)
+
+
+SAME_READING = ("kind", "unit", "per", "by_condition")
+"""In what two editions have to agree about a measurand for a reading by one to count for the other."""
+
+
+def satisfied(
+    spec: ProcedureSpec,
+    by: ProcedureSpec,
+    times_read: Mapping[str, int],
+    *,
+    device_kind: str,
+    array_kind: str | None = None,
+) -> bool:
+    """Whether what was read in a check by one procedure is all that another requires of the device.
+
+    Parameters
+    ----------
+    spec
+        The procedure that is asked about.
+    by
+        The procedure of the check that was done.
+    times_read
+        How often each measurand was read: the fewest repeats at any part of the device, 0 where one part was
+        left out.
+    device_kind, array_kind
+        The device's kind and, for a probe, its array's kind.
+
+    Returns
+    -------
+    bool
+        False where nothing was read that the procedure asks for, even if it requires nothing of this device, and
+        where it is not meant for this kind of device.
+    """
+    if device_kind not in spec.applies_to.kinds:
+        return False
+    done = {one.code: one for one in by.measurands}
+    read = {
+        one.code
+        for one in spec.measurands
+        if times_read.get(one.code, 0) >= max(one.repeats, 1)
+        and one.code in done
+        and asked_of(one, device_kind=device_kind, array_kind=array_kind)
+        and all(getattr(one, name) == getattr(done[one.code], name) for name in SAME_READING)
+    }
+    return bool(read) and not unread(spec, read, device_kind=device_kind, array_kind=array_kind)
 
 
 def _lack(measurand: MeasurandSpec, read: Collection[str], answered: Collection[str | None]) -> str | None:

@@ -14,6 +14,7 @@ from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, target
 from qa_tracker.records import ledger
 from qa_tracker.records.models import (
     Check,
+    CheckPlan,
     NotTested,
     Person,
     Procedure,
@@ -22,7 +23,7 @@ from qa_tracker.records.models import (
 from qa_tracker.records.queries import library, submissions
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.records.queries.scope import grants_of
-from qa_tracker.services import finding, judging, owed, plans, recording
+from qa_tracker.services import finding, judging, outside, owed, plans, recording, satisfying
 from qa_tracker.services.entries import REASONS, Entry, left_empty
 from qa_tracker.services.guards import Grants, check_may, check_password, check_shown, required, role_for
 from qa_tracker.services.judging import Judged
@@ -43,6 +44,7 @@ class Typed:
     cleaned_after: str = ""
     partial_reason: str = ""
     remark: str = ""
+    outside_reason: str = ""
 
 
 @dataclass(frozen=True)
@@ -121,6 +123,8 @@ def preview(*, check: uuid.UUID, typed: Typed, whole: bool, actor: Person, at: d
     facts = _facts(laid, typed, at)
     if whole:
         _check_facts(laid, facts, at)
+        measured = facts.measured_at or at
+        outside.check_window(laid.check, measured, facts.outside_reason, actor=actor, at=at)
     shown = judging.shown_sha256(str(laid.check.uid), laid.edition.content_sha256, facts.as_text(at), judged)
     return Preview(laid, judged, facts, shown)
 
@@ -135,6 +139,8 @@ def _with_partial_reason(laid: Sheet, typed: Typed) -> dict[str, Entry]:
 
 
 def _facts(laid: Sheet, typed: Typed, at: dt.datetime) -> Facts:
+    is_outside = outside.is_outside(laid.check, typed.measured_at or at)
+    accepted = typed.outside_reason.strip() if is_outside else ""
     return Facts(
         measured_at=typed.measured_at,
         test_object=laid.test_object,
@@ -146,6 +152,7 @@ def _facts(laid: Sheet, typed: Typed, at: dt.datetime) -> Facts:
         cleaned_after=typed.cleaned_after,
         partial_reason=typed.partial_reason,
         remark=typed.remark,
+        outside_reason=accepted,
     )
 
 
@@ -159,9 +166,6 @@ def _check_facts(laid: Sheet, facts: Facts, at: dt.datetime) -> None:
         raise Invalid("check.instrument_missing", field="instrument", kind=spec.needs_instrument)
     if measured_at > at + dt.timedelta(minutes=5):
         raise Invalid("check.measured_in_future", field="measured_at")
-    opens_at = laid.check.opens_at
-    if opens_at is not None and measured_at < opens_at:
-        raise Conflict("check.not_yet_open", field="measured_at", opens_at=opens_at.isoformat())
 
 
 def submit(
@@ -176,7 +180,8 @@ def submit(
     at: dt.datetime,
 ) -> Submission:
     """Sign what was done. Writes Submission, Reading, Verdict, NotTested, Signature, Check and the plan's next
-    occurrence; a suspension verdict opens a Fault and owes notices. Leaf ``check.submitted``.
+    occurrence; a suspension verdict opens a Fault and owes notices; other awaited checks of the device that it
+    covers are satisfied with it. Leaf ``check.submitted``.
 
     The same ``form_uid`` again returns the submission it made. Refused: as :func:`preview`; wrong password;
     something else than what was shown; a check submitted meanwhile; the form of another check.
@@ -217,9 +222,8 @@ def _submit(
     row = seen.sheet.check
     verb = "check.enter_user" if "user" in seen.sheet.edition.spec.performed_by else "check.enter"
     role = role_for(actor, verb, row.site_id or actor.duties_site_id, at)
-    with ledger.command(
-        "check.submitted", actor=actor, at=at, measured_at=seen.facts.measured_at or at
-    ) as act:
+    measured_at, reason = seen.facts.measured_at or at, seen.facts.outside_reason
+    with ledger.command("check.submitted", actor=actor, at=at, reason=reason, measured_at=measured_at) as act:
         submission = recording.record(
             act,
             row,
@@ -233,13 +237,21 @@ def _submit(
         )
         # Done again after it was sent back, it has opened the next occurrence already.
         if row.plan is not None and row.plan.ended_at is None and submission.number == 1:
-            done_on = recording.local_day(row, seen.facts.measured_at or at)
-            plans.open_next(act, row.plan, after_on=row.due_on, done_on=done_on)
+            _open_following(act, row, row.plan, recording.local_day(row, measured_at), reason)
+        satisfying.satisfy(act, seen.sheet, seen.judged, seen.facts, actor=actor)
         recording.open_faults(act, row, submission, seen.judged, actor, quarantine=quarantine)
         if seen.judged.verdict == "suspension":
             owed.owe_suspension(act, row, performed_by=actor)
         row.drafts.all().delete()
     return submission
+
+
+def _open_following(act: ledger.Act, row: Check, plan: CheckPlan, done_on: dt.date, reason: str) -> None:
+    """Open the next occurrence; after one accepted outside its window the plan counts from that day."""
+    if reason:
+        outside.re_anchor(act, plan, done_on, reason)
+    else:
+        plans.open_next(act, plan, after_on=row.due_on, done_on=done_on)
 
 
 def countersign(

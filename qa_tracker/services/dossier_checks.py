@@ -49,9 +49,9 @@ def check_told(writer: Writer, row: CheckRow, made: list[SubmissionRow]) -> froz
     """One check: its latest submission, with the signatures of all of them."""
     due_on = row.due_on.isoformat() if row.due_on else ""
     if not made:
-        return frozen.Check(
-            row.procedure, "", wording.check_state_word(row.state), due_on, sentence=row.excuse
-        )
+        sentence = _satisfied(writer, row) if row.satisfied_by else row.excuse
+        state = wording.check_state_word(row.state)
+        return frozen.Check(row.procedure, "", state, due_on, verdict=row.verdict, sentence=sentence)
     latest = made[-1]
     edition = writer.edition(latest.edition_id)
     names = {spec.code: spec.name for spec in edition.spec.measurands}
@@ -77,6 +77,14 @@ def check_told(writer: Writer, row: CheckRow, made: list[SubmissionRow]) -> froz
     )
 
 
+def _satisfied(writer: Writer, row: CheckRow) -> str:
+    """Which check stands for one that has no submission of its own."""
+    return _("Satisfied on %(day)s by “%(procedure)s”, which read all that this check asks for.") % {
+        "day": writer.day(row.submitted_at),
+        "procedure": row.satisfied_by_procedure,
+    }
+
+
 def _deciding_sentence(latest: SubmissionRow, names: dict[str, str]) -> str:
     """Which reading made the check's verdict."""
     for reading in latest.readings:
@@ -99,6 +107,7 @@ def _facts(latest: SubmissionRow) -> tuple[frozen.Row, ...]:
         (_("Port"), latest.port),
         (_("Cleaned before"), latest.cleaned_before),
         (_("Cleaned after"), latest.cleaned_after),
+        (_("Accepted outside the window"), latest.reason),
         (_("Remark"), latest.remark),
     ]
     return tuple(frozen.Row(label, value) for label, value in facts if value)

@@ -110,7 +110,7 @@ def _apertures(device: DeviceRow) -> tuple[frozen.Aperture, ...]:
 
 def _tells(row: CheckRow, made: dict[int, list[SubmissionRow]]) -> bool:
     """Whether a check belongs in the history: done, missed or excused, not one still awaited."""
-    return bool(made.get(row.id)) or row.state in ("missed", "excused", "void")
+    return bool(made.get(row.id) or row.satisfied_by) or row.state in ("missed", "excused", "void")
 
 
 def _period(writer: Writer, done: list[CheckRow], at: dt.datetime) -> str:

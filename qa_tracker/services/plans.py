@@ -153,8 +153,12 @@ def open_next(
     done_on: dt.date | None = None,
     days: schedule.SiteDays | None = None,
 ) -> Check:
-    """Insert the row of a plan's next occurrence; the first notice moment is stored with it."""
-    due = due_after(plan, after_on, done_on, days)
+    """Insert the row of a plan's next occurrence, after the one before or the day that was done."""
+    return open_on(act, plan, due_after(plan, after_on, done_on, days))
+
+
+def open_on(act: ledger.Act, plan: CheckPlan, due: schedule.Due) -> Check:
+    """Insert the row of an occurrence; the first notice moment is stored with it."""
     level, moment = schedule.next_level(due, None) or ("", None)
     return act.insert(
         Check(

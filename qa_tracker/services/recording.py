@@ -49,10 +49,15 @@ class Facts:
     cleaned_after: str = ""
     partial_reason: str = ""
     remark: str = ""
+    outside_reason: str = ""
 
     def as_text(self, at: dt.datetime) -> dict[str, str | None]:
-        """The facts as a signer is shown them; a moment left open is that of signing, and is not part of it."""
-        return {
+        """The facts as a signer is shown them; a moment left open is that of signing, and is not part of it.
+
+        Why it is accepted outside its window is there only where it is: what was shown before stays the same.
+        """
+        accepted = {"outside_reason": self.outside_reason} if self.outside_reason else {}
+        return accepted | {
             "measured_at": self.measured_at.isoformat() if self.measured_at else None,
             "test_object": str(self.test_object.uid) if self.test_object else None,
             "instrument": str(self.instrument.uid) if self.instrument else None,
@@ -116,6 +121,7 @@ def record(
             shown_sha256=shown_sha256,
             verdict=judged.verdict,
             verdict_level=judged.level,
+            reason=facts.outside_reason,
         )
     )
     ids = codes or measurand_ids()

@@ -27,7 +27,8 @@ from qa_tracker.services.wording_words import (
 SENTENCES: Final = {
     "check.opened": N_("%(actor)s began the unplanned check “%(procedure)s” of %(device)s"),
     "check.submitted": N_(
-        "%(actor)s signed the check “%(procedure)s”, edition %(edition)s, of %(device)s %(verdict)s (%(readings)s)"
+        "%(actor)s signed the check “%(procedure)s”, edition %(edition)s, of %(device)s %(verdict)s "
+        "(%(readings)s)%(outside)s%(satisfied)s"
     ),
     "check.countersigned": N_("%(actor)s countersigned a check of %(device)s"),
     "check.sent_back": N_("%(actor)s sent a check of %(device)s back: %(reason)s"),
@@ -137,6 +138,8 @@ def _from_content(new: Mapping[str, Any]) -> dict[str, str]:
     told["fields"] = listed_all(name.replace("_", " ") for name in sorted(new))
     told["moved"] = _moved(new)
     told["review"] = _review(len(new.get("under_review") or ()))
+    told["satisfied"] = _satisfied(len(new.get("satisfied") or ()))
+    told["outside"] = _outside(new.get("outside_window") or {})
     if isinstance(new.get("edition"), dict):
         told |= {"procedure": new["edition"]["procedure"], "edition": str(new["edition"]["number"])}
     if "readings" in new:
@@ -167,6 +170,25 @@ def _review(count: int) -> str:
     return ngettext(
         "; %(count)d baseline is under review", "; %(count)d baselines are under review", count
     ) % {"count": count}
+
+
+def _satisfied(count: int) -> str:
+    """How many other checks a submission satisfied besides its own; nothing where there were none."""
+    if not count:
+        return ""
+    return ngettext(
+        "; %(count)d other check is satisfied by it", "; %(count)d other checks are satisfied by it", count
+    ) % {"count": count}
+
+
+def _outside(told: Mapping[str, str]) -> str:
+    """Why a check was accepted outside its window, and what that moved; nothing of one that was not."""
+    if not told:
+        return ""
+    return _("; accepted outside the window: %(reason)s; next due on %(next_due)s") % {
+        "reason": told["reason"].removesuffix("."),
+        "next_due": _day(told["next_due"]),
+    }
 
 
 def _moved(new: Mapping[str, Any]) -> str:

@@ -18,6 +18,17 @@ ENTRY: Final = {
     "reading.condition_unconfirmed": N_(
         "Nothing was said about the preset “%(condition)s”. Confirm that it is unchanged, or say what differs."
     ),
+    "check.outside_reason_missing": N_(
+        "This check opens on %(opens_at)s. Say why it is accepted outside its window, or measure it then."
+    ),
+    "check.days_are_named": N_(
+        "The plan names its days, so it can't be counted from another. Record an unplanned check instead; the "
+        "planned one stays due."
+    ),
+    "check.due_day_taken": N_(
+        "Counted from that day the plan would be due on %(due_on)s, and it has a check for that day already. "
+        "Record an unplanned check instead; the planned one stays due."
+    ),
     "check.measured_at_wrong": N_(
         "“%(entered)s” is no date and time. Choose them in the calendar, or leave the field empty for now."
     ),

@@ -47,6 +47,13 @@ class Check(Noun):
     verdict_level = models.CharField(max_length=12, blank=True)
     submitted_at = models.DateTimeField(null=True)
     excuse = models.CharField(max_length=300, blank=True)
+    satisfied_by = models.ForeignKey(
+        "self",
+        null=True,
+        on_delete=models.DO_NOTHING,
+        related_name="satisfies",
+        help_text="the check that covered it",
+    )
 
     class Meta:
         constraints = [models.UniqueConstraint(fields=["plan", "due_on"], name="check_once")]

@@ -49,11 +49,14 @@ class CheckRow:
     verdict_level: str
     submitted_at: dt.datetime | None
     excuse: str
+    satisfied_by: uuid.UUID | None
+    satisfied_by_procedure: str
+    satisfied_by_state: str
 
 
 def _row(check: Check) -> CheckRow:
     device, plan = check.device, check.plan
-    scanner, room = device.scanner, device.location
+    scanner, room, other = device.scanner, device.location, check.satisfied_by
     return CheckRow(
         check.id, check.uid, check.version, check.plan_id, device.id, device.uid, device.kind,
         f"{device.maker} {device.model} {device.serial}", device.state,
@@ -65,12 +68,18 @@ def _row(check: Check) -> CheckRow:
         check.state, check.due_on, check.opens_at, check.due_at, check.late_at, check.overdue_at,
         plan.grace_days if plan else 0,
         check.verdict, check.verdict_level, check.submitted_at, check.excuse,
+        other.uid if other else None, other.procedure.title if other else "", other.state if other else "",
     )  # fmt: skip
 
 
 def _joined() -> QuerySet[Check]:
     return Check.objects.select_related(
-        "device__scanner", "device__location", "procedure", "site", "plan__responsible"
+        "device__scanner",
+        "device__location",
+        "procedure",
+        "site",
+        "plan__responsible",
+        "satisfied_by__procedure",
     )
 
 
@@ -143,9 +152,17 @@ def latest_done(
 
 
 def submitted_checks(scope: Scope, most: int = 200) -> list[CheckRow]:
-    """Checks that wait for a countersignature or need none, oldest first."""
-    found = _joined().filter(checks_in(scope), state="submitted").distinct().order_by("submitted_at", "id")
-    return [_row(check) for check in found[:most]]
+    """Checks that wait for a countersignature or need none, oldest first.
+
+    One that another check satisfied is not among them: that check's own signatures stand for it.
+    """
+    found = _joined().filter(checks_in(scope), state="submitted", satisfied_by=None).distinct()
+    return [_row(check) for check in found.order_by("submitted_at", "id")[:most]]
+
+
+def checks_satisfied_by(check_id: int) -> list[CheckRow]:
+    """The checks that one check satisfied besides being done itself."""
+    return [_row(check) for check in _joined().filter(satisfied_by_id=check_id).order_by("due_on", "id")]
 
 
 def checks_of_device(
@@ -165,6 +182,12 @@ def checks_of_device(
 def next_check_of(plan_id: int) -> CheckRow | None:
     """The awaited occurrence of a plan."""
     check = _joined().filter(plan_id=plan_id, state__in=CHECK_AWAITED).order_by("due_on").first()
+    return _row(check) if check else None
+
+
+def check_opened_after(plan_id: int, check_id: int) -> CheckRow | None:
+    """The occurrence a plan opened next after one of its checks."""
+    check = _joined().filter(plan_id=plan_id, id__gt=check_id).order_by("id").first()
     return _row(check) if check else None
 
 

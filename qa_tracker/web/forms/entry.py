@@ -115,12 +115,14 @@ def typed_of(items: Iterable[Item], typed: Mapping[str, str], zone: str) -> Type
         cleaned_after=typed.get("cleaned_after", "").strip(),
         partial_reason=typed.get("partial_reason", ""),
         remark=typed.get("remark", "").strip(),
+        outside_reason=typed.get("outside_reason", "").strip()[:300],
     )
 
 
 def inputs_of(row: SubmissionRow) -> dict[str, str]:
     """The inputs a submission was made from, as far as it holds them; to put a check right that was sent back."""
-    typed: dict[str, str] = {"port": row.port, "remark": row.remark, "cleaned_after": row.cleaned_after}
+    names = {"port": row.port, "remark": row.remark, "cleaned_after": row.cleaned_after}
+    typed: dict[str, str] = {**names, "outside_reason": row.reason}
     for reading in row.readings:
         if reading.id is None:
             continue

@@ -22,6 +22,7 @@ from qa_tracker.records.queries import devices, library, notices, sites, submiss
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.records.queries.scope import Scope
+from qa_tracker.records.queries.submissions import SubmissionRow
 from qa_tracker.services import checks, excuses, guards, wording
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.presenters.check import shown_submission, to_countersign
@@ -61,6 +62,8 @@ def _page(
         "at": at,
         "due": wording.due_words(row, at, zone),
         "site": known.get(row.site_id or 0),
+        "satisfies": queries.checks_satisfied_by(row.id) if done else [],
+        "following": _following(row, done),
         "submissions": [
             shown_submission(each, library.edition_by_id(each.edition_id)) for each in reversed(done)
         ],
@@ -74,6 +77,13 @@ def _page(
         "next": _next_here(request, scope, row, at) if "signed" in request.GET else None,
     }
     return render(request, "check.html", context | _second(request, row, done, at), status=status)
+
+
+def _following(row: CheckRow, done: list[SubmissionRow]) -> CheckRow | None:
+    """The occurrence that was opened by a check accepted outside its window."""
+    if row.plan_id is None or not any(each.reason for each in done):
+        return None
+    return queries.check_opened_after(row.plan_id, row.id)
 
 
 def _second(request: HttpRequest, row: CheckRow, done: list[Any], at: dt.datetime) -> dict[str, Any]:

@@ -181,7 +181,8 @@ def restore(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
 
 
 def _proofs(row: DeviceRow, zone: str) -> tuple[Option, ...]:
-    done = [each for each in checks.checks_of_device(row.id, most=20) if each.state in CHECK_DONE]
+    recent = checks.checks_of_device(row.id, most=20)
+    done = [each for each in recent if each.state in CHECK_DONE and not each.satisfied_by]
     return (*((str(each.uid), _proof_words(each, zone)) for each in done), ("", _("none of these")))
 
 

@@ -17,13 +17,13 @@ from django.utils.http import urlencode
 from django.utils.timezone import now
 from django.views.decorators.http import require_GET, require_POST
 
-from qa_tracker.core.errors import Conflict, DomainError, SeveralInvalid
+from qa_tracker.core.errors import Conflict, DomainError, Invalid, SeveralInvalid
 from qa_tracker.core.schedule_days import zone_of
 from qa_tracker.core.workflow import DEVICE_USABLE
 from qa_tracker.records.queries import checks as check_queries
 from qa_tracker.records.queries import objects, submissions
 from qa_tracker.records.queries.submissions import SignatureRow
-from qa_tracker.services import cautions, checks, drafts, guards, live, wording
+from qa_tracker.services import cautions, checks, drafts, guards, live, outside, wording
 from qa_tracker.services.drafts import Kept, KeptMeanwhile
 from qa_tracker.services.entries import REASONS
 from qa_tracker.services.judging import Judged
@@ -214,10 +214,20 @@ def page(
         ],
         "barred": "" if laid.check.device.state in DEVICE_USABLE else laid.check.device.state,
         "sent_back": _sent_back(laid),
+        "asks_outside": _asks_outside(request, laid, typed, at),
         "zone": zone_of_sheet(laid),
         "at": at,
     }
     return render(request, "check_enter.html", context, status=status)
+
+
+def _asks_outside(request: HttpRequest, laid: Sheet, typed: Mapping[str, str], at: dt.datetime) -> bool:
+    """Whether to ask why the check is accepted outside its window: only then, and only who may accept it."""
+    try:
+        measured_at = inputs.moment(typed.get("measured_at", ""), zone_of_sheet(laid)) or at
+    except Invalid:
+        return False
+    return outside.asks_reason(laid.check, measured_at, actor=request.user, at=at)
 
 
 def _sent_back(laid: Sheet) -> SignatureRow | None:
