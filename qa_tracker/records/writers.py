@@ -6,6 +6,7 @@ of history.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from functools import cache
 from operator import attrgetter
 from typing import Any, Protocol, TypeVar
@@ -86,7 +87,7 @@ class HistoryWriter:
         self.new, self.changed = {}, {}
 
 
-def insert_rows(model: type[models.Model], rows: list[models.Model]) -> None:
+def insert_rows(model: type[models.Model], rows: Sequence[models.Model]) -> None:
     """Insert rows that already have their keys, by one prepared statement."""
     if not rows:
         return
@@ -130,7 +131,7 @@ def _depth(model: type[models.Model]) -> int:
 AS_IT_IS = (str, int, type(None))
 
 
-def _stored(field: models.Field[Any, Any], rows: list[models.Model]) -> list[Any]:
+def _stored(field: models.Field[Any, Any], rows: Sequence[models.Model]) -> list[Any]:
     """One column's values as the engine stores them; texts and whole numbers are stored as they are."""
     engine = connections[DEFAULT_DB_ALIAS]
     values = list(map(attrgetter(field.attname), rows))

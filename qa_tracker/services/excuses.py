@@ -8,7 +8,7 @@ import uuid
 from qa_tracker.core.workflow import CHECK, target
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Person
-from qa_tracker.services import finding, plans
+from qa_tracker.services import clocks, finding, plans
 from qa_tracker.services.guards import check_may, may, required
 
 
@@ -19,7 +19,8 @@ def excuse(*, check: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> 
     reason = required(reason, "check.excuse_missing", "reason")
     state = target(CHECK, row.state, "excuse")
     with ledger.command("check.excused", actor=actor, at=at, reason=reason) as act:
-        act.change(row, state=state, excuse=reason[:300], next_notice_at=None, next_level="")
+        act.change(row, state=state, excuse=reason[:300])
+        clocks.stop(row)
         if row.plan is not None:
             plans.open_next(act, row.plan, after_on=row.due_on, done_on=row.due_on)
         act.about(row, device=row.device, site=row.site)

@@ -15,7 +15,7 @@ from contextlib import contextmanager
 from dataclasses import dataclass, field
 from typing import TypeVar
 
-from django.db import models
+from django.db import models, transaction
 
 from qa_tracker.core.schedule import SiteDays, local_day
 from qa_tracker.core.workflow import CHECK, target
@@ -46,7 +46,7 @@ from qa_tracker.records.queries.baselines import SeriesKey
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.records.queries.uncertainties import UncertaintyRow
-from qa_tracker.services import judging, plans, recording
+from qa_tracker.services import clocks, judging, plans, recording
 from qa_tracker.services.baseline_rows import SetUp, setups_of
 from qa_tracker.services.deriving import attributes_of
 from qa_tracker.services.entries import Entry
@@ -158,15 +158,17 @@ def past(origin: str) -> Iterator[Past]:
 
     The library and the adoptions have to be there, adopted by the group; a site's own adoptions are not asked.
     """
-    with _without_collecting(), ledger.history(origin) as batch:
-        yield Past(
-            batch,
-            {row.code: row for row in library.adopted_procedures(None)},
-            {row.code: row for row in Procedure.objects.all()},
-            {row.code: row for row in Measurand.objects.all()},
-            library.adopted_criteria(None),
-            uncertainties.in_force(None),
-        )
+    with _without_collecting(), transaction.atomic():
+        with ledger.history(origin) as batch:
+            yield Past(
+                batch,
+                {row.code: row for row in library.adopted_procedures(None)},
+                {row.code: row for row in Procedure.objects.all()},
+                {row.code: row for row in Measurand.objects.all()},
+                library.adopted_criteria(None),
+                uncertainties.in_force(None),
+            )
+        clocks.start_missing()
 
 
 @contextmanager
@@ -309,7 +311,7 @@ def give_up(past: Past, check: Check, verb: str, reason: str, at: dt.datetime) -
     """Miss or excuse an occurrence when the next one opens, as the sweep does."""
     act = past.act("notices.owed", None, at)
     columns: dict[str, object] = {"excuse": reason} if verb == "excuse" else {}
-    act.change(check, state=target(CHECK, check.state, verb), next_notice_at=None, next_level="", **columns)
+    act.change(check, state=target(CHECK, check.state, verb), **columns)
     following = _open_following(past, act, check, at)
     act.about(check.site, site=check.site)
     done = "missed" if verb == "miss" else "excused"

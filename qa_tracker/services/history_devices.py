@@ -77,7 +77,7 @@ def end_plan(
     act = past.act("plan.ended", by, at, reason)
     act.change(plan, ended_at=at)
     if awaited.state in CHECK_AWAITED:
-        act.change(awaited, state="excused", excuse=reason, next_notice_at=None, next_level="")
+        act.change(awaited, state="excused", excuse=reason)
     act.about(plan, device=plan.device, site=plan.device.site)
     act.tell({"ended": True})
 

@@ -12,6 +12,7 @@ from qa_tracker.records import ledger
 from qa_tracker.records.models import Check, CheckPlan, Device, Person, Procedure, Site
 from qa_tracker.records.queries.library import adopted_edition
 from qa_tracker.records.queries.sites import holidays_of
+from qa_tracker.services import clocks
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.guards import check_may, may
 
@@ -107,7 +108,8 @@ def end(*, plan: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> None
     with ledger.command("plan.ended", actor=actor, at=at, reason=reason) as act:
         act.change(row, ended_at=at)
         for check in Check.objects.filter(plan=row, state__in=("scheduled", "started")):
-            act.change(check, state="excused", excuse=reason[:300], next_notice_at=None, next_level="")
+            act.change(check, state="excused", excuse=reason[:300])
+            clocks.stop(check)
         act.about(row, device=device, site=device.site)
         act.tell({"ended": True})
 
@@ -158,9 +160,8 @@ def open_next(
 
 
 def open_on(act: ledger.Act, plan: CheckPlan, due: schedule.Due) -> Check:
-    """Insert the row of an occurrence; the first notice moment is stored with it."""
-    level, moment = schedule.next_level(due, None) or ("", None)
-    return act.insert(
+    """Insert the row of an occurrence; its clock is set, in a history at the end."""
+    check = act.insert(
         Check(
             plan=plan,
             device=plan.device,
@@ -172,7 +173,8 @@ def open_on(act: ledger.Act, plan: CheckPlan, due: schedule.Due) -> Check:
             due_at=due.due_at,
             late_at=due.late_at,
             overdue_at=due.overdue_at,
-            next_notice_at=moment,
-            next_level=level,
         )
     )
+    if act.origin == "live":
+        clocks.start(check)
+    return check

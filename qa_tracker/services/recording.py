@@ -28,7 +28,7 @@ from qa_tracker.records.models import (
 )
 from qa_tracker.records.queries.library import EditionRow, measurand_ids
 from qa_tracker.records.writers import new_row
-from qa_tracker.services import faults
+from qa_tracker.services import clocks, faults
 from qa_tracker.services.items import Item
 from qa_tracker.services.judging import Judged, JudgedItem
 from qa_tracker.services.states import set_state
@@ -134,9 +134,9 @@ def record(
         verdict=judged.verdict,
         verdict_level=judged.level,
         submitted_at=act.at,
-        next_notice_at=None,
-        next_level="",
     )
+    if act.origin == "live":
+        clocks.stop(check)
     act.about(check, device=check.device, site=check.site)
     act.tell(_told(edition, judged, facts, act.at, submission))
     return submission

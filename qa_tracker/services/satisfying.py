@@ -12,7 +12,7 @@ from qa_tracker.records import ledger
 from qa_tracker.records.models import Check, Person
 from qa_tracker.records.queries.library import EditionRow, adopted_edition
 from qa_tracker.records.queries.scope import grants_of
-from qa_tracker.services import plans
+from qa_tracker.services import clocks, plans
 from qa_tracker.services.finding import CHECK_JOINS
 from qa_tracker.services.guards import Grants, may
 from qa_tracker.services.items import Item, measured
@@ -110,9 +110,8 @@ def _close(act: ledger.Act, other: Check, by: Check, own: Judged, measured_at: d
         verdict_level=own.level,
         submitted_at=act.at,
         satisfied_by=by,
-        next_notice_at=None,
-        next_level="",
     )
+    clocks.stop(other)
     if other.plan is not None and other.plan.ended_at is None:
         done_on = local_day(other, measured_at)
         plans.open_next(act, other.plan, after_on=other.due_on, done_on=done_on)

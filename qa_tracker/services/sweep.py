@@ -16,7 +16,7 @@ from qa_tracker.core import schedule
 from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, DEVICE_USABLE, target
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Check, Heartbeat
-from qa_tracker.services import owed, plans
+from qa_tracker.services import clocks, owed, plans
 
 MOST_A_TRANSACTION = 500
 
@@ -54,7 +54,7 @@ def sweep(*, at: dt.datetime, as_if: dt.datetime | None = None) -> Swept:
 
 
 def _due(moment: dt.datetime) -> Q:
-    return Q(next_notice_at__lte=moment, state__in=CHECK_AWAITED)
+    return Q(clock__at__lte=moment, state__in=CHECK_AWAITED)
 
 
 def _sites_due(moment: dt.datetime) -> list[int | None]:
@@ -65,7 +65,7 @@ def _sites_due(moment: dt.datetime) -> list[int | None]:
 def _sweep_site(site_id: int | None, at: dt.datetime, as_if: dt.datetime | None) -> tuple[int, Moved]:
     moment, moved = as_if or at, Moved()
     with ledger.sweeping("notices.owed", at=at, as_if=as_if) as act:
-        joins = ("plan__device__site", "device__site", "site", "procedure")
+        joins = ("clock", "plan__device__site", "device__site", "site", "procedure")
         found = (
             Check.objects.filter(_due(moment), Q(**{"site_id": site_id}))
             .select_related(*joins)
@@ -98,16 +98,18 @@ def _advance(act: ledger.Act, check: Check, moment: dt.datetime, moved: Moved) -
         moved.opened.append(f"{opened.uid}")
         return
     passed = [level for level in schedule.LEVELS if level_moment(check, level) <= moment]
-    pending = check.next_level
+    pending = check.clock.level
     if passed and pending in passed:
         skipped = passed[passed.index(pending) : -1]
-        if check.plan is not None and check.device.state in DEVICE_USABLE:
+        if check.plan is not None and check.plan.responsible_id and check.device.state in DEVICE_USABLE:
             moved.notices += owed.owe(act, check, check.plan.responsible_id, passed[-1], skipped)
     rest = schedule.LEVELS[len(passed) :]
     if rest:
-        act.change(check, next_level=rest[0], next_notice_at=level_moment(check, rest[0]))
+        clocks.turn(check, rest[0], level_moment(check, rest[0]))
+    elif gone_at is not None:
+        clocks.turn(check, "missed", gone_at)
     else:
-        act.change(check, next_level="missed" if gone_at else "", next_notice_at=gone_at)
+        clocks.stop(check)
 
 
 def level_moment(check: Check, level: str) -> dt.datetime:
@@ -135,14 +137,13 @@ def _following(check: Check) -> schedule.Due | None:
 def _give_up(act: ledger.Act, check: Check, moved: Moved) -> None:
     """Missed: recorded and counted. A device that was out of use is excused instead, with its state."""
     if check.device.state in DEVICE_USABLE:
-        act.change(check, state=target(CHECK, check.state, "miss"), next_notice_at=None, next_level="")
+        act.change(check, state=target(CHECK, check.state, "miss"))
         moved.missed.append(str(check.uid))
     else:
         act.change(
             check,
             state=target(CHECK, check.state, "excuse"),
             excuse=check.device.state,
-            next_notice_at=None,
-            next_level="",
         )
         moved.excused.append(str(check.uid))
+    clocks.stop(check)

@@ -168,11 +168,14 @@ def _verify_noun_table(model: type[Noun]) -> Iterator[Problem]:
 
 
 def _is_as_kept(row: Noun, kept: str) -> bool:
-    """Whether a row is as its newest version says; a column that is younger than the version has its default."""
+    """Whether a row is as its newest version says; a younger column has its default.
+
+    A column that the table no longer has is passed over.
+    """
     columns = columns_of(row)
     if kept == canonical(columns).decode():
         return True
-    said = json.loads(kept or "{}")
+    said = {name: text for name, text in json.loads(kept or "{}").items() if name in columns}
     unset = columns_of(type(row)())
     return bool(said) and columns == {name: unset[name] for name in columns} | said
 

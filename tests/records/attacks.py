@@ -66,7 +66,7 @@ def clash(cells: Cells, model: type[models.Model], key: Key | None) -> Cells:
     if "leaf_id" in new:
         new["leaf_id"] = fresh_uid()
     for each in guards.unique_keys(model):
-        free = [column for column in columns_of(each) if column not in kept]
+        free = [name for name in columns_of(each) if name not in kept and cells[name] is not None]
         if each != key and free:
             new[free[0]] = other(cells[free[0]])
     return new

@@ -79,9 +79,10 @@ def test_row_digests_of_the_past_are_those_of_the_rows(db):
     past()
     for leaf in Leaf.objects.all():
         for name, digest in json.loads(leaf.content)["rows"].items():
-            model = apps.get_model("leadline", name.partition("/")[0])
+            table, _, form = name.partition("/")
+            model = apps.get_model("leadline", table)
             assert issubclass(model, Fact)
-            assert digest == digest_of(model.objects.filter(leaf_id=leaf.uid), 1)
+            assert digest == digest_of(model.objects.filter(leaf_id=leaf.uid), int(form))
 
 
 def test_leaves_are_marked_and_ordered_by_their_moments_when_acts_were_begun_in_any_order(db):

@@ -4,6 +4,7 @@ from qa_tracker.records.models import ledger as ledger
 from qa_tracker.records.models.baselines import Baseline, BaselineSetup
 from qa_tracker.records.models.checks import (
     Check,
+    CheckClock,
     CheckPlan,
     Draft,
     FurtherVerdict,
@@ -20,6 +21,7 @@ from qa_tracker.records.models.devices import (
     ProbeFacts,
     ScannerFacts,
 )
+from qa_tracker.records.models.duties import Leave, PlanException, PlanRule, Team, TeamMember
 from qa_tracker.records.models.evidence import Dossier, Fault, FaultAction, Signature
 from qa_tracker.records.models.library import (
     Adoption,
@@ -31,17 +33,28 @@ from qa_tracker.records.models.library import (
     Procedure,
     StatedUncertainty,
 )
-from qa_tracker.records.models.notices import Digest, Heartbeat, Notice, NoticeMail, NoticeSeen
+from qa_tracker.records.models.notices import (
+    Digest,
+    DigestTry,
+    Heartbeat,
+    LadderRung,
+    Notice,
+    NoticeHold,
+    NoticeMail,
+    NoticeSeen,
+    SweepGap,
+)
 from qa_tracker.records.models.objects import Instrument, TestObject
-from qa_tracker.records.models.people import ApiToken, Credential, Person, RoleGrant
+from qa_tracker.records.models.people import ApiToken, Credential, FeedToken, Person, RoleGrant
 from qa_tracker.records.models.sites import Holiday, Location, Pool, PoolMember, Site
 from qa_tracker.records.models.versions import Version
 
 __all__ = [
-    "Adoption", "Aperture", "ApiToken", "Baseline", "BaselineSetup", "Check", "CheckPlan", "Condition",
-    "Credential", "CriteriaSet", "Criterion", "Device", "Digest", "Dossier", "Draft", "Edition",
-    "EditionDraft", "Fault", "FaultAction", "FurtherVerdict", "Heartbeat", "Holiday", "Instrument",
-    "Location", "Measurand", "NotTested", "Notice", "NoticeMail", "NoticeSeen", "Person", "Placement",
-    "Pool", "PoolMember", "ProbeFacts", "Procedure", "Reading", "RoleGrant", "ScannerFacts", "Signature",
-    "Site", "StatedUncertainty", "Submission", "TestObject", "Verdict", "Version",
+    "Adoption", "Aperture", "ApiToken", "Baseline", "BaselineSetup", "Check", "CheckClock", "CheckPlan",
+    "Condition", "Credential", "CriteriaSet", "Criterion", "Device", "Digest", "DigestTry", "Dossier",
+    "Draft", "Edition", "EditionDraft", "Fault", "FaultAction", "FeedToken", "FurtherVerdict", "Heartbeat",
+    "Holiday", "Instrument", "LadderRung", "Leave", "Location", "Measurand", "NotTested", "Notice",
+    "NoticeHold", "NoticeMail", "NoticeSeen", "Person", "Placement", "PlanException", "PlanRule", "Pool",
+    "PoolMember", "ProbeFacts", "Procedure", "Reading", "RoleGrant", "ScannerFacts", "Signature", "Site",
+    "StatedUncertainty", "Submission", "SweepGap", "Team", "TeamMember", "TestObject", "Verdict", "Version",
 ]  # fmt: skip

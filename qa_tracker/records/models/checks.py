@@ -7,6 +7,7 @@ from django.db import models
 from qa_tracker.records.models.base import ExactField, Fact, Noun
 from qa_tracker.records.models.baselines import Baseline
 from qa_tracker.records.models.devices import Aperture, Condition, Device
+from qa_tracker.records.models.duties import PlanRule, Team
 from qa_tracker.records.models.library import Criterion, Edition, Measurand, Procedure
 from qa_tracker.records.models.objects import Instrument, TestObject
 from qa_tracker.records.models.people import Person
@@ -24,7 +25,15 @@ class CheckPlan(Noun):
     before_days = models.PositiveSmallIntegerField()
     grace_days = models.PositiveSmallIntegerField()
     roll = models.CharField(max_length=10, default="none")
-    responsible = models.ForeignKey(Person, on_delete=models.DO_NOTHING, related_name="plans")
+    responsible = models.ForeignKey(Person, null=True, on_delete=models.DO_NOTHING, related_name="plans")
+    team = models.ForeignKey(Team, null=True, on_delete=models.DO_NOTHING, related_name="plans")
+    made_by_rule = models.ForeignKey(
+        PlanRule,
+        null=True,
+        on_delete=models.DO_NOTHING,
+        related_name="plans",
+        help_text="empty: made by hand",
+    )
     ended_at = models.DateTimeField(null=True)
 
 
@@ -37,12 +46,11 @@ class Check(Noun):
     site = models.ForeignKey(Site, null=True, on_delete=models.DO_NOTHING, related_name="+")
     state = models.CharField(max_length=14)
     due_on = models.DateField(null=True)
+    slot_on = models.DateField(null=True, help_text="the rule's own day, where the due day was moved by hand")
     opens_at = models.DateTimeField(null=True)
     due_at = models.DateTimeField(null=True)
     late_at = models.DateTimeField(null=True)
     overdue_at = models.DateTimeField(null=True)
-    next_notice_at = models.DateTimeField(null=True)
-    next_level = models.CharField(max_length=12, blank=True)
     verdict = models.CharField(max_length=16, blank=True)
     verdict_level = models.CharField(max_length=12, blank=True)
     submitted_at = models.DateTimeField(null=True)
@@ -58,11 +66,23 @@ class Check(Noun):
     class Meta:
         constraints = [models.UniqueConstraint(fields=["plan", "due_on"], name="check_once")]
         indexes = [
-            models.Index(fields=["next_notice_at"], name="check_by_notice"),
             models.Index(fields=["state", "due_on"], name="check_by_due"),
             models.Index(fields=["device", "-id"], name="check_by_device"),
             models.Index(fields=["submitted_at", "id"], name="check_by_done"),
         ]
+
+
+class CheckClock(models.Model):
+    """When the sweep looks at an awaited check next, and the notice level it reaches then.
+
+    Recomputed from the check, its plan and its site, so no leaf covers it; no row once nothing is awaited.
+    """
+
+    check_of = models.OneToOneField(
+        Check, primary_key=True, on_delete=models.CASCADE, related_name="clock", db_column="check_id"
+    )
+    at = models.DateTimeField(db_index=True)
+    level = models.CharField(max_length=12)
 
 
 class Submission(Fact):

@@ -60,6 +60,15 @@ class ApiToken(models.Model):
     revoked_at = models.DateTimeField(null=True)
 
 
+class FeedToken(models.Model):
+    """The secret address of a person's calendar feed, stored as its SHA-256; issuing and revoking write leaves."""
+
+    person = models.ForeignKey(Person, on_delete=models.DO_NOTHING, related_name="feeds")
+    digest = models.CharField(max_length=64, unique=True)
+    created_at = models.DateTimeField()
+    revoked_at = models.DateTimeField(null=True)
+
+
 class RoleGrant(Noun):
     """A role held at one site, or (site empty) in the whole group, from a day until a day."""
 

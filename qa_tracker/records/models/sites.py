@@ -15,6 +15,10 @@ class Site(Noun):
     time_zone = models.CharField(max_length=60)
     weekend = models.CharField(max_length=14, default="6,7")
     digest_hour = models.PositiveSmallIntegerField(default=7)
+    quiet_from_hour = models.PositiveSmallIntegerField(null=True)
+    quiet_until_hour = models.PositiveSmallIntegerField(null=True)
+    country = models.CharField(max_length=2, blank=True, help_text="ISO 3166-1, for public holidays")
+    subdivision = models.CharField(max_length=6, blank=True, help_text="ISO 3166-2, without the country")
     remedial_instruction = models.TextField(blank=True)
     suspension_instruction = models.TextField(blank=True)
 
@@ -25,6 +29,7 @@ class Location(Noun):
     site = models.ForeignKey(Site, on_delete=models.DO_NOTHING, related_name="locations")
     name = models.CharField(max_length=120)
     position = models.PositiveIntegerField(default=0)
+    round_the_clock = models.BooleanField(default=False)
 
     class Meta:
         constraints = [models.UniqueConstraint(fields=["site", "name"], name="location_once")]
@@ -33,11 +38,15 @@ class Location(Noun):
 class Holiday(Fact):
     """A day a site does not work, copied as a row so that the past never changes."""
 
-    LEDGER_FORMS = {1: ("id", "site_id", "day_on", "name")}
+    LEDGER_FORMS = {
+        1: ("id", "site_id", "day_on", "name"),
+        2: ("id", "site_id", "day_on", "name", "source"),
+    }
 
     site = models.ForeignKey(Site, on_delete=models.DO_NOTHING, related_name="holidays")
     day_on = models.DateField()
     name = models.CharField(max_length=120)
+    source = models.CharField(max_length=120, blank=True, help_text="empty: added by hand")
 
     class Meta:
         constraints = [models.UniqueConstraint(fields=["site", "day_on"], name="holiday_once")]
