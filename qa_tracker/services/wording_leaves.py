@@ -86,6 +86,13 @@ SENTENCES: Final = {
     "dossier.rendering": N_("%(actor)s began to draw a dossier of %(device)s"),
     "dossier.issued": N_("%(actor)s issued a sealed dossier of %(device)s"),
     "dossier.failed": N_("%(actor)s could not draw a dossier of %(device)s: %(failure)s"),
+    "notices.acknowledged": N_(
+        "%(actor)s acknowledged the check of %(device)s until %(until_at)s: %(reason)s"
+    ),
+    "notices.snoozed": N_(
+        "%(actor)s put their notices of a check of %(device)s off until %(until_at)s: %(reason)s"
+    ),
+    "notices.hold_ended": N_("%(actor)s ended a hold of the notices of %(device)s: %(reason)s"),
     "notices.owed": N_("%(actor)s moved checks by date: %(moved)s"),
 }
 """A sentence for every kind of leaf, with what it takes from the leaf's content."""
@@ -218,4 +225,5 @@ WORDS: Final[dict[str, Callable[[Any], str]]] = {
     "days": lambda days: listed_all(_day(day) for day in sorted(days)),
     **dict.fromkeys(("due", "since", "first_due", "from", "until"), _day),
     "sites": listed_all,
+    "until_at": lambda moment: moment_words(dt.datetime.fromisoformat(moment)),
 }

@@ -18,6 +18,7 @@ from qa_tracker.services.wording_refused_editor import EDITOR
 from qa_tracker.services.wording_refused_entry import ENTRY
 from qa_tracker.services.wording_refused_formulas import FORMULAS
 from qa_tracker.services.wording_refused_lines import LINES
+from qa_tracker.services.wording_refused_notices import NOTICES
 from qa_tracker.services.wording_refused_records import RECORDS
 from qa_tracker.services.wording_refused_requests import REQUESTS
 from qa_tracker.services.wording_refused_statistics import STATISTICS
@@ -53,6 +54,7 @@ SENTENCES: Final[Mapping[str, str]] = (
     | STATISTICS
     | BASELINES
     | EDITOR
+    | NOTICES
 )
 STATES: Final = {
     "check": CHECK_STATES,

@@ -65,6 +65,7 @@ PERMITTED: Final = {
     "check.countersign": N_("countersign checks"),
     "check.excuse": N_("excuse checks"),
     "check.accept_out_of_window": N_("accept a check outside its window"),
+    "check.acknowledge": N_("acknowledge checks of others"),
     "device.register": N_("register devices"),
     "device.edit": N_("change the register"),
     "device.place": N_("move devices"),

@@ -20,6 +20,7 @@ DOORS = {"command", "sweeping", "act"}
 # Kinds that end with the state a verb leads to.
 MADE = {
     "f'check.{state}'": ("check.countersigned", "check.sent_back"),
+    "f'notices.{kind}'": ("notices.acknowledged", "notices.snoozed"),
     "f'dossier.{state}'": tuple(f"dossier.{state}" for state in DOSSIER.states),
 }
 
@@ -210,6 +211,18 @@ TABLE = [
     (
         "notices.owed", {"notices": ["a", "b"], "missed": ["c"], "excused": [], "opened": ["d"]}, "",
         f"{HD} moved checks by date: 2 notices owed, 1 check missed and 1 check opened.",
+    ),
+    (
+        "notices.acknowledged", {"until_at": "2025-03-14T00:00:00+00:00"}, "Probe is out",
+        f"{HD} acknowledged the check of {TERN} until 14 March 2025 at 00:00 UTC: Probe is out.",
+    ),
+    (
+        "notices.snoozed", {"until_at": "2025-03-14T00:00:00+00:00"}, "Probe is out",
+        f"{HD} put their notices of a check of {TERN} off until 14 March 2025 at 00:00 UTC: Probe is out.",
+    ),
+    (
+        "notices.hold_ended", {"held": "snoozed"}, "Probe is back",
+        f"{HD} ended a hold of the notices of {TERN}: Probe is back.",
     ),
 ]  # fmt: skip
 

@@ -250,3 +250,10 @@ def measurand_ids() -> dict[str, int]:
 def procedure_by_code(code: str) -> Procedure | None:
     """A procedure by code, for use inside commands."""
     return Procedure.objects.filter(code=code).first()
+
+
+def electrical_procedures() -> frozenset[int]:
+    """Keys of the procedures that ask for a leakage tester: what they find is never held back."""
+    asks = '"needs_instrument":"leakage_tester"'  # the content is canonical JSON, so it is written in one way
+    found = Edition.objects.filter(content__contains=asks).values_list("procedure_id", flat=True)
+    return frozenset(found)
