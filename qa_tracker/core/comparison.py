@@ -13,11 +13,13 @@ import numpy as np
 from qa_tracker.core.allowances import Allowance, allowance
 from qa_tracker.core.criteria import Criterion, Level, Limit
 from qa_tracker.core.decimals import plain, round_half_even, scaled_at, subtract
-from qa_tracker.core.verdict_kernel import Columns, Rule, column, finest_places, verdict_codes
+from qa_tracker.core.verdict_kernel import CONFORMING, Columns, Rule, column, finest_places, verdict_codes
 
 SIGN = {"<": -1, "=": 0, ">": 1}
 MIRRORED = {"<": ">", "=": "=", ">": "<"}
 TENTH = Decimal("0.1")
+ALL = 100
+"""Percent of an allowance."""
 
 
 @dataclass(frozen=True)
@@ -102,20 +104,32 @@ class Comparison:
         100 * departure / allowance, and nothing below zero: a gain uses none. For a lower limit, limit /
         value: 100 at the limit and more below it. None where the divisor is not above zero.
         """
+        share = self._share(level)
+        return None if share is None else max(round_half_even(share, TENTH), Decimal("0.0"))
+
+    def beside_all(self, level: Level) -> str:
+        """Tell which side of 100 % a share lies that rounds to it: ``over``, ``under``, or nothing to say."""
+        share = self._share(level)
+        if share is None or share == ALL or round_half_even(share, TENTH) != ALL:
+            return ""
+        return "over" if share > ALL else "under"
+
+    def _share(self, level: Level) -> Fraction | None:
         share, of = self.departure[0], self.allowance(level).size
         if self.criterion.direction == "below" and not self.is_change:
             share, of = of, share
-        if of <= 0:
-            return None
-        return max(round_half_even(100 * Fraction(share) / Fraction(of), TENTH), Decimal("0.0"))
+        return None if of <= 0 else 100 * Fraction(share) / Fraction(of)
 
     def probability(self, level: Level) -> float | None:
         """Return the probability that the true value is within the level; None without U.
 
-        For exact readings only: a half-line has no estimate to put a distribution on.
+        For exact readings only: a half-line has no estimate to put a distribution on. With U = 0 it is 1 where the
+        plain comparison clears the level, else 0, so that a limit that itself fails gives 0.
         """
-        if self.uncertainty is None or self.qualifier != "=":
+        if self.uncertainty is None or (self.qualifier, self.reference_qualifier) != ("=", "="):
             return None
+        if not self.uncertainty:
+            return float(self.code("simple", self.criterion.alone(level)) == CONFORMING)
         allowed, estimate = float(self.allowance(level).size), float(self.difference)
         low, high = -math.inf, math.inf
         if self.criterion.direction != "below":
@@ -139,7 +153,7 @@ def probability_within(low: float, high: float, estimate: float, standard_uncert
     estimate
         The measured value y.
     standard_uncertainty
-        u = U / 2, >= 0; at zero the answer is 1 inside and on the limits, else 0.
+        u = U / 2, >= 0; at zero the answer is 1 inside and on the limits, which belong to it, else 0.
 
     Examples
     --------
@@ -175,6 +189,8 @@ def comparison_parameters(compared: Comparison, level: Level, first: Level) -> d
     }
     if (used := compared.used(first)) is not None:
         written["used"] = plain(used)
+    if side := compared.beside_all(first):
+        written["used_beside"] = side
     return written | _reference_parameters(compared) | _allowance_parameters(compared, level)
 
 

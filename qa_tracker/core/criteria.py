@@ -8,7 +8,7 @@ how far a remedial and a suspension level let a reading go. How a reading is jud
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from itertools import pairwise
 from typing import Any, Literal, cast, get_args
@@ -36,7 +36,7 @@ class Limit:
     Parameters
     ----------
     absolute
-        In the measurand's unit; with basis none it is the limit itself and may be negative.
+        In the measurand's unit; with basis none and one direction it is the limit itself and may be negative.
     percent
         Of the magnitude of the nominal, baseline or other reading.
     governs
@@ -107,6 +107,11 @@ class Criterion:
         """List the levels there are, lower first."""
         pairs = zip(LEVELS, (self.remedial, self.suspension), strict=True)
         return tuple((level, limit) for level, limit in pairs if limit is not None)
+
+    def alone(self, level: Level) -> Criterion:
+        """Return it with this level only."""
+        kept = {name: limit for name, limit in self.levels() if name == level}
+        return replace(self, remedial=kept.get("remedial"), suspension=kept.get("suspension"))
 
     @property
     def of_own_spread(self) -> bool:
@@ -209,7 +214,9 @@ def _number(keys: dict[str, Any], key: str, field: str) -> Decimal | None:
         raise Invalid("criterion.not_decimal", field=path, value=text) from refusal
 
 
-def _limit(keys: dict[str, Any], level: Level, basis: Basis, field: str) -> Limit | None:
+def _limit(
+    keys: dict[str, Any], level: Level, basis: Basis, direction: Direction, field: str
+) -> Limit | None:
     if level not in keys:
         return None
     path = f"{field}.{level}"
@@ -218,6 +225,8 @@ def _limit(keys: dict[str, Any], level: Level, basis: Basis, field: str) -> Limi
         return _own_spread_limit(parts, level, basis, path)
     absolute, percent = _number(parts, "absolute", path), _number(parts, "percent", path)
     _check_parts(absolute, percent, basis, path)
+    if direction == "either" and absolute is not None and absolute < 0:
+        raise Invalid("criterion.negative_either_way", field=f"{path}.absolute", value=plain(absolute))
     governs = _word(parts, "governs", get_args(Governs), path) if "governs" in parts else "larger"
     both = absolute is not None and percent is not None
     return Limit(absolute, percent, cast(Governs, governs) if both else "larger")
@@ -257,7 +266,7 @@ def _check_parts(absolute: Decimal | None, percent: Decimal | None, basis: Basis
 def _levels(
     keys: dict[str, Any], basis: Basis, direction: Direction, field: str
 ) -> tuple[Limit | None, Limit | None]:
-    remedial, suspension = (_limit(keys, level, basis, field) for level in LEVELS)
+    remedial, suspension = (_limit(keys, level, basis, direction, field) for level in LEVELS)
     if remedial is None and suspension is None:
         raise Invalid("criterion.no_level", field=field)
     if remedial is not None and suspension is not None:

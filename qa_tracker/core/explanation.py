@@ -25,7 +25,7 @@ def explain(compared: Comparison, rule: Rule) -> Judgement:
     shown = level or first
     code, extra = _reason(compared, rank, rule, first)
     allowed = compared.allowance(shown)
-    probability = compared.probability(first)
+    probability = compared.probability(shown)
     if compared.uncertainty is not None:
         extra |= _uncertainty_parameters(compared, shown, probability)
     return Judgement(

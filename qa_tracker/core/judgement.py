@@ -43,9 +43,10 @@ class Judgement:
     governed_by
         Which part of the limit is the allowance.
     lower_name
-        The first level there is: ``used`` and ``probability`` refer to it.
+        The first level there is, which ``used`` refers to.
     probability
-        That the true value conforms, 0 to 1, unrounded, where the uncertainty is known.
+        That the true value is within the level whose allowance is given, 0 to 1, unrounded, where the uncertainty is
+        known: the level that decided; of a conforming reading the first.
     """
 
     verdict: Verdict

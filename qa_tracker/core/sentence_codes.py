@@ -16,10 +16,11 @@ level               the level whose allowance is given: the deciding one, or the
 allowance           its size; ``governed_by`` absolute or percent
 absolute, percent   the parts of the limit as published; ``percent_of`` and ``percent_value`` turn the percentage
                     into the unit; ``governs`` larger, smaller or either, where there are both
-used                share of the first level's allowance in percent, one decimal
+used                share of the first level's allowance in percent, one decimal; ``used_beside`` over or under,
+                    where it is rounded to 100 and is not
 banded_by, quantity the banding quantity, its value, and ``band_start`` and ``band_below`` (empty: open)
 rule, uncertainty   decision rule other than simple; expanded uncertainty U (k = 2)
-acceptance          allowance - U; ``probability`` of conformity, four decimals
+acceptance          allowance - U; ``probability`` of conformity with ``level``, four decimals
 setups, factor      of a limit of own spread: count, exact factor, ``spread`` (``spread_floored`` yes where the
                     resolution's took its place), ``coverage`` and ``confidence`` in percent
 no_guard            ``yes`` where a guard band is the rule and no uncertainty is stated

@@ -118,6 +118,10 @@ CRITERIA: Final = {
         "%(field)s can't be used: a ratio is judged in percent. Give a percentage."
     ),
     "criterion.negative": N_("%(field)s is %(value)s. A limit on a change or share has to be zero or more."),
+    "criterion.negative_either_way": N_(
+        "%(field)s is %(value)s. A limit that holds either way is compared with the size of the reading, so every "
+        "reading would be beyond it. Enter zero or more, or say which way is worse."
+    ),
     "criterion.own_spread_place": N_(
         "%(field)s is a limit of the device's own spread. It belongs to a baseline's remedial level only."
     ),

@@ -73,6 +73,7 @@ SHARES: Final = {
     ">": N_("It uses more than %(used)s of %(whose)s."),
     "<": N_("It uses less than %(used)s of %(whose)s."),
 }
+BESIDE_ALL: Final = {"over": N_("just over %(used)s"), "under": N_("just under %(used)s")}
 
 
 def verdict_sentence(code: str, parameters: Parameters, verdict: str, level: str = "") -> str:
@@ -201,7 +202,10 @@ def _share(given: Parameters) -> list[str]:
     if given["basis"] == "none" and given["direction"] == "below":
         qualifier = {">": "<", "<": ">"}.get(qualifier, qualifier)
     whose = _("the allowance") if _is_of_shown(given) else _("what the remedial level allows")
-    return [_(SHARES[qualifier]) % {"used": percent(used), "whose": whose}]
+    share = percent(used)
+    if qualifier == "=" and given.get("used_beside"):
+        share = _(BESIDE_ALL[given["used_beside"]]) % {"used": share}
+    return [_(SHARES[qualifier]) % {"used": share, "whose": whose}]
 
 
 def _is_of_shown(given: Parameters) -> bool:
@@ -222,7 +226,8 @@ def _likelihood(given: Parameters) -> str:
 def _probability(given: Parameters) -> list[str]:
     if "probability" not in given:
         return []
-    return [_("The probability of conformity is %(probability)s.") % {"probability": _likelihood(given)}]
+    told = {"probability": _likelihood(given), "level": level_word(given["level"])}
+    return [_("The probability of conformity with the %(level)s is %(probability)s.") % told]
 
 
 def _certainty(given: Parameters) -> list[str]:
@@ -233,10 +238,11 @@ def _certainty(given: Parameters) -> list[str]:
         "rule": _(DECIDED_BY[given.get("rule", "simple")]),
         "uncertainty": _size(given, "uncertainty"),
         "probability": _likelihood(given),
+        "level": level_word(given["level"]),
     }
     sentence = _(
         "Decided by %(rule)s; with the expanded uncertainty of %(uncertainty)s (k = 2) the probability of "
-        "conformity is %(probability)s."
+        "conformity with the %(level)s is %(probability)s."
     )
     return [sentence % told]
 

@@ -145,6 +145,22 @@ def test_judge_gives_the_probability_whenever_the_uncertainty_is_known(given, ar
     assert f"{judge(from_json(given), kind='number', **arguments).probability:.4f}" == expected
 
 
+@pytest.mark.parametrize(("strict", "expected"), [(True, 1.0), (False, 0.0)])
+def test_probability_at_the_limit_is_that_of_the_verdict_when_nothing_is_uncertain(strict, expected):
+    given = {"basis": "none", "direction": "above", "strict": strict, "remedial": {"absolute": "2"}}
+    found = judge(from_json(given), value="2", kind="number", uncertainty="0")
+    assert (found.verdict, found.probability) == (C_ if strict else R_, expected)
+
+
+def test_probability_is_of_the_suspension_level_when_that_decided():
+    tighter = {
+        "basis": "nominal", "direction": "either", "remedial": {"absolute": "3"}, "suspension": {"percent": "1"},
+    }  # fmt: skip
+    found = judge(from_json(tighter), value="102", kind="number", nominal="100", uncertainty="1")
+    assert (found.verdict, found.level) == ("suspension", "suspension")
+    assert found.probability == pytest.approx(0.02275, abs=1e-5)
+
+
 def test_probability_is_left_out_when_unknown_or_qualified():
     assert judge(from_json(TWO), value="1", kind="number").probability is None
     assert judge(from_json(TWO), value="1", kind="number", qualifier=">", uncertainty="1").probability is None

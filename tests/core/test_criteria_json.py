@@ -93,6 +93,11 @@ REFUSALS = {
     "nan": (_base(remedial={"absolute": "NaN"}), "criterion.not_decimal", "criterion.remedial.absolute"),
     "limit_no_object": (_base(remedial="6"), "criterion.not_object", "criterion.remedial"),
     "negative": (_base(remedial={"absolute": "-6"}), "criterion.negative", "criterion.remedial.absolute"),
+    "negative_either_way": (
+        {"basis": "none", "direction": "either", "remedial": {"absolute": "-2"}},
+        "criterion.negative_either_way",
+        "criterion.remedial.absolute",
+    ),
     "negative_share": (_base(remedial={"percent": "-6"}), "criterion.negative", "criterion.remedial.percent"),
     "empty_limit": (_base(remedial={"governs": "larger"}), "criterion.empty_limit", "criterion.remedial"),
     "neither_level": (_base(remedial=None), "criterion.no_level", "criterion"),

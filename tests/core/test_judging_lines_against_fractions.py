@@ -118,15 +118,24 @@ def expected(given: dict) -> dict[str, str]:
     levels, reference, value = levels_of(given), reference_of(given), Fraction(given["value"])
     if not levels:
         return {"verdict": "not_assessable"}
-    found = max((found_at(given, level, reference) for level in levels), key=ORDER.index)
-    deciding = next((level for level in levels if level["name"] == found[1]), levels[0])
+    found = worst_of(given)
     departure, share = departure_of(given), used(given, allowed(levels[0], reference), value)
     told = {
         "verdict": found[0],
         "departure": text(departure),
-        "allowance": text(allowed(deciding, reference)),
+        "allowance": text(allowed(deciding(given), reference)),
     }
     return told | ({} if share is None else {"used": share})
+
+
+def worst_of(given: dict) -> tuple[str, str]:
+    return max((found_at(given, level, reference_of(given)) for level in levels_of(given)), key=ORDER.index)
+
+
+def deciding(given: dict) -> dict:
+    """The level that decided, or the first."""
+    levels = levels_of(given)
+    return next((level for level in levels if level["name"] == worst_of(given)[1]), levels[0])
 
 
 def is_lower(given: dict) -> bool:
@@ -164,9 +173,9 @@ def used(given: dict, allowance: Fraction, value: Fraction) -> str | None:
 
 
 def probability(given: dict) -> float:
-    """Of the first level's conformity: normal, with half the expanded uncertainty."""
+    """Of conformity with the level that decided, else the first: normal, with half the expanded uncertainty."""
     known = NormalDist(0, float(Fraction(given["uncertainty"]) / 2))
-    size, value = allowed(levels_of(given)[0], reference_of(given)), Fraction(given["value"])
+    size, value = allowed(deciding(given), reference_of(given)), Fraction(given["value"])
     if is_lower(given):
         return known.cdf(float(value - size))
     departure = departure_of(given)

@@ -136,7 +136,7 @@ TABLE = [
         {"value": "147", "baseline": "152.0", "rule": "guarded", "uncertainty": "2"},
         "147 mm is 5.0 mm less than the baseline of 152.0 mm; the remedial level allows a loss of 6 mm, and with "
         "the expanded uncertainty of 2 mm (k = 2) kept free the limit of acceptance is 4 mm: remedial. It uses "
-        "83.3 % of the allowance. The probability of conformity is 0.8413.",
+        "83.3 % of the allowance. The probability of conformity with the remedial level is 0.8413.",
     ),
     (
         "a guard band wider than the allowance", Say.GUARD_BAND, DISTANCE,
@@ -144,7 +144,7 @@ TABLE = [
         "100.0 mm is the same as the nominal value of 100.0 mm; the remedial level allows a deviation of 1.5 mm "
         "(the larger of 1.5 mm and 1.5 % of 100.0 mm, which is 1.5 mm), but the expanded uncertainty of 2 mm "
         "(k = 2) is larger than that, so this is not measured well enough to be accepted: remedial. The probability "
-        "of conformity is 0.8664.",
+        "of conformity with the remedial level is 0.8664.",
     ),
     (
         "in doubt at the upper level", Say.STRADDLES, LOSS,
@@ -158,7 +158,7 @@ TABLE = [
         {"value": "147", "baseline": "152.0", "rule": "zones", "uncertainty": "2"},
         "147 mm is 5.0 mm less than the baseline of 152.0 mm; the remedial level allows a loss of 6 mm, which is "
         "nearer than the expanded uncertainty of 2 mm (k = 2): indeterminate at the remedial level. It uses "
-        "83.3 % of the allowance. The probability of conformity is 0.8413.",
+        "83.3 % of the allowance. The probability of conformity with the remedial level is 0.8413.",
     ),
     (
         "an uncertainty that is missing", Say.NO_UNCERTAINTY, LOSS,
@@ -365,5 +365,21 @@ def test_probability_is_never_said_to_be_certain(value, words):
     found = judge(limit, value=value, kind="number", uncertainty="10")
     told = verdict_sentence(found.code, found.parameters, found.verdict, found.level or "")
     assert told.endswith(
-        f"with the expanded uncertainty of 10 (k = 2) the probability of conformity is {words}."
+        f"with the expanded uncertainty of 10 (k = 2) the probability of conformity with the suspension level is {words}."
     )
+
+
+@pytest.mark.parametrize(
+    ("value", "share"), [("4.001", "just over 100 %"), ("4.000", "100 %"), ("3.999", "just under 100 %")]
+)
+def test_share_says_which_side_of_the_limit_it_is_when_it_rounds_to_all_of_it(value, share):
+    limit = from_json({"basis": "none", "direction": "above", "remedial": {"absolute": "4"}})
+    found = judge(limit, value=value, kind="number")
+    said = verdict_sentence(found.code, found.parameters, found.verdict, found.level or "")
+    assert f"It uses {share} of the allowance." in said.replace("\N{NO-BREAK SPACE}", " ")
+
+
+def test_probability_names_the_suspension_level_when_that_decided():
+    found = judge(LOSS, value="139", kind="number", baseline="152", uncertainty="2")
+    said = verdict_sentence(found.code, found.parameters, found.verdict, found.level or "")
+    assert "the probability of conformity with the suspension level is 0.0013." in said

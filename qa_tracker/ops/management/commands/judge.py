@@ -48,8 +48,9 @@ Infinity as text are not assessable. Empty lines are skipped.
 Each answer is one line of JSON, in the order of the lines: verdict (conforming,
 remedial, suspension, indeterminate or not_assessable); departure and allowance
 of the level that decides, as exact decimals; used, the share of the first
-level's allowance in percent; probability of conformity, where an uncertainty
-was given; and always a sentence. What was not compared is left out. A line that
+level's allowance in percent; probability of conformity with the level that
+decides (the first level of a conforming reading), where an uncertainty was
+given; and always a sentence. What was not compared is left out. A line that
 can't be read is answered by {"error": "what, why and what to do"}, and the
 others go on.
 
