@@ -50,3 +50,60 @@ def test_share_outside_its_range_is_refused_under_its_own_key(key, share):
         "criterion.own_spread_share",
         f"criterion.remedial.{key}",
     )
+
+
+def test_shares_of_an_own_spread_limit_are_kept_apart():
+    limit = from_json(ON_BASELINE | {"remedial": {"coverage": "90", "confidence": "99"}}).remedial
+    assert limit == Limit(coverage=D(90), confidence=D(99))
+
+
+TOLD = {
+    "unknown key": (
+        {"basis": "none", "direction": "above", "beyond": "1"},
+        {
+            "key": "beyond",
+            "known": "banded_by, bands, basis, direction, grades, remedial, strict, suspension",
+        },
+    ),
+    "unknown word": (
+        {"basis": "none", "direction": "sideways"},
+        {"word": "sideways", "known": "either, below, above"},
+    ),
+    "strict as text": (
+        {"basis": "none", "direction": "above", "strict": "no"},
+        {"word": "no", "known": "true, false"},
+    ),
+    "spread beside others": (
+        ON_BASELINE | {"remedial": SPREAD | {"percent": "2", "absolute": "1"}},
+        {"keys": "absolute, percent"},
+    ),
+    "grades beside limits": (
+        {"grades": {"red": "suspension"}, "strict": True, "basis": "none"},
+        {"keys": "basis, strict"},
+    ),
+    "overlapping bands": (
+        {
+            "basis": "none",
+            "direction": "above",
+            "banded_by": "test_frequency_mhz",
+            "bands": [
+                {"from": "5", "remedial": {"absolute": "3"}},
+                {"from": "1", "below": "6", "remedial": {"absolute": "7"}},
+            ],
+        },
+        {"start": "1", "below": "6", "other_start": "5", "other_below": ""},
+    ),
+}
+
+
+@pytest.mark.parametrize(("given", "told"), TOLD.values(), ids=TOLD)
+def test_refusal_tells_what_was_met_and_what_is_known(given, told):
+    with pytest.raises(Invalid) as refused:
+        from_json(given)
+    assert refused.value.parameters == told
+
+
+def test_band_open_below_comes_before_one_that_starts_below_zero():
+    bands = [{"from": "-3", "remedial": {"absolute": "1"}}, {"below": "-3", "remedial": {"absolute": "2"}}]
+    given = {"basis": "none", "direction": "above", "banded_by": "offset", "bands": bands}
+    assert [band.start for band in from_json(given).bands] == [None, D(-3)]
