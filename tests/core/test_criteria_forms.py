@@ -67,7 +67,7 @@ TOLD = {
     ),
     "unknown word": (
         {"basis": "none", "direction": "sideways"},
-        {"word": "sideways", "known": "either, below, above"},
+        {"word": "sideways", "known": "either, above, below"},
     ),
     "strict as text": (
         {"basis": "none", "direction": "above", "strict": "no"},
