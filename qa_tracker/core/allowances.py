@@ -6,11 +6,11 @@ same in whole numbers, and a property test holds the two together.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from typing import Literal
 
-from qa_tracker.core.criteria import Limit
+from qa_tracker.core.criteria import Criterion, Limit
 from qa_tracker.core.decimals import from_scaled, places_of, scaled_at
 
 GovernedBy = Literal["absolute", "percent"]
@@ -33,6 +33,30 @@ class Allowance:
     size: Decimal
     governed_by: GovernedBy
     percent_value: Decimal | None
+
+
+def needs_a_size(criterion: Criterion) -> bool:
+    """Tell whether a reference of zero leaves a level without meaning: its percentage alone may decide."""
+    return any(
+        limit.percent is not None and (limit.absolute is None or limit.governs != "larger")
+        for _, limit in criterion.levels()
+    )
+
+
+def without_shares(criterion: Criterion) -> Criterion:
+    """Return what is left of a criterion where no share can be taken: the absolute part of each level that has one.
+
+    Beyond the absolute part is beyond the limit where the larger governs a reference of zero, and wherever the smaller
+    does. Within it is within the limit only in the first case.
+
+    Examples
+    --------
+    >>> left = without_shares(Criterion("baseline", remedial=Limit(percent=Decimal(5)), suspension=Limit(Decimal(9))))
+    >>> left.remedial, left.suspension.absolute
+    (None, Decimal('9'))
+    """
+    kept = {level: Limit(limit.absolute) for level, limit in criterion.levels() if limit.absolute is not None}
+    return replace(criterion, remedial=kept.get("remedial"), suspension=kept.get("suspension"))
 
 
 def share_of(percent: Decimal, reference: Decimal) -> Decimal:

@@ -9,6 +9,7 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 from decimal import Decimal
 
+from qa_tracker.core.allowances import needs_a_size, without_shares
 from qa_tracker.core.comparison import Comparison
 from qa_tracker.core.criteria import Criterion
 from qa_tracker.core.decimals import parse, plain
@@ -17,7 +18,7 @@ from qa_tracker.core.explanation import explain
 from qa_tracker.core.judgement import VERDICT_OF_CODE, Judgement, Verdict, not_assessable, severity, worst
 from qa_tracker.core.own_spread import OwnSpread, at_spread, lacking_setups
 from qa_tracker.core.sentence_codes import SentenceCode as Say
-from qa_tracker.core.verdict_kernel import RULES, Rule, needs_a_size
+from qa_tracker.core.verdict_kernel import NOT_ASSESSABLE, RULES, Rule
 
 __all__ = ["Judgement", "Verdict", "judge", "severity", "worst"]
 
@@ -193,8 +194,21 @@ def _judge_number(criterion: Criterion, question: _Question) -> Judgement:
             return not_assessable(Say.TOO_FEW_SETUPS, **(lacking or {}))
         settled, shown = at_spread(flat, question.spread)
         compared = replace(compared, criterion=settled)
-    judgement = explain(compared, question.rule)
+    judgement = _explained(compared, question)
     return replace(judgement, parameters=judgement.parameters | shown | _context(criterion, question))
+
+
+def _explained(compared: Comparison, question: _Question) -> Judgement:
+    """Compare; where no share of the reference can be taken, by the absolute parts, which clear nothing."""
+    reference = compared.reference
+    if reference is None or not _has_no_size(compared.criterion, reference):
+        return explain(compared, question.rule)
+    left = without_shares(compared.criterion)
+    judgement = explain(replace(compared, criterion=left), question.rule) if left.levels() else None
+    if judgement is None or severity(judgement) <= NOT_ASSESSABLE:
+        told = {"basis": left.basis, "reference": plain(reference)}
+        return not_assessable(Say.ZERO_REFERENCE, **told)
+    return replace(judgement, parameters=judgement.parameters | {"no_share": "yes"})
 
 
 def _at_band(criterion: Criterion, question: _Question) -> Criterion | Judgement:
@@ -243,10 +257,6 @@ def _comparison(criterion: Criterion, question: _Question) -> Comparison | Judge
             return not_assessable(Say.NOT_FINITE, what=name)
     if question.uncertainty is not None and question.uncertainty < 0:
         raise Invalid("uncertainty.negative", field="uncertainty", uncertainty=plain(question.uncertainty))
-    if reference is not None and _has_no_size(criterion, reference):
-        return not_assessable(
-            Say.ZERO_REFERENCE, basis=basis, reference=plain(reference), unit=question.unit or ""
-        )
     value = question.value if question.value is not None else Decimal(0)
     return Comparison(criterion, value, question.qualifier, reference, qualifier, question.uncertainty)
 

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from dataclasses import replace
 from decimal import Decimal
 
-from qa_tracker.core.allowances import allowance
+from qa_tracker.core.allowances import allowance, without_shares
 from qa_tracker.core.criteria import GRADE_VERDICTS, Criterion, Limit
 from qa_tracker.core.figures import Judged
 
@@ -46,6 +46,8 @@ direction='below', strict=True, qualifier='=', ranks=False)
         if "allowance" not in parameters:
             return None
         flat = replace(flat, remedial=Limit(absolute=Decimal(parameters["allowance"])))
+    if parameters.get("no_share"):
+        flat = without_shares(flat)
     reference = Decimal(parameters["reference"]) if "reference" in parameters else None
     if flat.basis != "none" and reference is None:
         return None

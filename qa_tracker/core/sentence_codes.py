@@ -23,6 +23,7 @@ rule, uncertainty   decision rule other than simple; expanded uncertainty U (k =
 acceptance          allowance - U; ``probability`` of conformity with ``level``, four decimals
 setups, factor      of a limit of own spread: count, exact factor, ``spread`` (``spread_floored`` yes where the
                     resolution's took its place), ``coverage`` and ``confidence`` in percent
+no_share            ``yes`` where the reference is zero, so that only what is absolute was compared
 no_guard            ``yes`` where a guard band is the rule and no uncertainty is stated
 arithmetic          of a derived quantity: its formula with the numbers put in
 =================== ====================================================================================

@@ -27,6 +27,7 @@ from typing import Any, Literal, NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
+from qa_tracker.core.allowances import needs_a_size, without_shares
 from qa_tracker.core.criteria import Criterion, Level, Limit
 from qa_tracker.core.decimals import places_of
 from qa_tracker.core.errors import Invalid
@@ -147,8 +148,7 @@ def verdict_codes(criterion: Criterion, columns: Columns, rule: Rule = "simple")
     if rule != "simple":
         known = columns.uncertainties
         codes[(codes < NOT_ASSESSABLE) & (True if known is None else _where(known < 0))] = NOT_ASSESSABLE
-    if (unusable := _unusable(criterion, columns)) is not None:
-        codes[unusable] = NOT_ASSESSABLE
+    _settle(criterion, columns, rule, codes)
     return codes
 
 
@@ -166,8 +166,7 @@ def _plainly(criterion: Criterion, columns: Columns) -> NDArray[np.uint8]:
         part = slice(first, first + CHUNK)
         values, references = columns.values[part], columns.references[part]
         plain_codes(criterion, columns.places, values, references, room, codes[part])
-    if (unusable := _unusable(criterion, columns)) is not None:
-        codes[unusable] = NOT_ASSESSABLE
+    _settle(criterion, columns, "simple", codes)
     return codes
 
 
@@ -264,22 +263,24 @@ def _allowances(criterion: Criterion, limit: Limit, columns: Columns) -> tuple[W
     return np.where(governs, fixed, floor), governs | whole
 
 
-def _unusable(criterion: Criterion, columns: Columns) -> NDArray[np.bool_] | None:
-    """Return the rows that can't be judged: marked so, or a percentage of a reference that has none."""
-    missing = None if columns.assessable is None else ~columns.assessable
-    if not needs_a_size(criterion):
-        return missing
-    sizes = columns.references
-    without = _where(sizes <= 0 if criterion.basis == "ratio" else sizes == 0)
-    return without if missing is None else missing | without
+def _settle(criterion: Criterion, columns: Columns, rule: Rule, codes: NDArray[np.uint8]) -> None:
+    """Put right the rows that lack something: marked so, or a percentage of a reference that has no size."""
+    if needs_a_size(criterion):
+        sizes = columns.references
+        sizeless = _where(sizes <= 0 if criterion.basis == "ratio" else sizes == 0)
+        if sizeless.any():
+            rows = np.flatnonzero(sizeless)
+            codes[rows] = _codes_without_shares(criterion, columns.rows(rows), rule)
+    if columns.assessable is not None:
+        codes[~columns.assessable] = NOT_ASSESSABLE
 
 
-def needs_a_size(criterion: Criterion) -> bool:
-    """Tell whether a reference of zero leaves a level without meaning: its percentage alone may decide."""
-    return any(
-        limit.percent is not None and (limit.absolute is None or limit.governs != "larger")
-        for _, limit in criterion.levels()
-    )
+def _codes_without_shares(criterion: Criterion, columns: Columns, rule: Rule) -> NDArray[np.uint8]:
+    """Judge by the absolute parts alone, which prove that a level is passed and clear nothing."""
+    left = without_shares(criterion)
+    if not left.levels():
+        return np.full(len(columns.values), NOT_ASSESSABLE, np.uint8)
+    return np.maximum(verdict_codes(left, columns, rule), np.uint8(NOT_ASSESSABLE))
 
 
 def finest_places(criterion: Criterion, *numbers: Decimal | None) -> int:

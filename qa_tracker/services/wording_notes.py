@@ -28,7 +28,7 @@ MISMATCHES: Final = {
 
 def notes(given: Mapping[str, str]) -> list[str]:
     """Every addition that a verdict's parameters call for, in the order they are read."""
-    return [*_arithmetic(given), *_own_spread(given), *_guard(given), *_mismatches(given)]
+    return [*_arithmetic(given), *_own_spread(given), *_no_share(given), *_guard(given), *_mismatches(given)]
 
 
 def _arithmetic(given: Mapping[str, str]) -> list[str]:
@@ -57,6 +57,16 @@ def _own_spread(given: Mapping[str, str]) -> list[str]:
     return [
         sentence % told,
         _("The set-ups scatter less than the resolution; the resolution's share counts."),
+    ]
+
+
+def _no_share(given: Mapping[str, str]) -> list[str]:
+    if given.get("no_share") != "yes":
+        return []
+    of = amount(given["reference"], given.get("unit", ""))
+    return [
+        _("No share can be taken of %(reference)s, so only what stands in absolute numbers was compared.")
+        % {"reference": of}
     ]
 
 

@@ -30,7 +30,7 @@ def interval(criterion, change, qualifier):
 def allowed(criterion, limit, reference):
     """How far a level lets the departure from this reference go."""
     parts = [] if limit.absolute is None else [Fraction(limit.absolute)]
-    if limit.percent is not None:
+    if limit.percent is not None and has_size(criterion, reference):
         parts.append(Fraction(limit.percent) * abs(Fraction(reference)) / 100)
     size = max(parts) if limit.governs == "larger" else min(parts)
     return -size if criterion.direction == "below" and criterion.basis in ("none", "ratio") else size
@@ -40,6 +40,8 @@ def bounds(criterion, reference, uncertainty, rule):
     """Each level with the bounds under which nothing, and beyond which all, of a departure is beyond it."""
     moved = [move * Fraction(uncertainty) for move in MOVES[rule]]
     for level, limit in criterion.levels():
+        if limit.absolute is None and not has_size(criterion, reference):
+            continue
         at = allowed(criterion, limit, reference)
         yield level, at + moved[0], at + moved[1]
 
@@ -55,10 +57,15 @@ def worst(criterion, departure, within):
     return max(found, key=RANK.__getitem__)
 
 
+def has_size(criterion, reference):
+    """Whether a share of this reference means something."""
+    return reference > 0 if criterion.basis == "ratio" else reference != 0
+
+
 def without_size(criterion, reference):
-    """Whether a share of this reference means nothing: it is all that a level has, or may decide it alone."""
+    """Whether a share of this reference means nothing and yet may decide a level, which is then never cleared."""
     alone = any(
         limit.percent is not None and (limit.absolute is None or limit.governs != "larger")
         for _, limit in criterion.levels()
     )
-    return alone and (reference <= 0 if criterion.basis == "ratio" else reference == 0)
+    return alone and not has_size(criterion, reference)

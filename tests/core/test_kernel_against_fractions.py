@@ -88,7 +88,7 @@ def at_the_limits(of, places, setting, rule, signs):
                 reference,
                 sign,
                 uncertainty,
-                2 if definition.without_size(of, reference) else rank,
+                max(rank, 2) if definition.without_size(of, reference) else rank,
             )
 
 
@@ -112,16 +112,18 @@ def by_witnesses(of, places, rows, rule):
     points = [end, np.where(signs != 0, signs * far, end), np.where(signs * change < 0, 0, end)]
     turned = {"either": np.abs, "above": np.positive, "below": np.negative}[of.direction]
     codes = np.zeros(len(values), np.int64)
+    sizeless = np.array(references <= 0 if of.basis == "ratio" else references == 0, np.bool_)
     for level, part in limits.items():
         allowed = allowances(of, part, shares[level], references, places, half)
         for number, (codes_of, every) in enumerate(((UNCERTAIN, np.any), (PROVEN, np.all))):
             bound = allowed + half * definition.MOVES[rule][number] * np.maximum(uncertainties, 0)
             beyond = [turned(point) > bound if of.strict else turned(point) >= bound for point in points]
-            codes[every(np.array(beyond, np.bool_), axis=0)] = codes_of[level]
+            told = every(np.array(beyond, np.bool_), axis=0)
+            codes[told & ~sizeless if part.absolute is None else told] = codes_of[level]
     if rule != "simple":
         codes[(codes < 2) & np.array(uncertainties < 0, np.bool_)] = 2
     if definition.without_size(of, 0):
-        codes[np.array(references <= 0 if of.basis == "ratio" else references == 0, np.bool_)] = 2
+        codes[sizeless & (codes < 2)] = 2
     return codes
 
 
@@ -133,6 +135,7 @@ def allowances(of, part, share, references, places, half):
         found = by_share if part.absolute is None else absolute
     else:
         found = (np.maximum if part.governs == "larger" else np.minimum)(absolute, by_share)
+        found = np.where(references == 0, absolute, found)
     return -found if of.direction == "below" and of.basis in ("none", "ratio") else found
 
 

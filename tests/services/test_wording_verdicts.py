@@ -383,3 +383,18 @@ def test_probability_names_the_suspension_level_when_that_decided():
     found = judge(LOSS, value="139", kind="number", baseline="152", uncertainty="2")
     said = verdict_sentence(found.code, found.parameters, found.verdict, found.level or "")
     assert "the probability of conformity with the suspension level is 0.0013." in said
+
+
+def test_verdict_says_what_was_left_out_when_no_share_can_be_taken():
+    limit = from_json(
+        {
+            "basis": "baseline",
+            "direction": "above",
+            "remedial": {"percent": "5"},
+            "suspension": {"absolute": "9"},
+        }
+    )
+    found = judge(limit, value="10", kind="number", baseline="0", unit="mm")
+    said = verdict_sentence(found.code, found.parameters, found.verdict, found.level or "")
+    assert found.verdict == "suspension"
+    assert "No share can be taken of 0 mm, so only" in said.replace("\N{NO-BREAK SPACE}", " ")
