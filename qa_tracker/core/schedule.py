@@ -1,4 +1,4 @@
-"""When a check falls due: its day, its window and grace, its standing on a date and its notice levels.
+"""When a check falls due: its day, its window and grace, and its standing on a date. Who is told when is in ``ladder``.
 
 Days are local to the site, instants are in UTC. The recurrence of days is in ``schedule_rule`` and
 ``schedule_occurrences``, working days and clock changes in ``schedule_days``; their public names are here too.
@@ -37,18 +37,15 @@ __all__ = [
     "Window",
     "add_months",
     "due_for",
-    "highest_level_passed",
     "in_words",
     "local_day",
     "local_day_bounds",
     "missed_at",
     "next_due",
-    "next_level",
     "next_on",
     "occurrences",
     "parse_rule",
     "roll",
-    "skipped_levels",
     "standing",
     "starts_at",
     "zone_of",
@@ -208,34 +205,10 @@ def standing(due: Due, at: datetime, state: str) -> str | None:
     """
     if state not in CHECK_AWAITED:
         return None
-    passed = highest_level_passed(due, at)
-    if passed is None:
-        return "not_yet_open"
-    return "open" if passed == "upcoming" else passed
-
-
-def highest_level_passed(due: Due, at: datetime) -> str | None:
-    """Highest notice level reached at an instant; ``None`` before the window opens."""
     passed = [level for level in LEVELS if due.level_at(level) <= at]
-    return passed[-1] if passed else None
-
-
-def next_level(due: Due, after_level: str | None) -> tuple[str, datetime] | None:
-    """Notice level that follows one, with its instant; ``None`` after the highest.
-
-    ``None`` as the level so far gives the first.
-    """
-    following = LEVELS[_rank(after_level) + 1 :]
-    return (following[0], due.level_at(following[0])) if following else None
-
-
-def skipped_levels(due: Due, after_level: str | None, at: datetime) -> tuple[str, ...]:
-    """Levels passed over since one, when only the highest reached at an instant is sent."""
-    return LEVELS[_rank(after_level) + 1 : max(_rank(highest_level_passed(due, at)), 0)]
-
-
-def _rank(level: str | None) -> int:
-    return -1 if level is None else LEVELS.index(level)
+    if not passed:
+        return "not_yet_open"
+    return "open" if passed[-1] == "upcoming" else passed[-1]
 
 
 def in_words(rule: Rule, basis: str) -> tuple[str, dict[str, object]]:

@@ -29,7 +29,7 @@ from qa_tracker.records.models.ledger import Checkpoint, Leaf, LedgerHead
 from qa_tracker.records.models.people import Person
 from qa_tracker.records.models.versions import Version
 from qa_tracker.records.rows import columns_of, digest_of, moment_text, newest_form
-from qa_tracker.records.writers import HistoryWriter, LiveWriter, Writer, insert_rows, new_row
+from qa_tracker.records.writers import BatchWriter, HistoryWriter, LiveWriter, Writer, insert_rows, new_row
 
 Row = TypeVar("Row", bound=Audited)
 SCHEMA = 1
@@ -137,12 +137,14 @@ def command(
 def sweeping(kind: str, *, at: dt.datetime, as_if: dt.datetime | None) -> Iterator[Act]:
     """A command of the program itself that first takes the ledger's lock, so that two never do the same work.
 
-    No leaf is written where the command wrote no row.
+    Its rows are gathered and written together at the end. No leaf is written where there are none.
     """
     with transaction.atomic():
         _locked_head()
-        act = Act(kind, None, at, LiveWriter(), as_if=as_if)
+        writer = BatchWriter()
+        act = Act(kind, None, at, writer, as_if=as_if)
         yield act
+        writer.flush()
         if act.facts:
             append([act])
 

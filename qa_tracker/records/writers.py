@@ -1,6 +1,6 @@
-"""Two ways to put rows into the tables: one at a time as commands do, or gathered and written together.
+"""Ways to put rows into the tables: one at a time as commands do, or gathered and written together.
 
-Both hand out keys at once, so the code that builds rows is the same for a live check and for ten years
+All hand out keys at once, so the code that builds rows is the same for a live check and for ten years
 of history.
 """
 
@@ -58,13 +58,15 @@ class HistoryWriter:
         self._next: dict[type[models.Model], int] = {}
 
     def insert(self, row: models.Model) -> None:
-        model = type(row)
+        row.pk = self._key(type(row))
+        self.new.setdefault(type(row), {})[row.pk] = row
+
+    def _key(self, model: type[models.Model]) -> int:
         if model not in self._next:
             highest = model._base_manager.aggregate(top=models.Max("pk"))["top"]
             self._next[model] = (highest or 0) + 1
-        row.pk = self._next[model]
         self._next[model] += 1
-        self.new.setdefault(model, {})[row.pk] = row
+        return self._next[model] - 1
 
     def update(self, noun: Noun, columns: dict[str, object]) -> None:
         for name, value in columns.items():
@@ -87,18 +89,112 @@ class HistoryWriter:
         self.new, self.changed = {}, {}
 
 
-def insert_rows(model: type[models.Model], rows: Sequence[models.Model]) -> None:
-    """Insert rows that already have their keys, by one prepared statement."""
+class BatchWriter(HistoryWriter):
+    """Gathers rows while others write: on PostgreSQL keys are taken from the table's own sequence, in blocks.
+
+    On SQLite the IMMEDIATE transaction keeps everybody else out, and keys are counted up from the highest. Nouns
+    are changed by compare and set, as in :class:`LiveWriter`.
+    """
+
+    FIRST_BLOCK, LARGEST_BLOCK = 4, 1024
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._blocks: dict[type[models.Model], list[int]] = {}
+        self._size: dict[type[models.Model], int] = {}
+        self._columns: dict[type[models.Model], dict[int, set[str]]] = {}
+
+    def _key(self, model: type[models.Model]) -> int:
+        if connection.vendor != "postgresql":
+            return super()._key(model)
+        block = self._blocks.setdefault(model, [])
+        if not block:
+            size = self._size[model] = min(2 * self._size.get(model, self.FIRST_BLOCK), self.LARGEST_BLOCK)
+            block += reversed(_from_sequence(model, size))
+        return block.pop()
+
+    def update(self, noun: Noun, columns: dict[str, object]) -> None:
+        super().update(noun, columns)
+        names = {noun._meta.get_field(name).attname for name in columns}
+        self._columns.setdefault(type(noun), {}).setdefault(noun.pk, set()).update(names)
+
+    def flush(self) -> None:
+        """Write all that was gathered: one statement a table and set of changed columns."""
+        for model, nouns in self.changed.items():
+            alike: dict[frozenset[str], list[Noun]] = {}
+            for key, noun in nouns.items():
+                alike.setdefault(frozenset(self._columns[model][key]), []).append(noun)
+            for names, rows in alike.items():
+                _change_rows(model, sorted(names), rows)
+        for model in sorted(self.new, key=_depth):
+            insert_rows(model, list(self.new[model].values()), by_sequence=True)
+        self.new, self.changed, self._columns = {}, {}, {}
+
+
+def _from_sequence(model: type[models.Model], count: int) -> list[int]:
+    """So many keys that nobody else gets."""
+    with connection.cursor() as cursor:
+        cursor.execute(
+            "SELECT nextval(pg_get_serial_sequence(%s, %s)) FROM generate_series(1, %s)",
+            [model._meta.db_table, model._meta.pk.column, count],
+        )
+        return sorted(key for (key,) in cursor.fetchall())
+
+
+def _change_rows(model: type[models.Model], names: Sequence[str], nouns: Sequence[Noun]) -> None:
+    """Change the named columns of nouns by one prepared statement; each has to have the version before."""
+    fields = {field.attname: field for field in model._meta.concrete_fields}
+    sets = [fields[name] for name in (*names, "version", "leaf_id")]
+    quote = connections[DEFAULT_DB_ALIAS].ops.quote_name
+    marks = ", ".join(f"{quote(field.column)} = %s" for field in sets)
+    sql = f"UPDATE {quote(model._meta.db_table)} SET {marks} WHERE id = %s AND version = %s"
+    keys = ([noun.pk for noun in nouns], [noun.version - 1 for noun in nouns])
+    with connection.cursor() as cursor:
+        cursor.executemany(sql, list(zip(*(_stored(field, nouns) for field in sets), *keys, strict=True)))
+        if cursor.rowcount != len(nouns):
+            raise Conflict("record.changed_meanwhile")
+
+
+def put_rows(model: type[models.Model], rows: Sequence[models.Model]) -> None:
+    """Insert rows of an unaudited table, or change those that are there with the same key, by one statement."""
     if not rows:
         return
+    quote = connections[DEFAULT_DB_ALIAS].ops.quote_name
+    key = model._meta.pk.column
+    others = [field.column for field in model._meta.concrete_fields if field.column != key]
+    sets = ", ".join(f"{quote(column)} = excluded.{quote(column)}" for column in others)
+    with connection.cursor() as cursor:
+        cursor.executemany(
+            f"{_insert(model)} ON CONFLICT ({quote(key)}) DO UPDATE SET {sets}", _cells(model, rows)
+        )
+
+
+def _insert(model: type[models.Model]) -> str:
     fields = model._meta.concrete_fields
     quote = connections[DEFAULT_DB_ALIAS].ops.quote_name
     names = ", ".join(quote(field.column) for field in fields)
     marks = ", ".join(["%s"] * len(fields))
-    sql = f"INSERT INTO {quote(model._meta.db_table)} ({names}) VALUES ({marks})"
-    cells = zip(*(_stored(field, rows) for field in fields), strict=True)
+    return f"INSERT INTO {quote(model._meta.db_table)} ({names}) VALUES ({marks})"
+
+
+def _cells(model: type[models.Model], rows: Sequence[models.Model]) -> list[tuple[Any, ...]]:
+    return list(zip(*(_stored(field, rows) for field in model._meta.concrete_fields), strict=True))
+
+
+def insert_rows(
+    model: type[models.Model], rows: Sequence[models.Model], *, by_sequence: bool = False
+) -> None:
+    """Insert rows that already have their keys, by one prepared statement.
+
+    ``by_sequence``: the keys came from the table's sequence, which is then left as it is: setting it to the highest
+    key in sight would give out again what others took and have not committed.
+    """
+    if not rows:
+        return
     with connection.cursor() as cursor:
-        cursor.executemany(sql, list(cells))
+        cursor.executemany(_insert(model), _cells(model, rows))
+        if by_sequence:
+            return
         for statement in connection.ops.sequence_reset_sql(no_style(), [model]):
             cursor.execute(statement)
 

@@ -3,55 +3,53 @@
 from __future__ import annotations
 
 import datetime as dt
-from collections.abc import Sequence
+import uuid
 
+from qa_tracker.core.ladder import Owed
 from qa_tracker.records import ledger
 from qa_tracker.records.ids import uuid7
 from qa_tracker.records.models import Check, Notice, NoticeMail, NoticeSeen, Person
 from qa_tracker.records.queries.people import holders
+from qa_tracker.records.writers import new_row
 
-CHANNELS = {
-    "upcoming": ("in_app",),
-    "due": ("in_app", "mail"),
-    "late": ("in_app", "mail"),
-    "overdue": ("in_app", "mail"),
-    "suspension": ("in_app", "mail"),
-}
+IN_APP_ALONE = ("in_app",)
+BY_MAIL_TOO = ("in_app", "mail")
 
 
-def owe(act: ledger.Act, check: Check, person_id: int, level: str, skipped: Sequence[str] = ()) -> list[str]:
-    """Insert the notices of one level to one person that aren't there yet, and return their keys."""
+def channels_of(level: str) -> tuple[str, ...]:
+    """Where a level is told: that a window opened is worth no mail, everything after it is."""
+    return IN_APP_ALONE if level == "upcoming" else BY_MAIL_TOO
+
+
+def owe(act: ledger.Act, check_id: int, check_uid: uuid.UUID, owed: Owed) -> list[str]:
+    """Insert the notices of one level to one person, one for each channel, and return their keys."""
     keys = []
-    known = set(
-        Notice.objects.filter(check_of=check, level=level, person_id=person_id).values_list(
-            "channel", flat=True
-        )
-    )
-    for channel in CHANNELS[level]:
-        if channel in known:
-            continue
+    for channel in channels_of(owed.level):
         notice = act.insert(
-            Notice(
+            new_row(
+                Notice,
                 uid=uuid7(),
-                check_of=check,
-                person_id=person_id,
-                level=level,
+                check_of_id=check_id,
+                person_id=owed.person,
+                recipient=owed.recipient,
+                level=owed.level,
                 channel=channel,
                 at=act.at,
-                skipped=",".join(skipped),
+                skipped=",".join(owed.skipped),
             )
         )
         if channel == "mail":
-            act.writer.insert(NoticeMail(notice=notice))
-        keys.append(f"{check.uid}/{level}/{person_id}/{channel}")
+            act.writer.insert(new_row(NoticeMail, notice_id=notice.pk))
+        keys.append(f"{check_uid}/{owed.level}/{owed.person}/{channel}")
     return keys
 
 
 def owe_suspension(act: ledger.Act, check: Check, *, performed_by: Person) -> None:
-    """Tell the physicists of the site at once that a check gave the suspension verdict."""
+    """Tell the physicists of the site at once that a check gave the suspension verdict; each once for a check."""
+    told = set(Notice.objects.filter(check_of=check, level="suspension").values_list("person_id", flat=True))
     for person_id in holders("physicist", check.site_id, act.at.date()):
-        if person_id != performed_by.pk:
-            owe(act, check, person_id, "suspension")
+        if person_id != performed_by.pk and person_id not in told:
+            owe(act, check.pk, check.uid, Owed(person_id, "physicist", "suspension", ()))
 
 
 def mark_seen(*, actor: Person, at: dt.datetime) -> None:

@@ -17,6 +17,7 @@ from qa_tracker.services.wording_refused_baselines import BASELINES
 from qa_tracker.services.wording_refused_editor import EDITOR
 from qa_tracker.services.wording_refused_entry import ENTRY
 from qa_tracker.services.wording_refused_formulas import FORMULAS
+from qa_tracker.services.wording_refused_ladders import LADDERS
 from qa_tracker.services.wording_refused_lines import LINES
 from qa_tracker.services.wording_refused_notices import NOTICES
 from qa_tracker.services.wording_refused_records import RECORDS
@@ -55,6 +56,7 @@ SENTENCES: Final[Mapping[str, str]] = (
     | BASELINES
     | EDITOR
     | NOTICES
+    | LADDERS
 )
 STATES: Final = {
     "check": CHECK_STATES,

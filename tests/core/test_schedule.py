@@ -17,12 +17,9 @@ from qa_tracker.core.schedule import (
     SiteDays,
     Window,
     due_for,
-    highest_level_passed,
     missed_at,
     next_due,
-    next_level,
     parse_rule,
-    skipped_levels,
     standing,
 )
 from qa_tracker.core.workflow import CHECK, CHECK_AWAITED
@@ -113,42 +110,6 @@ def test_check_is_due_for_the_whole_local_day_when_clocks_change_on_it(zone, due
         "due",
         "late",
     ]
-
-
-@pytest.mark.parametrize(
-    ("after_level", "expected"),
-    [
-        (None, ("upcoming", DUE.opens_at)),
-        ("upcoming", ("due", DUE.due_at)),
-        ("due", ("late", DUE.late_at)),
-        ("late", ("overdue", DUE.overdue_at)),
-        ("overdue", None),
-    ],
-)
-def test_next_level_follows_with_its_instant_after_each_level(after_level, expected):
-    assert next_level(DUE, after_level) == expected
-
-
-@pytest.mark.parametrize(
-    ("after_level", "at", "highest", "skipped"),
-    [
-        pytest.param(None, DUE.opens_at - MOMENT, None, (), id="nothing reached"),
-        pytest.param(None, DUE.opens_at, "upcoming", (), id="the first"),
-        pytest.param("upcoming", DUE.due_at, "due", (), id="the next"),
-        pytest.param("upcoming", DUE.overdue_at, "overdue", ("due", "late"), id="after an outage"),
-        pytest.param(None, DUE.late_at, "late", ("upcoming", "due"), id="an outage from the start"),
-        pytest.param("late", DUE.late_at, "late", (), id="already told"),
-        pytest.param("overdue", DUE.late_at, "late", (), id="told further than the moment asked about"),
-    ],
-)
-def test_only_the_highest_level_is_sent_and_the_rest_are_skipped(after_level, at, highest, skipped):
-    assert highest_level_passed(DUE, at) == highest
-    assert skipped_levels(DUE, after_level, at) == skipped
-
-
-def test_levels_share_an_instant_when_there_is_no_window_and_no_grace():
-    assert skipped_levels(BARE, None, BARE.due_at) == ("upcoming",)
-    assert skipped_levels(BARE, "due", BARE.overdue_at) == ("late",)
 
 
 def test_calendar_slots_stay_on_the_anchor_when_the_checks_were_moved():

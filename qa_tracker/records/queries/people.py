@@ -114,6 +114,16 @@ def holders(role: str, site_id: int | None, on: dt.date) -> list[int]:
     )
 
 
+def role_holders() -> dict[str, list[tuple[int, Grant]]]:
+    """Every grant of an active person, by role; one query for all sites and days."""
+    found: dict[str, list[tuple[int, Grant]]] = {}
+    grants = RoleGrant.objects.filter(person__is_active=True).order_by("person_id", "id")
+    for person_id, *columns in grants.values_list("person_id", "role", "site_id", "from_on", "until_on"):
+        grant = Grant(*columns)
+        found.setdefault(grant.role, []).append((person_id, grant))
+    return found
+
+
 def any_person() -> bool:
     """Whether anybody can sign in at all."""
     return Person.objects.exists()
