@@ -13,6 +13,7 @@ import numpy as np
 from qa_tracker.core.allowances import Allowance, allowance
 from qa_tracker.core.criteria import Criterion, Level, Limit
 from qa_tracker.core.decimals import plain, round_half_even, scaled_at, subtract
+from qa_tracker.core.open_baseline import AgainstBound, code_against_bound
 from qa_tracker.core.verdict_kernel import CONFORMING, Columns, Rule, column, finest_places, verdict_codes
 
 SIGN = {"<": -1, "=": 0, ">": 1}
@@ -31,9 +32,11 @@ class Comparison:
     value, qualifier
         The reading and ``"="``, ``">"`` or ``"<"``.
     reference, reference_qualifier
-        Nominal, baseline or other reading; None with basis none. A qualified baseline stands at its bound.
+        Nominal, baseline or other reading; None with basis none. A qualified baseline is shown at its bound.
     uncertainty
         Expanded uncertainty U (k = 2) of the departure, >= 0, or None.
+    never_below_zero
+        Whether the quantity can't be below zero, which a bounded baseline then isn't either.
     """
 
     criterion: Criterion
@@ -42,9 +45,16 @@ class Comparison:
     reference: Decimal | None
     reference_qualifier: str
     uncertainty: Decimal | None
+    never_below_zero: bool = False
 
     def code(self, rule: Rule, criterion: Criterion | None = None) -> int:
-        """Judge by the kernel, by this criterion or a part of it."""
+        """Judge by the kernel, by this criterion or a part of it; a bounded baseline by all that it can stand for."""
+        if self.reference is not None and self.reference_qualifier != "=":
+            side, sign = SIGN[self.reference_qualifier], SIGN[self.qualifier]
+            asked = AgainstBound(
+                self.value, sign, self.reference, side, self.uncertainty, self.never_below_zero
+            )
+            return code_against_bound(criterion or self.criterion, asked, rule)
         places = finest_places(self.criterion, self.value, self.reference, self.uncertainty)
         columns = Columns(
             values=column(scaled_at(self.value, places)),
@@ -75,6 +85,11 @@ class Comparison:
             return self.value
         return subtract(self.value, self.reference)
 
+    @property
+    def change_qualifier(self) -> str:
+        """Which way the difference may be more or less: by the reading's bound, or where it is exact the baseline's."""
+        return MIRRORED[self.reference_qualifier] if self.qualifier == "=" else self.qualifier
+
     @cached_property
     def departure(self) -> tuple[Decimal, str]:
         """What is compared with the allowance, and the way it may be more or less.
@@ -83,11 +98,12 @@ class Comparison:
         Where a half-line holds no change at all, as "more than 150" against 152 either way, it is "0 or more".
         """
         direction, difference = self.criterion.direction, self.difference
+        qualifier = self.change_qualifier
         if direction == "below" and self.is_change:
-            return difference.copy_negate() if difference else difference.copy_abs(), MIRRORED[self.qualifier]
-        if direction != "either" or self.qualifier == "=":
-            return difference.copy_abs() if direction == "either" else difference, self.qualifier
-        outwards = difference >= 0 if self.qualifier == ">" else difference <= 0
+            return difference.copy_negate() if difference else difference.copy_abs(), MIRRORED[qualifier]
+        if direction != "either" or qualifier == "=":
+            return difference.copy_abs() if direction == "either" else difference, qualifier
+        outwards = difference >= 0 if qualifier == ">" else difference <= 0
         return difference.copy_abs() if outwards else Decimal(0), ">"
 
     def is_gain_beyond(self, level: Level) -> bool:

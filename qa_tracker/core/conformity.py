@@ -43,6 +43,7 @@ class _Question:
     unit: str | None
     criterion_unit: str | None
     spread: OwnSpread | None
+    never_below_zero: bool
 
 
 def judge(
@@ -61,6 +62,7 @@ def judge(
     unit: str | None = None,
     criterion_unit: str | None = None,
     spread: OwnSpread | None = None,
+    never_below_zero: bool = False,
 ) -> Judgement:
     """Judge one reading.
 
@@ -69,8 +71,8 @@ def judge(
     indeterminate at the worst level in doubt. "Not seen" is worse than any value where one direction is worse:
     the suspension level if there is one, else the remedial; with either direction nothing can be said.
 
-    A qualified baseline enters at its bound and the sentence says so: a loss that still leaves more than the
-    bound would not show.
+    A qualified baseline is every value on its side of the bound: a verdict is given only where it is the same for all
+    of them, else it is indeterminate at the worst level in doubt and the sentence says what could hide.
 
     Parameters
     ----------
@@ -95,6 +97,8 @@ def judge(
         Compared where the criterion has one; nothing is converted. "Not seen" has no unit to compare.
     spread
         Of the set-ups the baseline is the mean of, for a limit of the device's own spread.
+    never_below_zero
+        Of the quantity: a reading or reference below zero then has a stray sign, and is not assessable.
 
     Returns
     -------
@@ -135,6 +139,7 @@ def judge(
         unit=unit,
         criterion_unit=criterion_unit,
         spread=spread,
+        never_below_zero=never_below_zero,
     )
     return _judge_number(criterion, question)
 
@@ -201,7 +206,8 @@ def _judge_number(criterion: Criterion, question: _Question) -> Judgement:
 def _explained(compared: Comparison, question: _Question) -> Judgement:
     """Compare; where no share of the reference can be taken, by the absolute parts, which clear nothing."""
     reference = compared.reference
-    if reference is None or not _has_no_size(compared.criterion, reference):
+    bounded = compared.reference_qualifier != "="
+    if reference is None or bounded or not _has_no_size(compared.criterion, reference):
         return explain(compared, question.rule)
     left = without_shares(compared.criterion)
     judgement = explain(replace(compared, criterion=left), question.rule) if left.levels() else None
@@ -258,7 +264,31 @@ def _comparison(criterion: Criterion, question: _Question) -> Comparison | Judge
     if question.uncertainty is not None and question.uncertainty < 0:
         raise Invalid("uncertainty.negative", field="uncertainty", uncertainty=plain(question.uncertainty))
     value = question.value if question.value is not None else Decimal(0)
-    return Comparison(criterion, value, question.qualifier, reference, qualifier, question.uncertainty)
+    compared = Comparison(
+        criterion,
+        value,
+        question.qualifier,
+        reference,
+        qualifier,
+        question.uncertainty,
+        question.never_below_zero,
+    )
+    return _below_zero(compared, question.unit) or compared
+
+
+def _below_zero(compared: Comparison, unit: str | None) -> Judgement | None:
+    """Refuse to judge what is below zero and never can be; less than zero is below it too."""
+    if not compared.never_below_zero:
+        return None
+    parts = (
+        ("value", compared.value, compared.qualifier),
+        (compared.criterion.basis, compared.reference, compared.reference_qualifier),
+    )
+    for what, number, qualifier in parts:
+        if number is not None and (number < 0 or (qualifier == "<" and not number)):
+            name = "reference" if what == "ratio" else what
+            return not_assessable(Say.BELOW_ZERO, what=name, amount=plain(number), unit=unit or "")
+    return None
 
 
 def _has_no_size(criterion: Criterion, reference: Decimal) -> bool:

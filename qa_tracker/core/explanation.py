@@ -49,8 +49,8 @@ def _reason(compared: Comparison, rank: int, rule: Rule, first: Level) -> tuple[
     if rank == kernel.CONFORMING:
         return _conforming_reason(compared, first)
     if rank in (kernel.INDETERMINATE_REMEDIAL, kernel.INDETERMINATE_SUSPENSION):
-        code = Say.TOO_CLOSE if compared.qualifier == "=" else Say.STRADDLES
-        return code, {"proven": _proven_below(compared, rank, rule)}
+        code, extra = _doubt(compared)
+        return code, extra | {"proven": _proven_below(compared, rank, rule)}
     guarded = rule == "guarded" and compared.code("simple") < rank
     return (Say.GUARD_BAND if guarded else Say.BEYOND), {}
 
@@ -63,15 +63,22 @@ def _proven_below(compared: Comparison, rank: int, rule: Rule) -> str:
     return "remedial" if compared.code(rule, lower) == kernel.REMEDIAL else "none"
 
 
+def _doubt(compared: Comparison) -> tuple[Say, dict[str, str]]:
+    """Say what leaves it open: what a bounded baseline hides, the reading's own bound, or the uncertainty."""
+    if compared.reference_qualifier == "=":
+        return (Say.TOO_CLOSE if compared.qualifier == "=" else Say.STRADDLES), {}
+    if (compared.criterion.direction, compared.reference_qualifier) != ("below", ">"):
+        return Say.OPEN_BASELINE, {}
+    return Say.HIDDEN_LOSS, {"hidden": "both" if compared.qualifier == ">" else "baseline"}
+
+
 def _conforming_reason(compared: Comparison, first: Level) -> tuple[Say, dict[str, str]]:
-    """Say what a conforming reading hides, or that it is better than it should be."""
-    if compared.reference_qualifier != "=":
-        if (compared.criterion.direction, compared.reference_qualifier) != ("below", ">"):
-            return Say.OPEN_BASELINE, {}
-        return Say.HIDDEN_LOSS, {"hidden": "both" if compared.qualifier == ">" else "baseline"}
-    if compared.is_gain_beyond(first):
+    """Say that a conforming reading is better than it should be, or that all it can stand for conforms."""
+    bounded = compared.reference_qualifier != "="
+    # What a share of a bounded baseline comes to is not known.
+    if not (bounded and compared.limit(first).percent) and compared.is_gain_beyond(first):
         return Say.BETTER_THAN_EXPECTED, {}
-    return (Say.WITHIN if compared.qualifier == "=" else Say.WITHIN_OPEN), {}
+    return (Say.WITHIN if compared.qualifier == "=" and not bounded else Say.WITHIN_OPEN), {}
 
 
 def _uncertainty_parameters(compared: Comparison, level: Level, probability: float | None) -> dict[str, str]:

@@ -16,8 +16,9 @@ from numpy.typing import NDArray
 
 from qa_tracker.core.conformity import NUMBER_KINDS, WORD_KINDS
 from qa_tracker.core.criteria import Criterion
-from qa_tracker.core.decimals import places_of, scaled_at, ten_to
+from qa_tracker.core.decimals import from_scaled, places_of, scaled_at, ten_to
 from qa_tracker.core.judgement import VERDICT_OF_CODE
+from qa_tracker.core.open_baseline import AgainstBound, code_against_bound
 from qa_tracker.core.own_spread import OwnSpread, at_spread, lacking_setups
 from qa_tracker.core.verdict_kernel import (
     NOT_ASSESSABLE,
@@ -55,6 +56,8 @@ class Kept(NamedTuple):
         Decision rule.
     spread
         Of the baseline's set-ups.
+    never_below_zero
+        Of the quantity.
     """
 
     kind: str
@@ -68,6 +71,7 @@ class Kept(NamedTuple):
     uncertainty: Whole | None = None
     rule: Rule = "simple"
     spread: OwnSpread | None = None
+    never_below_zero: bool = False
 
 
 @lru_cache(maxsize=4096)
@@ -123,6 +127,8 @@ def verdict_ranks(criterion: Criterion, rows: Sequence[Kept]) -> NDArray[np.uint
         flat = flats.of(row)
         if isinstance(flat, int):
             ranks[position] = flat
+        elif flat.basis == "baseline" and row.baseline_qualifier != "=":
+            ranks[position] = _against_bound(flat, row)
         else:
             groups.setdefault((id(flat), row.rule), []).append(position)
     for (key, rule), positions in groups.items():
@@ -153,7 +159,7 @@ class _Flats:
             return NOT_ASSESSABLE
         if row.qualifier == "not_seen":
             return NOT_ASSESSABLE if flat.direction == "either" else PROVEN_CODE[flat.levels()[-1][0]]
-        if not _has_reference(flat, row):
+        if not _has_reference(flat, row) or _is_below_zero(flat, row):
             return NOT_ASSESSABLE
         settled = self._spread(flat, row.spread) if flat.of_own_spread else flat
         if settled is None:
@@ -180,6 +186,36 @@ def _has_reference(flat: Criterion, row: Kept) -> bool:
     if flat.basis == "baseline":
         return row.baseline is not None and row.baseline_qualifier != "not_seen"
     return flat.basis == "none" or row.reference is not None
+
+
+def _is_below_zero(flat: Criterion, row: Kept) -> bool:
+    """Whether a number is below zero that never can be; less than zero is below it too."""
+    if not row.never_below_zero:
+        return False
+    based = flat.basis == "baseline"
+    numbers = [
+        (row.value, row.qualifier),
+        (row.baseline, row.baseline_qualifier) if based else (row.reference, "="),
+    ]
+    if flat.basis == "none":
+        numbers.pop()
+    return any(
+        number is not None and (number[0] < 0 or (qualifier == "<" and not number[0]))
+        for number, qualifier in numbers
+    )
+
+
+def _against_bound(flat: Criterion, row: Kept) -> int:
+    value, baseline = row.value or (0, 0), row.baseline or (0, 0)
+    asked = AgainstBound(
+        from_scaled(*value),
+        SIGNS[row.qualifier],
+        from_scaled(*baseline),
+        SIGNS[row.baseline_qualifier],
+        None if row.uncertainty is None else from_scaled(*row.uncertainty),
+        row.never_below_zero,
+    )
+    return code_against_bound(flat, asked, row.rule)
 
 
 def _columns(flat: Criterion, rows: Sequence[Kept]) -> Columns:

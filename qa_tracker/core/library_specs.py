@@ -105,6 +105,17 @@ class MeasurandSpec:
     note: str
     method: str = ""
 
+    @property
+    def never_below_zero(self) -> bool:
+        """Whether a reading below zero can only be a stray sign: a count, or a plausible band that starts at zero.
+
+        Degrees Celsius start nowhere in particular.
+        """
+        band = self.plausible
+        return self.kind == "count" or (
+            band is not None and not band.low.startswith("-") and self.unit != "degC"
+        )
+
 
 @dataclass(frozen=True)
 class RecurrenceSpec:

@@ -56,6 +56,7 @@ class SentenceCode(StrEnum):
     BASELINE_NOT_SEEN = "baseline_not_seen"
     NO_REFERENCE = "no_reference"
     ZERO_REFERENCE = "zero_reference"
+    BELOW_ZERO = "below_zero"
     NO_BAND_QUANTITY = "no_band_quantity"
     OUTSIDE_BANDS = "outside_bands"
     NOT_SEEN_UNDECIDED = "not_seen_undecided"
@@ -95,8 +96,9 @@ REQUIRED: dict[SentenceCode, frozenset[str]] = {
     SentenceCode.WITHIN: _COMPARED,
     SentenceCode.WITHIN_OPEN: _COMPARED,
     SentenceCode.BETTER_THAN_EXPECTED: _CHANGED,
-    SentenceCode.HIDDEN_LOSS: _CHANGED | {"hidden"},
-    SentenceCode.OPEN_BASELINE: _CHANGED,
+    SentenceCode.HIDDEN_LOSS: _CHANGED | {"hidden", "proven"},
+    SentenceCode.OPEN_BASELINE: _CHANGED | {"proven"},
+    SentenceCode.BELOW_ZERO: frozenset({"what", "amount", "unit"}),
     SentenceCode.BEYOND: _COMPARED,
     SentenceCode.GUARD_BAND: _COMPARED | {"uncertainty", "acceptance"},
     SentenceCode.NOT_SEEN: frozenset({"direction", "level"}),

@@ -13,7 +13,7 @@ from qa_tracker.core import conformity
 from qa_tracker.core.applicability import Circumstances, unfit
 from qa_tracker.core.decimals import Exact, from_scaled, plain, subtract
 from qa_tracker.core.epochs import Change, changes
-from qa_tracker.core.errors import Conflict
+from qa_tracker.core.errors import Conflict, Invalid
 from qa_tracker.core.library_specs import MeasurandSpec
 from qa_tracker.records.models import (
     Aperture,
@@ -99,7 +99,12 @@ def _text(reading: Reading) -> str | None:
 
 
 def refuse_beyond(asked: Asked, exact: Exact, qualifier: str, test_object: TestObject | None) -> None:
-    """Refuse a value that fails a limit on the value itself or against a nominal (``baseline.beyond_limit``)."""
+    """Refuse a value that fails a limit on the value itself or against a nominal (``baseline.beyond_limit``).
+
+    Refused too is one below zero of what never is (``baseline.below_zero``): no reading could be judged against it.
+    """
+    if exact.scaled < 0 and asked.spec.never_below_zero:
+        raise Invalid("baseline.below_zero", field=asked.name, value=exact.entered)
     found = _failing(asked, plain(exact.decimal), qualifier, test_object)
     if found:
         raise Conflict(

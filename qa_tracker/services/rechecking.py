@@ -156,6 +156,7 @@ def _judged(
         unit=measurand.unit if numeric else None,
         criterion_unit=spec.unit if numeric else None,
         spread=_spread(baseline, measurand) if spec.criterion.of_own_spread else None,
+        never_below_zero=measurand.never_below_zero,
     )
 
 

@@ -103,6 +103,7 @@ def weigh(
             unit=item.spec.unit if item.spec.kind in NUMBERS else None,
             criterion_unit=criterion.spec.unit if item.spec.kind in NUMBERS else None,
             spread=spread_of(item.baseline, item.spec.resolution),
+            never_below_zero=item.spec.never_below_zero,
         )
     flags = baseline_flags(item.baseline, criterion, under) | unguarded(criterion, rule, judgement)
     if flags:
@@ -164,7 +165,7 @@ def _refusal(item: Item, criterion: CriterionRow, entry: Entry, under: MeasuredW
 
 @lru_cache(maxsize=8192)
 def _verdict_on(
-    criterion_uid: uuid.UUID, criterion: Criterion, **question: str | OwnSpread | None
+    criterion_uid: uuid.UUID, criterion: Criterion, **question: str | bool | OwnSpread | None
 ) -> Judgement:
     """The same question has the same answer, and most readings of a fleet ask one that was asked before.
 

@@ -117,6 +117,9 @@ CRITERIA: Final = {
     "criterion.absolute_with_ratio": N_(
         "%(field)s can't be used: a ratio is judged in percent. Give a percentage."
     ),
+    "baseline.below_zero": N_(
+        "%(value)s is below zero, and this quantity never is. Look for a stray sign, and enter the value again."
+    ),
     "criterion.negative": N_("%(field)s is %(value)s. A limit on a change or share has to be zero or more."),
     "criterion.negative_either_way": N_(
         "%(field)s is %(value)s. A limit that holds either way is compared with the size of the reading, so every "

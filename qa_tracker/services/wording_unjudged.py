@@ -97,6 +97,19 @@ def _zero_reference(given: Parameters, says: str) -> str:
     return capital(_("%(name)s is %(amount)s, of which no share can be taken: %(verdict)s.") % told)
 
 
+def _below_zero(given: Parameters, says: str) -> str:
+    told = {
+        "what": _(NUMBERS.get(given["what"], given["what"])),
+        "amount": amount(given["amount"], given.get("unit", "")),
+        "verdict": says,
+    }
+    sentence = _(
+        "%(what)s is %(amount)s, and this quantity is never below zero: %(verdict)s. Look for a stray sign, and put "
+        "it right."
+    )
+    return capital(sentence % told)
+
+
 def _no_band_quantity(given: Parameters, says: str) -> str:
     told = {"name": banding_word(given["banded_by"]), "verdict": says}
     return (
@@ -230,6 +243,7 @@ PLAIN: Final[dict[Say, Callable[[Parameters, str], str]]] = {
     Say.BASELINE_NOT_SEEN: _baseline_not_seen,
     Say.NO_REFERENCE: _no_reference,
     Say.ZERO_REFERENCE: _zero_reference,
+    Say.BELOW_ZERO: _below_zero,
     Say.NO_BAND_QUANTITY: _no_band_quantity,
     Say.OUTSIDE_BANDS: _outside_bands,
     Say.NOT_SEEN_UNDECIDED: _not_seen_undecided,

@@ -257,7 +257,12 @@ def _within(given: Parameters, says: str) -> list[str]:
 def _within_open(given: Parameters, says: str) -> list[str]:
     """A bound that conforms whatever it stands for; a loss that may hide behind it is named."""
     told = _judged(given, says)
-    told.append(_("Every value that the reading can stand for conforms."))
+    if given.get("reference_qualifier", "=") == "=":
+        told.append(_("Every value that the reading can stand for conforms."))
+    elif given["value_qualifier"] == "=":
+        told.append(_("Every value that the baseline can stand for gives the same."))
+    else:
+        told.append(_("Every value that reading and baseline can stand for gives the same."))
     if given["departure_qualifier"] == "<" and Decimal(given["departure"]) > 0 and given["basis"] != "none":
         change = _(CHANGES.get((given["basis"], given["direction"]), N_("%(amount)s")))
         hidden = change % {"amount": _("less than %(size)s") % {"size": _size(given, "departure")}}
@@ -273,21 +278,33 @@ def _better(given: Parameters, says: str) -> list[str]:
     ]
 
 
+def _open_to(given: Parameters, says: str) -> list[str]:
+    """What was found, where the baseline's bound leaves the verdict open."""
+    told = {"finding": finding(given), "limit": limit(given), "verdict": says}
+    sentence = _(
+        "%(finding)s; %(limit)s, and the baseline's bound leaves open whether that is passed: %(verdict)s."
+    )
+    return [sentence % told, *_band(given), *_proven(given)]
+
+
 def _hidden_loss(given: Parameters, says: str) -> list[str]:
-    told, bound = _judged(given, says), _size(given, "reference")
+    told, bound = _open_to(given, says), _size(given, "reference")
     if given["hidden"] == "both":
         bound = _size(given, "value")
         sentence = _(
             "Reading and baseline are both bounds: a loss that leaves more than %(bound)s doesn't show."
         )
     else:
-        sentence = _("The baseline is only a bound, more than %(bound)s: the true loss may be larger.")
+        sentence = _(
+            "The baseline is only a bound, more than %(bound)s: the true loss is larger by as much as the device "
+            "then reached beyond that."
+        )
     return [*told, sentence % {"bound": bound}]
 
 
 def _open_baseline(given: Parameters, says: str) -> list[str]:
     return [
-        *_judged(given, says),
+        *_open_to(given, says),
         _("The baseline is only a bound: the true change may be larger than it looks."),
     ]
 

@@ -88,14 +88,14 @@ def test_doubt_at_suspension_says_that_the_remedial_level_is_proven():
 
 def test_loss_that_may_hide_is_named_when_both_are_more_than():
     judgement = _judge(LOSS, ">160", "160", baseline_qualifier=">")
-    assert (judgement.verdict, judgement.code) == (C_, "hidden_loss")
+    assert (judgement.verdict, judgement.level, judgement.code) == (I_, "suspension", "hidden_loss")
     assert (judgement.parameters["value"], judgement.parameters["hidden"]) == ("160", "both")
 
 
-def test_baseline_stands_at_its_bound_when_qualified():
+def test_loss_against_a_bound_is_judged_only_when_it_is_proven():
     within, beyond = (_judge(LOSS, value, "160", baseline_qualifier=">") for value in ("158", "150"))
-    assert (within.verdict, within.code, within.parameters["hidden"]) == (C_, "hidden_loss", "baseline")
-    assert (beyond.verdict, beyond.parameters["reference_qualifier"]) == (R_, ">")
+    assert (within.verdict, within.code, within.parameters["hidden"]) == (I_, "hidden_loss", "baseline")
+    assert (beyond.verdict, beyond.parameters["reference_qualifier"]) == (S_, ">")
 
 
 def test_gain_is_not_claimed_when_the_baseline_is_open():

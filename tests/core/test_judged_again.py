@@ -43,12 +43,13 @@ readings = some.builds(
     word=some.sampled_from(["green", "amber", "red", "blue", ""]),
     value=some.none() | numbers,
     baseline=some.none() | numbers,
-    baseline_qualifier=some.sampled_from(["=", ">", "not_seen"]),
+    baseline_qualifier=some.sampled_from(["=", ">", "<", "not_seen"]),
     reference=some.none() | numbers,
     quantity=some.none() | some.decimals(0, 9, places=1),
     uncertainty=some.none() | some.tuples(some.integers(0, 20), some.integers(0, 1)),
     rule=some.sampled_from(["simple", "guarded", "zones"]),
     spread=some.none() | spreads,
+    never_below_zero=some.booleans(),
 )
 
 
@@ -71,6 +72,7 @@ def one_by_one(criterion, row):
         uncertainty=decimal(row.uncertainty),
         rule=row.rule,
         spread=row.spread,
+        never_below_zero=row.never_below_zero,
     )
 
 

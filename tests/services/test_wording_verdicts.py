@@ -115,21 +115,24 @@ TABLE = [
     (
         "a baseline that is a bound", Say.HIDDEN_LOSS, LOSS,
         {"value": "158", "baseline": "160", "baseline_qualifier": ">"},
-        "158 mm is 2 mm less than the baseline (read as more than 160 mm, taken at 160 mm); the remedial level "
-        "allows a loss of 6 mm: conforming. The baseline is only a bound, more than 160 mm: the true loss may be "
-        "larger.",
+        "158 mm is 2 mm less than the baseline (read as more than 160 mm, taken at 160 mm); the suspension level "
+        "allows a loss of 10 mm, and the baseline's bound leaves open whether that is passed: indeterminate at the "
+        "suspension level. The baseline is only a bound, more than 160 mm: the true loss is larger by as much as the "
+        "device then reached beyond that.",
     ),
     (
         "two bounds", Say.HIDDEN_LOSS, LOSS,
         {"value": "160", "qualifier": ">", "baseline": "160", "baseline_qualifier": ">"},
-        "More than 160 mm is above the baseline (read as more than 160 mm, taken at 160 mm); the remedial level "
-        "allows a loss of 6 mm: conforming. Reading and baseline are both bounds: a loss that leaves more than "
+        "More than 160 mm is above the baseline (read as more than 160 mm, taken at 160 mm); the suspension level "
+        "allows a loss of 10 mm, and the baseline's bound leaves open whether that is passed: indeterminate at the "
+        "suspension level. Reading and baseline are both bounds: a loss that leaves more than "
         "160 mm doesn't show.",
     ),
     (
         "an open baseline", Say.OPEN_BASELINE, RISE, {"value": "4", "baseline": "3", "baseline_qualifier": "<"},
         "4 mm is 1 mm more than the baseline (read as less than 3 mm, taken at 3 mm); the remedial level allows "
-        "a rise of 2 mm: conforming. The baseline is only a bound: the true change may be larger than it looks.",
+        "a rise of 2 mm, and the baseline's bound leaves open whether that is passed: indeterminate at the remedial "
+        "level. The baseline is only a bound: the true change may be larger than it looks.",
     ),
     (
         "a guard band", Say.GUARD_BAND, LOSS,
@@ -228,6 +231,23 @@ TABLE = [
     (
         "nothing to take a share of", Say.ZERO_REFERENCE, SHARE, {"value": "62", "reference": "0", "unit": "uA"},
         "The other reading is 0 µA, of which no share can be taken: not assessable.",
+    ),
+    (
+        "a stray sign", Say.BELOW_ZERO, LOSS, {"value": "-3", "baseline": "152", "never_below_zero": True},
+        "The reading is -3 mm, and this quantity is never below zero: not assessable. Look for a stray sign, and put "
+        "it right.",
+    ),
+    (
+        "a stray sign before", Say.BELOW_ZERO, LOSS, {"value": "3", "baseline": "-152", "never_below_zero": True},
+        "The baseline is -152 mm, and this quantity is never below zero: not assessable. Look for a stray sign, and "
+        "put it right.",
+    ),
+    (
+        "a bound below that says enough", Say.WITHIN_OPEN, LOSS,
+        {"value": "158", "baseline": "160", "baseline_qualifier": "<"},
+        "158 mm is 2 mm less than the baseline (read as less than 160 mm, taken at 160 mm); the remedial level "
+        "allows a loss of 6 mm: conforming. Every value that the baseline can stand for gives the same. Behind it, "
+        "a loss of less than 2 mm could hide.",
     ),
     (
         "no frequency", Say.NO_BAND_QUANTITY, RING, {"value": "4"},
