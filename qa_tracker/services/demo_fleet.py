@@ -28,7 +28,7 @@ CLASSES = {
     "convex": ProbeClass("convex", "skin", "BF", (("face", 192),), "Abdomen", "3.5", 150, "12.0", 5, "0.8", "2.1", "3.0", "4.0"),
     "linear": ProbeClass("linear", "skin", "BF", (("face", 192),), "Vascular", "9.0", 62, "8.5", 6, "0.4", "0.9", "1.5", "2.5"),
     "linear 18 MHz": ProbeClass("linear", "skin", "BF", (("face", 288),), "Small parts", "18.0", 31, "5.0", 6, "0.2", "0.4", "1.0", "1.5"),
-    "phased": ProbeClass("phased", "skin", "CF", (("face", 80),), "Cardiac", "2.5", 160, "15.0", 4, "1.0", "3.0", "5.0", "5.0"),
+    "phased": ProbeClass("phased", "skin", "CF", (("face", 80),), "Cardiac", "2.5", 150, "15.0", 4, "1.0", "3.0", "5.0", "5.0"),
     "endovaginal": ProbeClass("micro_convex", "mucous_membrane", "BF", (("face", 128),), "Gynaecology", "6.5", 88, "9.0", 5, "0.5", "1.3", "2.0", "3.0"),
     "3D": ProbeClass("mechanical_3d", "skin", "BF", (("face", 192),), "Obstetrics", "4.5", 134, "11.5", 4, "0.7", "1.8", "2.5", "3.5"),
     "micro-convex": ProbeClass("micro_convex", "skin", "BF", (("face", 128),), "Paediatric", "6.0", 92, "9.5", 5, "0.6", "1.4", "2.5", "3.0"),
