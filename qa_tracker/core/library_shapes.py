@@ -40,7 +40,7 @@ from qa_tracker.core.library_specs import (
 )
 from qa_tracker.core.roles import ROLES
 
-STANDINGS = ("confirmed", "memory", "practice")
+STANDINGS = ("confirmed", "memory", "practice", "local")
 LEVELS = ("remedial", "suspension")
 SHAPES = tuple("ABCDEFGHIJ")
 MEDIA = ("phantom", "air", "electrical", "any")

@@ -20,6 +20,8 @@ HEAD = ("edition", "title", "source", "note")
 WORDS = ("source", "note")
 SPREAD = ("coverage", "confidence")
 REMOVE = "remove"
+LOCAL = "local"
+"""Standing of a number that was changed here, and not read anywhere."""
 _PLACE = re.compile(r"criteria\[(?P<index>\d+)\](?P<rest>.*)")
 _MOST_REFUSALS = 500
 
@@ -87,7 +89,8 @@ def next_document(before: Mapping[str, Any], typed: Mapping[str, str]) -> dict[s
     """Write what was typed over the edition before.
 
     A level whose numbers are all empty is no level of the next edition, and has no standing. A comma is read as
-    the decimal point. Nothing is checked here.
+    the decimal point. A level whose numbers are other than before loses the standing they had: where that is left
+    as it was, it becomes a local decision. Nothing is checked here.
 
     Parameters
     ----------
@@ -105,7 +108,7 @@ def next_document(before: Mapping[str, Any], typed: Mapping[str, str]) -> dict[s
 
 
 def _write(content: dict[str, Any], typed: Mapping[str, str]) -> None:
-    code, criterion = content["id"], content["criterion"]
+    code, criterion, before = content["id"], content["criterion"], copy.deepcopy(content)
     for where, part in _parts(criterion):
         for level in LEVELS:
             keys = [key for of, key in _level_keys(criterion) if of == level]
@@ -118,7 +121,32 @@ def _write(content: dict[str, Any], typed: Mapping[str, str]) -> None:
         content["standing"].pop(name, None)
         if standing := typed.get(f"{code}.standing.{name}", ""):
             content["standing"][name] = standing
+    for name in _changed_levels(content, before):
+        if name in before["standing"] and content["standing"].get(name) == before["standing"][name]:
+            content["standing"][name] = LOCAL
     content |= {key: typed.get(f"{code}.{key}", "").strip() for key in WORDS}
+
+
+def _changed_levels(content: Mapping[str, Any], before: Mapping[str, Any]) -> list[str]:
+    """The levels there are whose numbers are other than before."""
+    pairs = list(zip(_parts(content["criterion"]), _parts(before["criterion"]), strict=True))
+    return [
+        level
+        for level in sorted(_levels_written(content["criterion"]))
+        if any(_numbers(new.get(level)) != _numbers(old.get(level)) for (_, new), (_, old) in pairs)
+    ]
+
+
+def _numbers(limit: Mapping[str, str] | None) -> dict[str, object]:
+    """A level's numbers by what they are worth: 6.0 is 6."""
+    return {key: _worth(text) for key, text in (limit or {}).items()}
+
+
+def _worth(text: str) -> object:
+    try:
+        return parse(text).decimal
+    except Invalid:
+        return text
 
 
 def _put_level(part: dict[str, Any], level: str, limit: dict[str, str]) -> None:
@@ -161,7 +189,7 @@ def refusals(document: Mapping[str, Any], before: Mapping[str, Any]) -> tuple[Do
     found: list[DomainError] = []
     for content in given["criteria"]:
         wrong = [*_wrong_numbers(content), *_without_standing(content)]
-        found += wrong
+        found += [*wrong, *_of_another_source(content, known[content["id"]])]
         if wrong:
             _put_back(content, known[content["id"]], "criterion")
     for _ in range(_MOST_REFUSALS):
@@ -193,6 +221,12 @@ def _without_standing(content: Mapping[str, Any]) -> Iterator[DomainError]:
     for level in LEVELS:
         if level in _levels_written(content["criterion"]) and level not in content["standing"]:
             yield Invalid("library.no_standing", field=f"{content['id']}.standing.{level}", level=level)
+
+
+def _of_another_source(content: Mapping[str, Any], before: Mapping[str, Any]) -> Iterator[DomainError]:
+    """Refuse a changed number under the source of the number that it was."""
+    if content["source"] and content["source"] == before["source"] and _changed_levels(content, before):
+        yield Invalid("library.source_of_another_number", field=f"{content['id']}.source")
 
 
 def _at_its_place(refusal: DomainError, document: Mapping[str, Any]) -> DomainError:

@@ -26,6 +26,7 @@ STANDINGS: Final = {
     "confirmed": N_("confirmed"),
     "memory": N_("from memory: compare with your own copy"),
     "practice": N_("common practice, no source"),
+    "local": N_("a local decision"),
 }
 CHANGES: Final = {
     ("baseline", "below"): N_("loss of %(limits)s"),

@@ -191,8 +191,12 @@ DOCUMENTS: Final = {
         "%(field)s names the caution “%(caution)s”, which there is not. Correct it."
     ),
     "library.no_standing": N_(
-        "%(field)s says nothing of the %(level)s. Say whether its number is confirmed, from memory or common "
-        "practice."
+        "%(field)s says nothing of the %(level)s. Say whether its number is confirmed, from memory, common practice or "
+        "a local decision."
+    ),
+    "library.source_of_another_number": N_(
+        "A number was changed, and this is the source of the number before. Say where the new one comes from: a "
+        "document, or who decided it here and why."
     ),
     "library.no_such_level": N_(
         "%(field)s speaks of the %(level)s, which the criterion doesn't have. Take it out."

@@ -51,27 +51,56 @@ def test_edition_before_is_left_as_it_is():
     assert before == TG1
 
 
+LOCAL = {"TG1-PEN.standing.remedial": "local"}
+
+
 @pytest.mark.parametrize(
-    ("texts", "key", "value"),
+    ("texts", "told"),
     [
-        ({f"{PEN}.remedial.absolute": "5"}, "TG1-PEN.remedial.absolute", "5"),
-        ({f"{PEN}.remedial.absolute": " 5,5 "}, "TG1-PEN.remedial.absolute", "5.5"),
-        ({"TG1-RING.criterion.bands[1].remedial.absolute": "4"}, "TG1-RING.bands[1].remedial.absolute", "4"),
-        ({"TG1-VERT.criterion.remedial.governs": "either"}, "TG1-VERT.remedial.governs", "either"),
-        ({"TG1-PEN.standing.remedial": "confirmed"}, "TG1-PEN.standing.remedial", "confirmed"),
-        ({"TG1-PEN.source": "Our own copy"}, "TG1-PEN.source", "Our own copy"),
-        ({"TG1-PEN.note": ""}, "TG1-PEN.note", "None"),
+        ({f"{PEN}.remedial.absolute": "5"}, {"TG1-PEN.remedial.absolute": "5"} | LOCAL),
+        ({f"{PEN}.remedial.absolute": " 5,5 "}, {"TG1-PEN.remedial.absolute": "5.5"} | LOCAL),
+        (
+            {"TG1-RING.criterion.bands[1].remedial.absolute": "4"},
+            {"TG1-RING.bands[1].remedial.absolute": "4", "TG1-RING.standing.remedial": "local"},
+        ),
+        (
+            {"TG1-VERT.criterion.remedial.governs": "either"},
+            {"TG1-VERT.remedial.governs": "either", "TG1-VERT.standing.remedial": "local"},
+        ),
+        ({"TG1-PEN.standing.remedial": "confirmed"}, {"TG1-PEN.standing.remedial": "confirmed"}),
+        ({"TG1-PEN.source": "Our own copy"}, {"TG1-PEN.source": "Our own copy"}),
+        ({"TG1-PEN.note": ""}, {"TG1-PEN.note": "None"}),
     ],
 )
-def test_what_is_typed_is_the_only_difference(texts, key, value):
-    assert {name: str(each) for name, each in changed_keys(texts).items()} == {key: value}
+def test_what_is_typed_is_the_only_difference(texts, told):
+    assert {name: str(each) for name, each in changed_keys(texts).items()} == told
 
 
 def test_second_number_is_given_and_the_larger_governs():
     told = changed_keys({f"{PEN}.remedial.percent": "4"})
     assert {name: str(each) for name, each in told.items()} == {
-        "TG1-PEN.remedial.percent": "4", "TG1-PEN.remedial.governs": "larger",
+        "TG1-PEN.remedial.percent": "4", "TG1-PEN.remedial.governs": "larger", **LOCAL,
     }  # fmt: skip
+
+
+def test_changed_number_has_the_standing_that_is_chosen_for_it():
+    told = changed_keys({f"{PEN}.remedial.absolute": "5", "TG1-PEN.standing.remedial": "practice"})
+    assert told["TG1-PEN.standing.remedial"] == "practice"
+
+
+def test_number_written_otherwise_keeps_its_standing():
+    before = TG1["criteria"][[each["id"] for each in TG1["criteria"]].index("TG1-PEN")]
+    was = before["criterion"]["remedial"]["absolute"]
+    document = typing({f"{PEN}.remedial.absolute": f"{was},0"})
+    after = next(each for each in document["criteria"] if each["id"] == "TG1-PEN")
+    assert after["standing"] == before["standing"]
+    assert refusals(document, TG1) == ()
+
+
+def test_changed_number_is_refused_under_the_source_of_the_one_before():
+    texts = {f"{PEN}.suspension.absolute": "9"}
+    assert refused(texts) == {("library.source_of_another_number", "TG1-PEN.source")}
+    assert refused(texts | {"TG1-PEN.source": "Decided by the group, May 2026"}) == set()
 
 
 def test_level_without_numbers_goes_with_its_standing_and_own_word():
@@ -90,7 +119,8 @@ def test_criterion_is_removed():
 def test_own_spread_has_its_two_shares():
     content = TG1["criteria"][2] | {"shape": "J", "criterion": OWN, "standing": {"remedial": "practice"}}
     before = TG1 | {"criteria": [content | {"own_words": {}}]}
-    document = typing({"TG1-PEN.criterion.remedial.coverage": "99"}, before)
+    typed = {"TG1-PEN.criterion.remedial.coverage": "99", "TG1-PEN.source": "Ours"}
+    document = typing(typed, before)
     assert refusals(document, before) == ()
     assert document["criteria"][0]["criterion"]["remedial"] == {"coverage": "99", "confidence": "95"}
 
@@ -118,11 +148,13 @@ def test_every_refusal_is_found_at_its_place():
         ("criterion.not_beyond", "TG1-PEN.criterion"),
         ("criterion.no_level", "TG1-UNIF.criterion"),
         ("criterion.not_beyond", "TG1-RING.criterion.bands[1]"),
+        ("library.source_of_another_number", "TG1-VERT.source"),
+        ("library.source_of_another_number", "TG1-RING.source"),
     }
 
 
 def test_refusal_below_a_removed_criterion_keeps_its_id():
-    texts = {"TG1-VERT.remove": "yes", f"{PEN}.remedial.absolute": "-1"}
+    texts = {"TG1-VERT.remove": "yes", f"{PEN}.remedial.absolute": "-1", "TG1-PEN.source": "Ours"}
     assert refused(texts) == {("criterion.negative", f"{PEN}.remedial.absolute")}
 
 

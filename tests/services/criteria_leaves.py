@@ -22,7 +22,11 @@ def ending(ward: Ward) -> Given:
 
 def publishing(ward: Ward) -> Given:
     before = CriteriaSet.objects.get(code="dropout", edition="2014")
-    typed = {"edition": f"next {next(numbers)}", "DROP.criterion.remedial.absolute": "1"}
+    typed = {
+        "edition": f"next {next(numbers)}",
+        "DROP.criterion.remedial.absolute": "1",
+        "DROP.source": "Ours",
+    }
     return {
         "before": before, "typed": typed_places(set_document(before.pk)) | typed, "actor": ward.physicist,
     }  # fmt: skip

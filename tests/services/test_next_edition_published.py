@@ -19,6 +19,7 @@ def ward(shared_ward):
 
 
 def publish(ward, actor=None, **texts):
+    texts |= {"DROP.source": "Decided by the group"} if "remedial" in texts else {}
     before = CriteriaSet.objects.get(code="dropout", edition="2014")
     level = {"remedial": "DROP.criterion.remedial.absolute"}
     typed = typed_places(rows.set_document(before.pk)) | {
@@ -44,6 +45,11 @@ def test_next_edition_is_published_and_has_no_force(ward):
     assert (made.code, made.edition) == ("dropout", "2027")
     assert rows.find_criteria_set(made.uid).criteria[0].spec.criterion.remedial.absolute == 1
     assert rows.adopted_criteria(ward.site.pk)["DROP"].set_edition == "2014"
+
+
+def test_changed_number_is_a_local_decision_with_a_source_of_its_own(ward):
+    spec = rows.find_criteria_set(publish(ward, edition="2027", remedial="1").uid).criteria[0].spec
+    assert (spec.standing.remedial, spec.source) == ("local", "Decided by the group")
 
 
 def test_edition_that_is_there_is_refused_beside_what_else_is_wrong(ward):

@@ -61,7 +61,11 @@ def known(code="dropout", edition="2014"):
 
 
 def typed(**texts):
-    return typed_places(set_document(known().pk)) | {"edition": "2027", REMEDIAL: "1"} | texts
+    return (
+        typed_places(set_document(known().pk))
+        | {"edition": "2027", REMEDIAL: "1", "DROP.source": "Ours"}
+        | texts
+    )
 
 
 def published(ward, **texts):
@@ -72,8 +76,8 @@ def test_list_names_editions_newest_first_and_where_each_is_in_force(ward, page)
     published(ward)
     text = page("criteria")
     assert (
-        "Edition 2027 Contiguous dead elements what changed in edition 2027 2 levels confirmed Not in force"
-        in text
+        "Edition 2027 Contiguous dead elements what changed in edition 2027 1 level confirmed, 1 level "
+        "by local decision Not in force" in text
     )
     assert text.index("Edition 2027") < text.index("Edition 2014")
     assert "The whole group adopted by Maren Oduya on" in text

@@ -34,7 +34,7 @@ HEAD_WORDS = {
     ),
     "note": (gettext_lazy("Note"), ""),
 }
-STANDINGS = ("confirmed", "memory", "practice")
+STANDINGS = ("confirmed", "memory", "practice", "local")
 
 
 @dataclass(frozen=True)
@@ -148,7 +148,8 @@ def _standing(name: str, value: str) -> Field:
     options = [("", _("not given")), *((each, wording.standing_word(each)) for each in STANDINGS)]
     level = name.rpartition(".")[2]
     label = _("Standing of the %(level)s") % {"level": wording.level_word(level)}
-    return Field(name, label, "select", options=options, values=(value,))
+    hint = _("Of a number that is changed it becomes a local decision, unless another standing is chosen.")
+    return Field(name, label, "select", hint, options=options, values=(value,))
 
 
 def typed_places_of(request: HttpRequest, known: Mapping[str, str], codes: Sequence[str]) -> dict[str, str]:

@@ -54,7 +54,7 @@ CLASSES = {
     "protection_class": gettext_lazy("protection class %(value)s"),
     "applied_part_type": gettext_lazy("applied part of type %(value)s"),
 }
-STANDINGS = ("confirmed", "memory", "practice")
+STANDINGS = ("confirmed", "memory", "practice", "local")
 
 
 @dataclass(frozen=True)
@@ -209,6 +209,7 @@ def standing_counts(row: CriteriaSetRow) -> str:
             "%(n)d levels by common practice, no source",
             counts["practice"],
         ),
+        "local": ngettext("%(n)d level by local decision", "%(n)d levels by local decision", counts["local"]),
     }
     return ", ".join(words[each] % {"n": counts[each]} for each in STANDINGS if counts[each])
 
