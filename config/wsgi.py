@@ -10,6 +10,8 @@ os.environ.setdefault("DJANGO_SETTINGS_MODULE", "config.settings")
 
 application = get_wsgi_application()
 
-from qa_tracker.services.start import require_guards  # noqa: E402  models need Django set up first
+from django.utils.timezone import now  # noqa: E402  models need Django set up first
 
-require_guards()
+from qa_tracker.services.start import begin  # noqa: E402
+
+begin(at=now())

@@ -14,16 +14,29 @@ from aiosmtpd.controller import Controller
 
 
 class MailServer:
-    """``answer`` is the reply to the data; while ``holding`` the data is taken and never answered."""
+    """``answer`` is the reply to the data, ``to_addressee`` to the address; ``seen`` counts data whatever the reply.
+
+    While ``holding`` the data is taken and never answered; while ``dropping`` the connection ends after it.
+    """
 
     def __init__(self, port: int) -> None:
         self.port = port
         self.accepted: list[EmailMessage] = []
         self.answer = "250 2.0.0 kept as 7F3A"
-        self.holding = False
-        self.held = 0
+        self.to_addressee = "250 2.1.5 known"
+        self.holding = self.dropping = False
+        self.held = self.seen = 0
 
-    async def handle_DATA(self, _server, _session, envelope):
+    async def handle_RCPT(self, _server, _session, envelope, address, _options):
+        if self.to_addressee.startswith("250"):
+            envelope.rcpt_tos.append(address)
+        return self.to_addressee
+
+    async def handle_DATA(self, server, _session, envelope):
+        self.seen += 1
+        if self.dropping:
+            server.transport.abort()
+            return self.answer
         if self.holding:
             self.held += 1
             while self.holding:

@@ -50,6 +50,7 @@ ledger.read                no   yes        yes  yes      yes       yes     yes
 person.manage              no   no         no   no       no        no      yes
 site.manage                no   no         no   no       no        no      yes
 mail.see                   no   no         no   no       no        no      yes
+mail.send_again            no   no         no   no       no        no      yes
 token.issue                no   yes        yes  yes      yes       yes     yes
 """
 _CELLS: Final = {"yes": True, "no": False}

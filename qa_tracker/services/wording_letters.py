@@ -1,4 +1,4 @@
-"""Mail and health in words: the one daily letter a person gets, and how the program itself is."""
+"""Mail in words: the one daily letter a person gets, and the letters that do not wait for it."""
 
 from __future__ import annotations
 
@@ -10,102 +10,241 @@ from django.utils.translation import gettext as _
 from django.utils.translation import gettext_noop as N_
 from django.utils.translation import ngettext
 
+from qa_tracker.core.workflow import CHECK_AWAITED
+from qa_tracker.records.queries.mail import GapRow
 from qa_tracker.records.queries.notices import NoticeRow
-from qa_tracker.services.health import Health
-from qa_tracker.services.wording_words import capital, day_words, level_of_notice_word, moment_words
+from qa_tracker.services.wording_words import (
+    day_words,
+    level_of_notice_word,
+    listed_all,
+    moment_words,
+    recipient_word,
+)
 
 WIDTH: Final = 78
-ORDER: Final = ("suspension", "overdue", "late", "due", "upcoming")
-REASONS: Final = {
-    "sweep_late": N_(
-        "The sweep last ran on %(swept)s, so no check moves and no notice is owed. Start the worker and the "
-        "beat again, or run the sweep by hand: manage.py sweep."
-    ),
-    "mail_late": N_(
-        "Mail has been waiting since %(waiting)s. Check that the worker runs and that the mail server answers."
-    ),
-    "mail_failed": N_(
-        "Some mail was given up after several attempts. Read the server's reply beside it, mend the cause and "
-        "send it again."
-    ),
+STANDING: Final = ("overdue", "late", "due", "upcoming")
+OWN: Final = ("", "responsible")
+TO_DO: Final = {
+    "suspension": N_("%(site)s, suspension verdict"),
+    "overdue": N_("%(site)s, overdue: grace is over, so do these first"),
+    "late": N_("%(site)s, late: the due day has passed, the days of grace are running"),
+    "due": N_("%(site)s, due: the due day has come"),
+    "upcoming": N_("%(site)s, open: these may be done already"),
 }
 
 
-def digest_letter(name: str, notices: list[NoticeRow], base_url: str) -> tuple[str, str]:
-    """Subject and plain text of the one mail of the day, or of an immediate mail on a suspension verdict."""
-    at_once = bool(notices) and all(notice.level == "suspension" for notice in notices)
-    subject = _suspension_subject(notices) if at_once else _subject(notices)
+def letter(
+    name: str, notices: Sequence[NoticeRow], base_url: str, gaps: Sequence[GapRow] = ()
+) -> tuple[str, str]:
+    """Subject and plain text of one mail; what was done since its notices were owed is told apart.
+
+    ``gaps``: times without a sweep that ended lately, which explain why levels were passed.
+    """
+    waiting = [each for each in notices if _still_waits(each)]
+    done = [each for each in notices if not _still_waits(each)]
+    kind = _kind(notices)
+    base_url = base_url.rstrip("/")
     parts = [
         _("Dear %(name)s,") % {"name": name},
-        _wrapped(_suspension_opening(len(notices)) if at_once else _opening(len(notices))),
-        *_sites(notices, base_url.rstrip("/")),
-        _wrapped(_closing(at_once=at_once)),
+        _wrapped(_opening(kind, len(waiting))),
+        *(_wrapped(_gap(each)) for each in gaps if any(notice.skipped for notice in waiting)),
+        *_own(waiting, base_url),
+        *_of_others(waiting, base_url),
+        *_done(done, base_url),
+        _wrapped(_closing(kind)),
     ]
-    return " ".join(subject.split()), "\n\n".join(parts) + "\n"
+    return " ".join(_subject(kind, waiting).split()), "\n\n".join(parts) + "\n"
 
 
-def _subject(notices: Sequence[NoticeRow]) -> str:
-    levels = [notice.level for notice in notices]
-    counts = [f"{levels.count(each)} {level_of_notice_word(each)}" for each in ORDER if each in levels]
-    return _("Leadline: %(counts)s") % {"counts": ", ".join(counts) or _("nothing due")}
+def _still_waits(notice: NoticeRow) -> bool:
+    """Whether there is still something to do: a suspension is no matter of what the check awaits."""
+    return notice.level == "suspension" or notice.check_state in ("", *CHECK_AWAITED)
 
 
-def _suspension_subject(notices: Sequence[NoticeRow]) -> str:
-    if len(notices) == 1:
-        return _("Leadline: suspension verdict on %(device)s") % {"device": notices[0].device_label}
-    return _("Leadline: %(count)d suspension verdicts") % {"count": len(notices)}
+def _kind(notices: Sequence[NoticeRow]) -> str:
+    """Why it is sent at once; ``digest`` where it is the day's letter. An empty key is one of a suspension."""
+    if notices and all(each.level == "suspension" for each in notices):
+        return "suspension"
+    kinds = {each.mail_kind for each in notices}
+    return kinds.pop() if len(kinds) == 1 and kinds <= {"electrical", "ladder"} else "digest"
 
 
-def _opening(count: int) -> str:
+def _subject(kind: str, notices: Sequence[NoticeRow]) -> str:
+    if not notices:
+        return _("Leadline: nothing left to do")
+    told = {"count": len(notices), "device": notices[0].device_label}
+    if kind == "suspension":
+        words = ngettext(
+            "Leadline: suspension verdict on %(device)s",
+            "Leadline: %(count)d suspension verdicts",
+            len(notices),
+        )
+    elif kind == "electrical":
+        words = ngettext(
+            "Leadline: electrical safety overdue on %(device)s",
+            "Leadline: %(count)d electrical safety checks overdue",
+            len(notices),
+        )
+    elif kind == "ladder":
+        words = ngettext(
+            "Leadline: still not done on %(device)s",
+            "Leadline: %(count)d checks still not done",
+            len(notices),
+        )
+    else:
+        return _("Leadline: %(counts)s") % {"counts": ", ".join(_counts(notices))}
+    return words % told
+
+
+def _counts(notices: Sequence[NoticeRow]) -> list[str]:
+    """How many stand how: the steps after overdue are overdue too."""
+    standings = [_standing(each.level) for each in notices]
+    order = ("suspension", *STANDING)
+    return [f"{standings.count(each)} {level_of_notice_word(each)}" for each in order if each in standings]
+
+
+def _standing(level: str) -> str:
+    return level if level in TO_DO else "overdue"
+
+
+def _opening(kind: str, count: int) -> str:
     if count == 0:
-        return _("Nothing is due.")
-    return ngettext(
-        "This check is yours to look after:", "These %(count)d checks are yours to look after:", count
-    ) % {"count": count}
+        return _("What this letter was to tell you of has been done meanwhile.")
+    words = {
+        "suspension": ngettext(
+            "A check gave the verdict suspension. Take the device out of clinical use; a physicist or clinical "
+            "engineer decides when it returns.",
+            "Checks gave the verdict suspension. Take the devices out of clinical use; a physicist or clinical "
+            "engineer decides when they return.",
+            count,
+        ),
+        "electrical": ngettext(
+            "A check of electrical safety is overdue. Have it done now. Until then a physicist or clinical "
+            "engineer decides, under your local rules, whether the device stays in use.",
+            "Checks of electrical safety are overdue. Have them done now. Until then a physicist or clinical "
+            "engineer decides, under your local rules, whether the devices stay in use.",
+            count,
+        ),
+        "ladder": ngettext(
+            "This check has reached the last step: it has stood undone for longest, and those who were told "
+            "before have not done it. See that it is done today, or excuse it with the reason.",
+            "These checks have reached the last step: they have stood undone for longest, and those who were "
+            "told before have not done them. See that they are done today, or excuse them with the reason.",
+            count,
+        ),
+        "digest": ngettext(
+            "A check waits. The address below opens it: there you enter it, say why it could not be done, or "
+            "say until when you know of it.",
+            "%(count)d checks wait, the most pressing of each site first. The address below each opens it: there "
+            "you enter it, say why it could not be done, or say until when you know of it.",
+            count,
+        ),
+    }
+    return words[kind] % {"count": count} if kind == "digest" else words[kind]
 
 
-def _suspension_opening(count: int) -> str:
-    return ngettext(
-        "A check gave the verdict suspension. Take the device out of clinical use; a physicist or clinical "
-        "engineer decides when it returns.",
-        "Checks gave the verdict suspension. Take the devices out of clinical use; a physicist or clinical "
-        "engineer decides when they return.",
-        count,
-    )
+def _gap(gap: GapRow) -> str:
+    return _(
+        "The program did not look at any check from %(began)s to %(ended)s, so nobody was told anything in that "
+        "time. You get this one letter for all of it; “not told before” says what each check passed meanwhile."
+    ) % {"began": moment_words(gap.began_at), "ended": moment_words(gap.ended_at)}
 
 
-def _closing(*, at_once: bool) -> str:
-    if at_once:
-        return _(
+def _closing(kind: str) -> str:
+    words = {
+        "suspension": _(
             "You get this at once because you answer for these devices as a physicist. If that is no longer "
             "so, speak to your administrator."
-        )
-    return _(
-        "You get this at most once a day, because plans name you for these checks. To hand them on, or to get "
-        "no such mail, speak to your administrator."
-    )
+        ),
+        "electrical": _("You get this at once because electrical safety does not wait for the day's letter."),
+        "ladder": _("You get this at once because nobody else is told after you."),
+        "digest": _(
+            "Such a letter comes at most once on a working day. If a check is not yours to do, ask whoever makes "
+            "the plans to hand it on; to get no such mail, speak to your administrator."
+        ),
+    }
+    return words[kind]
 
 
-def _sites(notices: Sequence[NoticeRow], base_url: str) -> list[str]:
-    """One paragraph a site and level, the worst first."""
+def _own(notices: Sequence[NoticeRow], base_url: str) -> list[str]:
+    """What the person is to do themself."""
+    return _by_site([each for each in notices if each.recipient in OWN or _is_plain(each)], base_url)
+
+
+def _is_plain(notice: NoticeRow) -> bool:
+    return notice.level == "suspension"
+
+
+def _of_others(notices: Sequence[NoticeRow], base_url: str) -> list[str]:
+    """What others are to do and have not: told by the ladder, rung by rung."""
     parts = []
-    for site in dict.fromkeys(notice.site_code for notice in notices):
-        for level in ORDER:
-            here = [each for each in notices if (each.site_code, each.level) == (site, level)]
-            if here:
-                told = {"site": site or _("Pool"), "level": level_of_notice_word(level)}
-                lines = [_("%(site)s, %(level)s") % told]
-                parts.append("\n".join([*lines, *(_line(each, base_url) for each in here)]))
+    others = [each for each in notices if each.recipient not in OWN and not _is_plain(each)]
+    for recipient in dict.fromkeys(each.recipient for each in others):
+        told = _(
+            "To you as %(recipient)s: others were to do these and have not. See that they are done, or excuse "
+            "them with the reason."
+        )
+        parts.append(_wrapped(told % {"recipient": recipient_word(recipient)}))
+        parts += _by_site([each for each in others if each.recipient == recipient], base_url, named=True)
     return parts
 
 
-def _line(notice: NoticeRow, base_url: str) -> str:
-    told = {"device": notice.device_label, "procedure": notice.procedure}
+def _done(notices: Sequence[NoticeRow], base_url: str) -> list[str]:
+    if not notices:
+        return []
+    lines = [_wrapped(_("Done meanwhile, with nothing left for you to do:"))]
+    return ["\n".join([*lines, *(_line(each, base_url, named=False) for each in notices)])]
+
+
+def _by_site(notices: Sequence[NoticeRow], base_url: str, *, named: bool = False) -> list[str]:
+    """One paragraph a site and level, the worst first; with ``named``, who is responsible."""
+    parts = []
+    for site in dict.fromkeys(notice.site_code for notice in notices):
+        here = [each for each in notices if each.site_code == site]
+        for level in sorted({each.level for each in here}, key=_order):
+            lines = [_wrapped(_heading(site, level))]
+            lines += [_line(each, base_url, named=named) for each in here if each.level == level]
+            parts.append("\n".join(lines))
+    return parts
+
+
+def _order(level: str) -> tuple[int, str]:
+    """Suspension, then the steps from the highest down, then how a check stands by date."""
+    if level == "suspension":
+        return 0, ""
+    if level in STANDING:
+        return 2 + STANDING.index(level), ""
+    return 1, "".join(chr(0x7F - ord(letter)) for letter in level)
+
+
+def _heading(site: str, level: str) -> str:
+    told = {"site": site or _("Pool"), "level": level_of_notice_word(level)}
+    if level in TO_DO:
+        return _(TO_DO[level]) % told
+    return _("%(site)s, %(level)s: these have stood undone for longest") % told
+
+
+def _line(notice: NoticeRow, base_url: str, *, named: bool) -> str:
+    told = {
+        "device": ", ".join(part for part in (notice.device_label, notice.location) if part),
+        "procedure": notice.procedure,
+        "who": notice.responsible,
+    }
     if notice.due_on is None:
         words = _("%(device)s: %(procedure)s, unplanned") % told
     else:
         words = _("%(device)s: %(procedure)s, due %(day)s") % (told | {"day": day_words(notice.due_on)})
-    return f"{_wrapped(words, '- ', '  ')}\n  {base_url}/checks/{notice.check_uid}/"
+    if named and notice.responsible:
+        words = _("%(check)s; %(who)s was to do it") % {"check": words, "who": notice.responsible}
+    lines = [_wrapped(words, "- ", "  ")]
+    if notice.skipped_levels:
+        lines.append(_wrapped(_passed(notice), "  ", "  "))
+    return "\n".join([*lines, f"  {base_url}/checks/{notice.check_uid}/"])
+
+
+def _passed(notice: NoticeRow) -> str:
+    levels = listed_all(level_of_notice_word(level) for level in notice.skipped_levels)
+    return _("Not told before: %(levels)s.") % {"levels": levels}
 
 
 def _wrapped(text: str, first: str = "", rest: str = "") -> str:
@@ -117,16 +256,3 @@ def _wrapped(text: str, first: str = "", rest: str = "") -> str:
         break_long_words=False,
         break_on_hyphens=False,
     )
-
-
-def health_sentence(health: Health) -> str:
-    """How the program is: one sentence for each reason that it is not well."""
-    if health.status == "starting":
-        return _("The program has started; the first sweep is still to come.")
-    told = {
-        "swept": moment_words(health.last_sweep) if health.last_sweep else _("no day yet"),
-        "waiting": moment_words(health.mail_waiting_since) if health.mail_waiting_since else _("no day yet"),
-    }
-    if health.reasons:
-        return " ".join(_(REASONS[reason]) % told for reason in health.reasons)
-    return capital(_("all is well; the sweep last ran on %(swept)s.") % told)

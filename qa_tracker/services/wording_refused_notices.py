@@ -26,4 +26,19 @@ NOTICES: Final = {
         "This is a check of electrical safety. Notices of it are never held: do the check, or let it be "
         "excused with the reason."
     ),
+    "mail.unknown": N_("There is no such mail here. Go back to the list and choose it there."),
+    "mail.not_given_up": N_(
+        "This mail is not given up: it was sent, waits, or someone else has seen to it meanwhile. Look at it again."
+    ),
+    "mail.reason_missing": N_(
+        "Say why this mail need not be sent any more; its notices stay in the program."
+    ),
+    "site.quiet_half": N_("Quiet hours have a beginning and an end. Fill in both, or neither."),
+    "site.quiet_hour_wrong": N_("%(hour)s is no hour of the day. Write one from 0 to 23."),
+    "site.quiet_all_day": N_(
+        "From an hour to the same hour is all day, so no mail would ever come. Choose another end, or leave both "
+        "empty."
+    ),
+    "site.hours_same": N_("The hours of this site are so already; nothing was changed."),
+    "location.hours_same": N_("This room is recorded so already; nothing was changed."),
 }

@@ -167,7 +167,6 @@ SITES: Final = {
     "location.name_missing": N_("The room has no name. Enter it."),
     "location.name_taken": N_("There is already a room called “%(name)s” at this site. Choose another name."),
     "holiday.all_known": N_("All these days off are already there, so nothing was added. Choose other days."),
-    "mail.unknown": N_("There is no such letter. Go back to the Mailbox and choose it there."),
     "leaf.unknown": N_("There is no such leaf in your sight. Go back to the Ledger and choose it there."),
     "pool.unknown": N_("There is no such pool in your sight. Choose one of those offered."),
     "pool.needs_two_sites": N_("A pool is shared by at least two sites. Name them."),

@@ -88,6 +88,7 @@ PERMITTED: Final = {
     "person.manage": N_("manage people and their roles"),
     "site.manage": N_("manage sites"),
     "mail.see": N_("see the mail that waits"),
+    "mail.send_again": N_("send mail again that was given up"),
     "token.issue": N_("issue tokens"),
 }
 """What each verb of ``core.roles`` lets a person do: "your role doesn't let you ..."."""

@@ -121,6 +121,14 @@ NOTICE_LEVELS: Final = {
     "late": N_("late"),
     "overdue": N_("overdue"),
     "suspension": N_("suspension verdict"),
+    "mail_failed": N_("mail given up"),
+}
+RECIPIENTS: Final = {
+    "responsible": N_("the person responsible"),
+    "lead": N_("lead sonographer"),
+    "physicist": N_("physicist"),
+    "engineer": N_("clinical engineer"),
+    "administrator": N_("administrator"),
 }
 QUALIFIERS: Final = {
     "=": N_("equals"),
@@ -198,8 +206,15 @@ def meaning_word(meaning: str) -> str:
 
 
 def level_of_notice_word(level: str) -> str:
-    """The word for what a notice says of its check."""
+    """The word for what a notice says of its check; t1, t2 ... are the steps after overdue."""
+    if level[:1] == "t" and level[1:].isdecimal():
+        return _("overdue, step %(step)s") % {"step": level[1:]}
     return word(NOTICE_LEVELS, level)
+
+
+def recipient_word(recipient: str) -> str:
+    """The word for the rung of the ladder by which someone is told."""
+    return word(RECIPIENTS, recipient)
 
 
 def qualifier_word(qualifier: str) -> str:

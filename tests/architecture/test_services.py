@@ -31,6 +31,8 @@ OF_THE_PROGRAM = {
     "dossiers.render": "a worker draws what a person asked for",
     "dossiers.release_stuck": "a worker that ended left it behind",
     "dossiers.request_at_console": "whoever holds the computer needs no account",
+    "mail.deliver": "a mail that no server takes is given up by itself",
+    "mail.deliver_waiting": "as one mail",
     "people.create_first_administrator": "nobody is there yet",
     "demo.load": "an invented hospital is loaded into an empty database",
     "shipped.publish_shipped": "what ships is published by no one of the hospital; adopting it is a person's act",

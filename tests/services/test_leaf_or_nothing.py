@@ -302,9 +302,6 @@ WITHOUT_A_LEAF = {
     "owed.mark_seen": "a reading mark is no record",
     "checkpoints.make": "a checkpoint signs what the leaves are and is none of them",
     "keys.seal_key": "makes a key, outside the database",
-    "mail.make_digests": "the state of a mail is no record; its notices are",
-    "mail.deliver": "the state of a mail is no record",
-    "mail.deliver_waiting": "the state of a mail is no record",
 }
 BULK_DOORS = ("history", "demo_")  # their leaves are appended together, by the door they come through
 

@@ -7,8 +7,9 @@ import datetime as dt
 import pytest
 from django.utils.timezone import now
 
-from qa_tracker.records.models import Digest
+from qa_tracker.records.models import Digest, DigestTry
 from qa_tracker.services import mail, sweep
+from qa_tracker.services.mail_server import NotTaken, hand_over
 from tests import builders
 from tests.mail_server import serving
 
@@ -57,17 +58,77 @@ def test_claimed_digest_is_left_to_its_worker_until_the_lease_ends(server, diges
     assert mail.deliver(digest_id=digest.pk, at=now())
 
 
-def test_refused_mail_is_retried_after_1_5_15_60_minutes_then_given_up(server, digest):
-    server.answer = "451 4.3.0 try again later"
+def outcomes(digest):
+    return list(DigestTry.objects.filter(digest=digest).order_by("id").values_list("outcome", flat=True))
+
+
+def try_again(digest, times):
+    """Deliver as often as this, each time when the mail may be tried again; what each try led to."""
     waits = []
-    for _attempt in range(5):
+    for _attempt in range(times):
         at = now()
         assert not mail.deliver(digest_id=digest.pk, at=at)
         digest.refresh_from_db()
         waits.append((digest.due_at - at).total_seconds() / 60 if digest.state == "waiting" else digest.state)
         Digest.objects.filter(pk=digest.pk).update(due_at=at)
-    assert waits == [1, 5, 15, 60, "failed"]
-    assert "451" in digest.reply
+    return waits
+
+
+def test_refused_mail_is_retried_after_1_5_15_60_minutes_then_given_up(server, digest):
+    server.answer = "451 4.3.0 try again later"
+    assert try_again(digest, 5) == [1, 5, 15, 60, "failed"]
+    assert outcomes(digest) == ["put_off"] * 4 + ["given_up"]
+    assert set(DigestTry.objects.values_list("reply", flat=True)) == {"451 4.3.0 try again later"}
+
+
+@pytest.mark.parametrize("place", ["answer", "to_addressee"])
+def test_mail_refused_for_good_is_given_up_at_once(server, digest, place):
+    setattr(server, place, "550 5.1.1 no such mailbox")
+    assert try_again(digest, 1) == ["failed"]
+    assert outcomes(digest) == ["given_up"]
+    assert digest.reply == "550 5.1.1 no such mailbox"
+
+
+def test_connection_that_drops_after_the_data_is_tried_again_with_the_same_message_id(server, digest):
+    server.dropping = True
+    assert try_again(digest, 1) == [1]
+    server.dropping = False
+    assert mail.deliver(digest_id=digest.pk, at=now())
+    assert (server.seen, server.message_ids) == (2, {digest.message_id})
+    assert outcomes(digest) == ["put_off", "sent"]
+
+
+@pytest.mark.parametrize("address", ["x@y.invalid\r\nRCPT TO:<z@y.invalid>", "nürse@tarnwater.invalid"])
+def test_address_that_can_not_be_written_is_given_up_and_sends_nothing(server, digest, address):
+    digest.person.email = address
+    with pytest.raises(NotTaken) as refused:
+        hand_over(mail._letter(digest), address)
+    assert (refused.value.for_good, server.seen) == (True, 0)
+
+
+def test_try_that_was_cut_off_is_kept_and_counts_as_none(server, digest):
+    for _kill in range(6):
+        assert mail.claim(digest_id=digest.pk)
+        DigestTry.objects.create(digest=digest, at=now(), outcome="begun")
+        Digest.objects.filter(pk=digest.pk).update(lease_until=now() - dt.timedelta(seconds=1))
+    server.answer = "451 4.3.0 try again later"
+    assert try_again(digest, 1) == [1]
+    assert outcomes(digest) == ["begun"] * 6 + ["put_off"]
+
+
+def test_late_refusal_leaves_alone_a_mail_that_someone_else_has_claimed(server, digest, monkeypatch):
+    server.answer = "451 4.3.0 try again later"
+    stolen = mail._put_off
+
+    def late(*given):
+        Digest.objects.filter(pk=digest.pk).update(lease_until=now() - dt.timedelta(seconds=1))
+        assert mail.claim(digest_id=digest.pk)
+        stolen(*given)
+
+    monkeypatch.setattr(mail, "_put_off", late)
+    assert not mail.deliver(digest_id=digest.pk, at=now())
+    digest.refresh_from_db()
+    assert (digest.state, digest.attempts) == ("claimed", 2)
 
 
 def test_unreachable_server_loses_nothing(settings, digest):

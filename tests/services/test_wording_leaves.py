@@ -224,6 +224,23 @@ TABLE = [
         "notices.hold_ended", {"held": "snoozed"}, "Probe is back",
         f"{HD} ended a hold of the notices of {TERN}: Probe is back.",
     ),
+    (
+        "site.hours_set", {"digest_hour": 7, "quiet_from_hour": 20, "quiet_until_hour": 6}, "",
+        f"{HD} set the hours of a site's mail: from 7:00, quiet from 20:00 to 6:00.",
+    ),
+    (
+        "location.hours_set", {"name": "Theatre 3", "round_the_clock": True}, "",
+        f"{HD} recorded the hours of the room Theatre 3: round the clock.",
+    ),
+    (
+        "mail.given_up", {"mail": "digest/1", "answer": "550", "notices": ["one"]}, "",
+        f"{HD} gave a mail up and told the administrators of it (1 notice).",
+    ),
+    ("mail.sent_again", {"mails": ["one", "two"]}, "", f"{HD} had 2 mails sent again after they were given up."),
+    (
+        "mail.left_unsent", {"mail": "digest/1"}, "Has left",
+        f"{HD} decided that a mail which was given up is not sent: Has left.",
+    ),
 ]  # fmt: skip
 
 

@@ -10,6 +10,7 @@ from babel.messages.extract import extract_from_dir
 
 from qa_tracker.core.conformity import QUALIFIERS
 from qa_tracker.core.judgement import VERDICT_OF_CODE
+from qa_tracker.core.ladder import RECIPIENTS
 from qa_tracker.core.library_shapes import (
     ARRAY_KINDS,
     CONTACT_CLASSES,
@@ -19,11 +20,11 @@ from qa_tracker.core.library_shapes import (
     LEVELS,
 )
 from qa_tracker.core.roles import ROLES
+from qa_tracker.core.schedule import LEVELS as STANDINGS
 from qa_tracker.core.units import UNITS
 from qa_tracker.core.workflow import CHECK, DEVICE, DOSSIER, FAULT
 from qa_tracker.services import wording, wording_words
 from qa_tracker.services.entries import REASONS
-from qa_tracker.services.owed import CHANNELS
 
 SERVICES = Path(wording.__file__).parent
 TABLES = [
@@ -38,7 +39,8 @@ TABLES = [
     ("ARRAYS", ARRAY_KINDS),
     ("CONTACTS", CONTACT_CLASSES),
     ("REASONS", REASONS),
-    ("NOTICE_LEVELS", CHANNELS),
+    ("NOTICE_LEVELS", {*STANDINGS, "suspension", "mail_failed"}),
+    ("RECIPIENTS", RECIPIENTS),
     ("QUALIFIERS", QUALIFIERS),
 ]
 MEANINGS = {
@@ -76,6 +78,8 @@ def test_every_meaning_of_a_signature_has_a_word():
         ("reason_word", "isolation_room", "in an isolation room"),
         ("meaning_word", "accepted", "accepted into use"),
         ("level_of_notice_word", "upcoming", "open"),
+        ("level_of_notice_word", "t2", "overdue, step 2"),
+        ("recipient_word", "lead", "lead sonographer"),
         ("qualifier_word", ">", "more than"),
         ("unit_symbol", "uA", "µA"),
         ("unit_symbol", "1", ""),
