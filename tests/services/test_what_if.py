@@ -21,16 +21,19 @@ from qa_tracker.services.what_if import would_have_said
 from tests import builders
 
 
+def another_check(ward):
+    return checks.open_unplanned(
+        device=ward.probe.uid, procedure=builders.MONTHLY, actor=ward.technician, at=now()
+    )
+
+
 @pytest.fixture(scope="module")
 def two_checks(ward_of_the_module, django_db_blocker):
     """The module's ward with two checks of one probe: one dark element, then none."""
     ward = ward_of_the_module
     with django_db_blocker.unblock():
         for count in ("1", "0"):
-            check = checks.open_unplanned(
-                device=ward.probe.uid, procedure=builders.MONTHLY, actor=ward.technician, at=now()
-            )
-            builders.submitted(check, ward.technician, dark_elements=count)
+            builders.submitted(another_check(ward), ward.technician, dark_elements=count)
 
 
 @pytest.fixture
@@ -128,7 +131,7 @@ def test_unit_that_differs_would_leave_every_reading_not_assessable(ward):
 
 
 def test_check_that_was_sent_back_and_done_again_counts_once(ward):
-    check = ward.check
+    check = another_check(ward)
     first = builders.submitted(check, ward.technician, dark_elements="1")
     seen = {"shown_sha256": first.shown_sha256, "password": builders.PASSWORD, "actor": ward.physicist}
     checks.send_back(check=check.uid, remark="count again", at=now(), **seen)
@@ -176,7 +179,7 @@ def test_limit_that_stood_beside_the_one_that_decided_is_asked_too(ward):
         actor=ward.physicist,
         at=now(),
     )
-    builders.submitted(ward.check, ward.technician, dark_elements="2")
+    builders.submitted(another_check(ward), ward.technician, dark_elements="2")
     answer = would_have_said(edition("2", "2", id="BESIDE"), Extent(), EVERYTHING)
     assert outcomes(answer) == {("conforming", "remedial"): 1}
     assert answer.shown[0].then.criterion.code == "BESIDE"
