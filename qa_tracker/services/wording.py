@@ -11,6 +11,7 @@ from qa_tracker.services.wording_findings import problem_sentence, seal_sentence
 from qa_tracker.services.wording_health import health_sentence
 from qa_tracker.services.wording_leaves import leaf_sentence
 from qa_tracker.services.wording_letters import letter
+from qa_tracker.services.wording_mail import hold_word, mail_kind_word, mail_state_word, try_word
 from qa_tracker.services.wording_refusals import refusal
 from qa_tracker.services.wording_verdicts import verdict_sentence
 from qa_tracker.services.wording_words import (
@@ -43,11 +44,14 @@ __all__ = [
     "due_words",
     "fault_state_word",
     "health_sentence",
+    "hold_word",
     "kind_word",
     "leaf_sentence",
     "letter",
     "level_of_notice_word",
     "level_word",
+    "mail_kind_word",
+    "mail_state_word",
     "meaning_word",
     "problem_sentence",
     "qualifier_word",
@@ -60,6 +64,7 @@ __all__ = [
     "seal_sentence",
     "source_line",
     "standing_word",
+    "try_word",
     "unit_symbol",
     "verdict_sentence",
     "verdict_word",

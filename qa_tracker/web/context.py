@@ -52,6 +52,8 @@ class Frame:
     name: str = ""
     notices: int = 0
     unhealthy: str = ""
+    swept: str = ""
+    to_mail: bool = False
     demonstration: bool = False
 
 
@@ -65,12 +67,14 @@ def _frame(request: HttpRequest) -> Frame:
     if person is None or not person.is_authenticated:
         return Frame(demonstration=holds_demonstration())
     at = now()
-    known = health(at=at)
+    known, grants = health(at=at), grants_of(person.pk)
     return Frame(
-        _pages(request.path, grants_of(person.pk), at.date()),
+        _pages(request.path, grants, at.date()),
         person.name,
         notices.unseen_count(person.pk),
         wording.health_sentence(known) if known.status == "unhealthy" else "",
+        f"{known.last_sweep:%H:%M} UTC" if known.last_sweep else "",
+        may_somewhere(grants, "mail.see", at.date()),
         holds_demonstration(),
     )
 

@@ -19,6 +19,7 @@ from qa_tracker.core.schedule_days import zone_of
 from qa_tracker.core.shapes import Shape, svg_path
 from qa_tracker.core.shapes import verdict_mark as mark_shapes
 from qa_tracker.services import wording
+from qa_tracker.services.wording_words import listed_all
 from qa_tracker.web.refused import Refused
 
 register = template.Library()
@@ -40,6 +41,11 @@ WORDS = {
     "unit": wording.unit_symbol,
     "qualifier": wording.qualifier_word,
     "verdict": wording.verdict_word,
+    "recipient": wording.recipient_word,
+    "hold": wording.hold_word,
+    "mail_kind": wording.mail_kind_word,
+    "mail_state": wording.mail_state_word,
+    "try": wording.try_word,
 }
 
 
@@ -109,6 +115,18 @@ def line_label(judged: Judged, share: str) -> str:
 def word(code: str, table: str) -> str:
     """The word for a code: ``{{ device.state|word:"device_state" }}``."""
     return WORDS[table](code) if code else ""
+
+
+@register.filter
+def mail_stands(state: str) -> str:
+    """How the mail of a notice stands, also where none carries it yet."""
+    return wording.mail_state_word(state)
+
+
+@register.filter
+def notice_levels(levels: Iterable[str]) -> str:
+    """Levels of notices, joined for reading."""
+    return listed_all(wording.level_of_notice_word(level) for level in levels)
 
 
 @register.filter

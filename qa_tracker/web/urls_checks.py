@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from django.urls import path
 
-from qa_tracker.web.views import attempts, checks, due, entry, notices, signing
+from qa_tracker.web.views import attempts, checks, due, entry, holds, notices, signing
 
 urlpatterns = [
     path("", due.show, name="due"),
@@ -18,5 +18,8 @@ urlpatterns = [
     path("checks/<uuid:uid>/send-back/", checks.send_back, name="check-send-back"),
     path("checks/<uuid:uid>/not-tested/", attempts.not_tested, name="check-not-tested"),
     path("checks/<uuid:uid>/excuse/", attempts.excuse, name="check-excuse"),
+    path("checks/<uuid:uid>/acknowledge/", holds.acknowledge, name="check-acknowledge"),
+    path("checks/<uuid:uid>/snooze/", holds.snooze, name="check-snooze"),
+    path("checks/<uuid:uid>/holds/<uuid:hold>/end/", holds.end, name="hold-end"),
     path("devices/<uuid:uid>/check/<slug:procedure_code>/", attempts.open_unplanned, name="unplanned-check"),
 ]

@@ -90,11 +90,13 @@ def tries_of(digest_ids: Collection[int]) -> dict[int, tuple[TryRow, ...]]:
     return {key: tuple(found) for key, found in tries.items()}
 
 
-def list_digests(scope: Scope, *states: str, most: int = 50) -> list[DigestRow]:
+def list_digests(scope: Scope, *states: str, digest_id: int | None = None, most: int = 50) -> list[DigestRow]:
     """Mails to people whose duties are at a site in sight, newest first; of every state where none is named."""
     found = digests_in(scope)
     if states:
         found = found.filter(state__in=states)
+    if digest_id is not None:
+        found = found.filter(pk=digest_id)
     digests = list(found.select_related("person").prefetch_related("notices").order_by("-id")[:most])
     tries = tries_of([digest.pk for digest in digests])
     return [_row(digest, tries.get(digest.pk, ())) for digest in digests]
@@ -103,6 +105,14 @@ def list_digests(scope: Scope, *states: str, most: int = 50) -> list[DigestRow]:
 def count_digests(scope: Scope, *states: str) -> int:
     """How many mails in sight are in one of these states."""
     return digests_in(scope).filter(state__in=states).count()
+
+
+def count_pending(scope: Scope) -> int:
+    """How many mail notices wait for the letter of a person whose duties are at a site in sight."""
+    found = NoticeMail.objects.filter(digest=None, notice__person__is_active=True)
+    if not scope.whole_group:
+        found = found.filter(notice__person__duties_site_id__in=scope.site_ids())
+    return found.count()
 
 
 def digests_in(scope: Scope) -> QuerySet[Digest]:

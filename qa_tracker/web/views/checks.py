@@ -16,6 +16,7 @@ from django.views.decorators.debug import sensitive_post_parameters
 from django.views.decorators.http import require_GET, require_POST
 
 from qa_tracker.core.errors import DomainError, NotFound
+from qa_tracker.core.schedule import local_day
 from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records.queries import checks as queries
 from qa_tracker.records.queries import devices, library, notices, sites, submissions
@@ -27,6 +28,7 @@ from qa_tracker.services import checks, excuses, guards, wording
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.presenters.check import shown_submission, to_countersign
 from qa_tracker.web.presenters.due import zone_at
+from qa_tracker.web.presenters.notices import holding
 from qa_tracker.web.refused import Refused
 from qa_tracker.web.views.due import enterable
 
@@ -69,6 +71,8 @@ def _page(
         ],
         "attempts": submissions.attempts_of(row.id),
         "notices": notices.notices_of_check(row.id),
+        "awaited": CHECK_AWAITED,
+        "holding": holding(request.user, row, at, local_day(at, zone)),
         "refused": refused,
         "remark": request.POST.get("remark", ""),
         "may_enter": row.state in CHECK_AWAITED and bool(enterable(request.user, [row], at)),
