@@ -1,8 +1,7 @@
-"""Evidence: dossiers, leaves and checkpoints of the ledger, and the notices one was owed."""
+"""Evidence: dossiers, and leaves and checkpoints of the ledger."""
 
 from __future__ import annotations
 
-import datetime as dt
 import uuid
 from typing import Any
 
@@ -15,7 +14,7 @@ from qa_tracker.api.nouns import NounRouter
 from qa_tracker.api.schemas import LARGEST_KEY, Cursor, Limit, Moment, page
 from qa_tracker.core.errors import NotFound
 from qa_tracker.records.queries import dossiers as rows
-from qa_tracker.records.queries import ledger, notices
+from qa_tracker.records.queries import ledger
 from qa_tracker.services import dossiers
 from qa_tracker.services.wording import leaf_sentence
 from qa_tracker.tasks.beat import RENDER_DOSSIER
@@ -70,20 +69,6 @@ class CheckpointOut(Schema):
     root: str
     at: Moment
     note: str
-
-
-class NoticeOut(Schema):
-    """A message owed to the caller about a check."""
-
-    uid: uuid.UUID
-    check_uid: uuid.UUID
-    device_label: str
-    procedure: str
-    site_code: str
-    due_on: dt.date | None
-    level: str
-    at: Moment
-    skipped: str
 
 
 @router.makes("/devices/{uuid:uid}/dossiers", DossierOut, "requestDossier")
@@ -162,9 +147,3 @@ def list_checkpoints(request: ApiRequest, limit: Limit = 50) -> list[dict[str, A
     """Checkpoints, newest first."""
     request.auth.check_may_somewhere("ledger.read")
     return [vars(each) | {"root": each.root.hex()} for each in ledger.list_checkpoints(limit)]
-
-
-@router.reads("/notices", list[NoticeOut], "listNotices")
-def list_notices(request: ApiRequest) -> list[notices.NoticeRow]:
-    """The caller's own notices, newest first."""
-    return notices.notices_for(request.auth.actor.pk)

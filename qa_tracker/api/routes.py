@@ -2,7 +2,18 @@
 
 from __future__ import annotations
 
-from qa_tracker.api import baselines, checks, devices, errors, evidence, faults, library, places, signing
+from qa_tracker.api import (
+    baselines,
+    checks,
+    devices,
+    errors,
+    evidence,
+    faults,
+    library,
+    notices,
+    places,
+    signing,
+)
 from qa_tracker.api.authentication import BearerToken
 from qa_tracker.api.openapi import JsonApi
 
@@ -19,5 +30,5 @@ api = JsonApi(
     auth=BearerToken(),
 )
 errors.install(api)
-for noun in (places, devices, library, baselines, checks, signing, faults, evidence):
+for noun in (places, devices, library, baselines, checks, signing, faults, evidence, notices):
     api.add_router("", noun.router)

@@ -70,7 +70,10 @@ def end_hold(*, hold: uuid.UUID, reason: str, actor: Person, at: dt.datetime) ->
     held = NoticeHold.objects.filter(uid=hold).select_related("check_of").first()
     if held is None:
         raise NotFound("hold.unknown")
-    row = finding.check(actor, held.check_of.uid, at)
+    try:
+        row = finding.check(actor, held.check_of.uid, at)
+    except NotFound as error:
+        raise NotFound("hold.unknown") from error
     if held.person_id != actor.pk:
         check_may(actor, "check.acknowledge", _site_id(row, actor), at)
     if held.ended_at is not None or held.until_at <= at:

@@ -5,11 +5,12 @@ from __future__ import annotations
 import uuid
 from collections.abc import Callable
 from dataclasses import dataclass
+from datetime import timedelta
 
 from django.utils.timezone import now
 
 from qa_tracker.records.models import CriteriaSet, Edition
-from qa_tracker.services import baselines, devices
+from qa_tracker.services import baselines, devices, holds
 from qa_tracker.services.baselines import Value
 from tests import builders
 from tests.api.world import ROLES, World
@@ -126,6 +127,14 @@ def fault(world: World) -> dict:
     return {"device": world.ward.probe.uid, "grade": "remedial", "seen": "Scuffed"}
 
 
+def holding(world: World) -> dict:
+    return {"reason": "Away", "until_on": now().date() + timedelta(days=4)}
+
+
+def held(world: World) -> uuid.UUID:
+    return holds.acknowledge(check=world.waiting.uid, **holding(world), actor=world.ward.physicist, at=now()).uid
+
+
 CALLS = {
     "listSites": Call(ALL, done=200),
     "listPools": Call(ALL, done=200),
@@ -182,4 +191,9 @@ CALLS = {
     "listLeaves": Call(ALL, done=200),
     "listCheckpoints": Call(ALL, done=200),
     "listNotices": Call(ALL, done=200),
+    "listNoticesOfCheck": Call(ALL, check, done=200),
+    "listHolds": Call(ALL, check, done=200),
+    "acknowledgeCheck": Call(PLANNING, waiting, holding),
+    "snoozeCheck": Call(WARD, waiting, holding),
+    "endHold": Call(PLANNING, held, lambda world: {"reason": "Back"}, 200),
 }
