@@ -23,6 +23,7 @@ from qa_tracker.services.wording_words import (
 
 WIDTH: Final = 78
 STANDING: Final = ("overdue", "late", "due", "upcoming")
+NEVER_MAILED: Final = ("upcoming",)
 OWN: Final = ("", "responsible")
 TO_DO: Final = {
     "suspension": N_("%(site)s, suspension verdict"),
@@ -46,7 +47,7 @@ def letter(
     base_url = base_url.rstrip("/")
     parts = [
         _("Dear %(name)s,") % {"name": name},
-        _wrapped(_opening(kind, len(waiting))),
+        _wrapped(_opening(_said_as(kind, waiting), len(waiting))),
         *(_wrapped(_gap(each)) for each in gaps if any(notice.skipped for notice in waiting)),
         *_own(waiting, base_url),
         *_of_others(waiting, base_url),
@@ -54,6 +55,16 @@ def letter(
         _wrapped(_closing(kind)),
     ]
     return " ".join(_subject(kind, waiting).split()), "\n\n".join(parts) + "\n"
+
+
+def _said_as(kind: str, notices: Sequence[NoticeRow]) -> str:
+    """How a letter opens: the day's letter otherwise where it tells of nothing but what others were to do."""
+    return "of_others" if kind == "digest" and not any(_is_own(each) for each in notices) else kind
+
+
+def _is_own(notice: NoticeRow) -> bool:
+    """Whether it is for the person to do; a suspension is for whoever reads of it."""
+    return notice.recipient in OWN or notice.level == "suspension"
 
 
 def _still_waits(notice: NoticeRow) -> bool:
@@ -132,6 +143,12 @@ def _opening(kind: str, count: int) -> str:
             "told before have not done them. See that they are done today, or excuse them with the reason.",
             count,
         ),
+        "of_others": ngettext(
+            "A check that others were to do has not been done. The address below opens it.",
+            "%(count)d checks that others were to do have not been done, the most pressing of each site first. The "
+            "address below each opens it.",
+            count,
+        ),
         "digest": ngettext(
             "A check waits. The address below opens it: there you enter it, say why it could not be done, or "
             "say until when you know of it.",
@@ -140,7 +157,7 @@ def _opening(kind: str, count: int) -> str:
             count,
         ),
     }
-    return words[kind] % {"count": count} if kind == "digest" else words[kind]
+    return words[kind] % {"count": count} if kind in ("digest", "of_others") else words[kind]
 
 
 def _gap(gap: GapRow) -> str:
@@ -168,21 +185,17 @@ def _closing(kind: str) -> str:
 
 def _own(notices: Sequence[NoticeRow], base_url: str) -> list[str]:
     """What the person is to do themself."""
-    return _by_site([each for each in notices if each.recipient in OWN or _is_plain(each)], base_url)
-
-
-def _is_plain(notice: NoticeRow) -> bool:
-    return notice.level == "suspension"
+    return _by_site([each for each in notices if _is_own(each)], base_url)
 
 
 def _of_others(notices: Sequence[NoticeRow], base_url: str) -> list[str]:
     """What others are to do and have not: told by the ladder, rung by rung."""
     parts = []
-    others = [each for each in notices if each.recipient not in OWN and not _is_plain(each)]
+    others = [each for each in notices if not _is_own(each)]
     for recipient in dict.fromkeys(each.recipient for each in others):
         told = _(
-            "To you as %(recipient)s: others were to do these and have not. See that they are done, or excuse "
-            "them with the reason."
+            "Told to you as %(recipient)s. See that they are done, excuse them with the reason, or say there until "
+            "when you know of them."
         )
         parts.append(_wrapped(told % {"recipient": recipient_word(recipient)}))
         parts += _by_site([each for each in others if each.recipient == recipient], base_url, named=True)
@@ -202,7 +215,7 @@ def _by_site(notices: Sequence[NoticeRow], base_url: str, *, named: bool = False
     for site in dict.fromkeys(notice.site_code for notice in notices):
         here = [each for each in notices if each.site_code == site]
         for level in sorted({each.level for each in here}, key=_order):
-            lines = [_wrapped(_heading(site, level))]
+            lines = [_wrapped(_heading(site, level, named=named))]
             lines += [_line(each, base_url, named=named) for each in here if each.level == level]
             parts.append("\n".join(lines))
     return parts
@@ -217,8 +230,10 @@ def _order(level: str) -> tuple[int, str]:
     return 1, "".join(chr(0x7F - ord(letter)) for letter in level)
 
 
-def _heading(site: str, level: str) -> str:
+def _heading(site: str, level: str, *, named: bool) -> str:
     told = {"site": site or _("Pool"), "level": level_of_notice_word(level)}
+    if named:
+        return _("%(site)s, %(level)s:") % told
     if level in TO_DO:
         return _(TO_DO[level]) % told
     return _("%(site)s, %(level)s: these have stood undone for longest") % told
@@ -237,14 +252,13 @@ def _line(notice: NoticeRow, base_url: str, *, named: bool) -> str:
     if named and notice.responsible:
         words = _("%(check)s; %(who)s was to do it") % {"check": words, "who": notice.responsible}
     lines = [_wrapped(words, "- ", "  ")]
-    if notice.skipped_levels:
-        lines.append(_wrapped(_passed(notice), "  ", "  "))
+    if passed := [level for level in notice.skipped_levels if level not in NEVER_MAILED]:
+        lines.append(_wrapped(_passed(passed), "  ", "  "))
     return "\n".join([*lines, f"  {base_url}/checks/{notice.check_uid}/"])
 
 
-def _passed(notice: NoticeRow) -> str:
-    levels = listed_all(level_of_notice_word(level) for level in notice.skipped_levels)
-    return _("Not told before: %(levels)s.") % {"levels": levels}
+def _passed(levels: Sequence[str]) -> str:
+    return _("Not told before: %(levels)s.") % {"levels": listed_all(map(level_of_notice_word, levels))}
 
 
 def _wrapped(text: str, first: str = "", rest: str = "") -> str:

@@ -73,7 +73,7 @@ def _frame(request: HttpRequest) -> Frame:
         person.name,
         notices.unseen_count(person.pk),
         wording.health_sentence(known) if known.status == "unhealthy" else "",
-        f"{known.last_sweep:%H:%M} UTC" if known.last_sweep else "",
+        f"{known.last_sweep:%H:%M}" if known.last_sweep else "",
         may_somewhere(grants, "mail.see", at.date()),
         holds_demonstration(),
     )

@@ -74,18 +74,17 @@ your administrator.
 AFTER_A_PAUSE = """\
 Dear Dr Maren Oduya,
 
-A check waits. The address below opens it: there you enter it, say why it
-could not be done, or say until when you know of it.
+A check that others were to do has not been done. The address below opens it.
 
 The program did not look at any check from 6 March 2025 at 07:00 UTC to 9
 March 2025 at 07:00 UTC, so nobody was told anything in that time. You get
 this one letter for all of it; “not told before” says what each check passed
 meanwhile.
 
-To you as physicist: others were to do these and have not. See that they are
-done, or excuse them with the reason.
+Told to you as physicist. See that they are done, excuse them with the reason,
+or say there until when you know of them.
 
-AG, overdue, step 1: these have stood undone for longest
+AG, overdue, step 1:
 - Pellantis PX Tern 7741: Monthly in-air and visual, due 5 March 2025; Hywel
   Dragić was to do it
   Not told before: late and overdue.
@@ -109,7 +108,7 @@ def test_digest_lists_what_is_owed_by_site_the_worst_first():
 
 
 def test_digest_after_a_pause_says_what_was_passed_over_and_whose_check_it_is():
-    notice = _notice(1, "t1", recipient="physicist", skipped="late,overdue")
+    notice = _notice(1, "t1", recipient="physicist", skipped="upcoming,late,overdue")
     subject, body = letter("Dr Maren Oduya", [notice], BASE, [GAP])
     assert (subject, body) == ("Leadline: 1 overdue", AFTER_A_PAUSE)
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import Any
 
@@ -15,6 +16,26 @@ from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.holds import HoldRow
 from qa_tracker.records.queries.notices import NoticeRow
 from qa_tracker.services import guards, holds, wording
+
+
+@dataclass(frozen=True)
+class Told:
+    """One person told of one level: ``here`` in the program, and by the mail that carries the notice."""
+
+    row: NoticeRow
+    here: bool
+    mail: NoticeRow | None
+
+
+def who_was_told(notices: Iterable[NoticeRow]) -> list[Told]:
+    """Notices of a check by person and level, in the order in which they were owed."""
+    found: dict[tuple[str, str, dt.datetime], dict[str, NoticeRow]] = {}
+    for each in notices:
+        found.setdefault((each.person, each.level, each.at), {})[each.channel] = each
+    return [
+        Told(next(iter(channels.values())), "in_app" in channels, channels.get("mail"))
+        for channels in found.values()
+    ]
 
 
 @dataclass(frozen=True)

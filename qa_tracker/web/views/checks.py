@@ -28,7 +28,7 @@ from qa_tracker.services import checks, excuses, guards, wording
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.presenters.check import shown_submission, to_countersign
 from qa_tracker.web.presenters.due import zone_at
-from qa_tracker.web.presenters.notices import holding
+from qa_tracker.web.presenters.notices import holding, who_was_told
 from qa_tracker.web.refused import Refused
 from qa_tracker.web.views.due import enterable
 
@@ -70,7 +70,7 @@ def _page(
             shown_submission(each, library.edition_by_id(each.edition_id)) for each in reversed(done)
         ],
         "attempts": submissions.attempts_of(row.id),
-        "notices": notices.notices_of_check(row.id),
+        "told": who_was_told(notices.notices_of_check(row.id)),
         "awaited": CHECK_AWAITED,
         "holding": holding(request.user, row, at, local_day(at, zone)),
         "refused": refused,
