@@ -24,6 +24,8 @@ class SiteRow:
     digest_hour: int
     remedial_instruction: str
     suspension_instruction: str
+    quiet_from_hour: int | None
+    quiet_until_hour: int | None
 
 
 @dataclass(frozen=True)
@@ -35,6 +37,7 @@ class LocationRow:
     site_id: int
     name: str
     position: int
+    round_the_clock: bool
 
 
 @dataclass(frozen=True)
@@ -52,7 +55,7 @@ def site_row(site: Site) -> SiteRow:
     weekend = frozenset(int(day) for day in site.weekend.split(",") if day)
     return SiteRow(
         site.id, site.uid, site.code, site.name, site.time_zone, weekend, site.digest_hour,
-        site.remedial_instruction, site.suspension_instruction,
+        site.remedial_instruction, site.suspension_instruction, site.quiet_from_hour, site.quiet_until_hour,
     )  # fmt: skip
 
 
@@ -78,7 +81,7 @@ def list_locations(scope: Scope, site_id: int | None = None) -> list[LocationRow
     """Rooms in sight, by site and the order they are walked in."""
     rooms = nouns(Location) if site_id is None else nouns(Location, site_id=site_id)
     rows = [
-        LocationRow(room.id, room.uid, room.site_id, room.name, room.position)
+        LocationRow(room.id, room.uid, room.site_id, room.name, room.position, room.round_the_clock)
         for room in rooms
         if scope.holds(room.site_id)
     ]
