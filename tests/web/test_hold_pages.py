@@ -110,3 +110,13 @@ def test_page_says_that_a_mail_waits_for_the_days_letter(ward):
     with ledger.command("notices.owed", actor=None, at=now()) as act:
         owed.owe(act, ward.check.pk, ward.check.uid, Owed(ward.technician.pk, "responsible", "due", ()))
     assert "by mail: waits for the day&#x27;s letter" in page(ward.technician, ward.check)
+
+
+def test_due_says_who_knows_of_a_check_and_until_when(ward):
+    client = builders.signed_in(ward.technician)
+    assert "#known" in client.get("/").content.decode()
+    post(ward.technician, "check-acknowledge", ward.check, reason="Away", until_on=in_days(3))
+    shown = client.get("/").content.decode()
+    assert "Acknowledged by <bdi>Ifeoma Castellane</bdi> until" in shown
+    assert "due today" in shown.lower()
+    assert "#known" not in shown

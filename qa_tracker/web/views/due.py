@@ -10,7 +10,7 @@ from django.http import HttpRequest, HttpResponse
 from django.shortcuts import render
 from django.utils.timezone import now
 
-from qa_tracker.records.queries import checks, devices, library, sites
+from qa_tracker.records.queries import checks, devices, holds, library, sites
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.services import guards
 from qa_tracker.web.presenters.due import due_sites
@@ -27,8 +27,9 @@ def show(request: HttpRequest) -> HttpResponse:
     rows = checks.due_checks(scope, at)
     shown = [row for row in rows if _fits(row, wanted, request.user.pk)]
     by_id = {site.id: site for site in known}
+    held = holds.holds_of([row.id for row in shown], at)
     context = {
-        "sites": due_sites(shown, by_id, enterable(request.user, shown, at), at),
+        "sites": due_sites(shown, by_id, enterable(request.user, shown, at), at, held),
         "choices": known,
         "rooms": sorted({row.location for row in rows if row.location}),
         "wanted": wanted,
