@@ -22,6 +22,9 @@ from qa_tracker.services import guards
 from qa_tracker.services.finding import person as find_person
 from qa_tracker.services.guards import check_may, required
 
+LONGEST_ADDRESS = 254
+"""As the column of the address, which is as RFC 5321 4.5.3.1.3 limits a path with its brackets."""
+
 
 def create_first_administrator(
     *, username: str, name: str, email: str, password: str, at: dt.datetime
@@ -68,10 +71,7 @@ def _new_person(act: ledger.Act, username: str, name: str, email: str, site: Sit
     username = required(username, "person.username_missing", "username").lower()
     if Person.objects.filter(username=username).exists():
         raise Invalid("person.username_taken", field="username", username=username)
-    try:
-        validate_email(email)
-    except ValidationError as error:
-        raise Invalid("person.email_wrong", field="email") from error
+    _check_address(email)
     return act.insert(
         Person(
             username=username,
@@ -81,6 +81,33 @@ def _new_person(act: ledger.Act, username: str, name: str, email: str, site: Sit
             duties_site=site,
         )
     )
+
+
+def _check_address(email: str) -> None:
+    try:
+        validate_email(email)
+    except ValidationError as error:
+        raise Invalid("person.email_wrong", field="email") from error
+    if len(email) > LONGEST_ADDRESS:
+        raise Invalid("person.email_wrong", field="email")
+
+
+def set_address(*, person: uuid.UUID, email: str, actor: Person, at: dt.datetime) -> None:
+    """Change a person's mail address. Writes Person; leaf ``person.address_set`` (never the address).
+
+    Mail that waits, and mail sent again, goes to the new one. Refused: not an administrator where the person
+    works, what is no address, the address they have.
+    """
+    holder = find_person(person)
+    check_may(actor, "person.manage", holder.duties_site_id, at)
+    email = email.strip()
+    _check_address(email)
+    if email == holder.email:
+        raise Invalid("person.email_same", field="email")
+    with ledger.command("person.address_set", actor=actor, at=at) as act:
+        act.change(holder, email=email)
+        act.about(holder, site=holder.duties_site)
+        act.tell({"person": str(holder.uid)})
 
 
 def _keep_password(person: Person, password: str) -> None:

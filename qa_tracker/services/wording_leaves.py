@@ -73,6 +73,7 @@ SENTENCES: Final = {
     "person.first": N_("The first account was made, with the role of %(role)s"),
     "person.created": N_("%(actor)s made the account “%(username)s”"),
     "person.password_set": N_("%(actor)s set a password"),
+    "person.address_set": N_("%(actor)s changed a mail address"),
     "role.granted": N_("%(actor)s gave the role of %(role)s for %(site)s, from %(from)s"),
     "role.ended": N_("%(actor)s ended a role on %(until)s"),
     "token.issued": N_("%(actor)s issued the token “%(label)s”"),

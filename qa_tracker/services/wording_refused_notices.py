@@ -33,6 +33,7 @@ NOTICES: Final = {
     "mail.reason_missing": N_(
         "Say why this mail need not be sent any more; its notices stay in the program."
     ),
+    "person.email_same": N_("That is the address on record already; nothing was changed."),
     "site.quiet_half": N_("Quiet hours have a beginning and an end. Fill in both, or neither."),
     "site.quiet_hour_wrong": N_("%(hour)s is no hour of the day. Write one from 0 to 23."),
     "site.quiet_all_day": N_(

@@ -82,6 +82,7 @@ urlpatterns = [
     path("people/<uuid:uid>/role/", people.grant, name="role-grant"),
     path("people/<uuid:uid>/role/<uuid:grant>/end/", people.end, name="role-end"),
     path("people/<uuid:uid>/password/", people.set_password, name="password-set"),
+    path("people/<uuid:uid>/address/", people.set_address, name="address-set"),
     path("password/", people.own_password, name="password"),
     path("tokens/", tokens.index, name="tokens"),
     path("tokens/<int:token_id>/end/", tokens.revoke, name="token-revoke"),

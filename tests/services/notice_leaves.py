@@ -54,6 +54,9 @@ HOLDS: dict[str, Callable[[Ward], Given]] = {
     "mail.send_again": lambda w: {"digest_id": given_up(w), "actor": w.admin},
     "mail.send_all_again": lambda w: {"actor": w.admin} if given_up(w) else {},
     "mail.leave_unsent": lambda w: {"digest_id": given_up(w), "reason": "Has left", "actor": w.admin},
+    "people.set_address": lambda w: {
+        "person": w.user.uid, "email": "jory@tarnwater.invalid", "actor": w.admin,
+    },
     "site_hours.set_hours": lambda w: {"site": w.site, **HOURS, "actor": w.admin},
     "site_hours.set_round_the_clock": lambda w: {
         "room": w.room, "round_the_clock": True, "actor": w.admin,

@@ -241,6 +241,7 @@ TABLE = [
         "mail.left_unsent", {"mail": "digest/1"}, "Has left",
         f"{HD} decided that a mail which was given up is not sent: Has left.",
     ),
+    ("person.address_set", {"person": "018f"}, "", f"{HD} changed a mail address."),
 ]  # fmt: skip
 
 

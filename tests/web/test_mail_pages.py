@@ -115,3 +115,15 @@ def test_pauses_of_the_sweep_are_listed(ward):
 def test_header_says_when_the_sweep_last_ran(ward):
     Heartbeat.objects.create(name="sweep", beat_at=now())
     assert f"swept {now():%H:}" in content(ward.technician, "due")
+
+
+def test_address_is_changed_and_what_is_sent_again_goes_there(ward, failed):
+    address = reverse("address-set", args=[ward.technician.uid])
+    assert address in content(ward.admin, "mails")
+    browser = builders.signed_in(ward.admin)
+    for typed, status in [("no address", 422), ("castellane@tarnwater.invalid", 422), ("ifeoma@tarnwater.invalid", 302)]:  # fmt: skip
+        assert browser.post(address, {"email": typed}).status_code == status
+    ward.technician.refresh_from_db()
+    assert ward.technician.email == "ifeoma@tarnwater.invalid"
+    failed.refresh_from_db()
+    assert mail._letter(failed).to == ["ifeoma@tarnwater.invalid"]

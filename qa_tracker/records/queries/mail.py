@@ -45,6 +45,7 @@ class DigestRow:
     key: str
     message_id: str
     person: str
+    person_uid: uuid.UUID
     email: str
     site_id: int | None
     day_on: dt.date
@@ -125,8 +126,8 @@ def digests_in(scope: Scope) -> QuerySet[Digest]:
 def _row(digest: Digest, tries: tuple[TryRow, ...]) -> DigestRow:
     person = digest.person
     return DigestRow(
-        digest.id, digest.key, digest.message_id, person.name, person.email, person.duties_site_id, digest.day_on,
-        digest.state, digest.created_at, digest.due_at, digest.sent_at, digest.reply,
+        digest.id, digest.key, digest.message_id, person.name, person.uid, person.email, person.duties_site_id,
+        digest.day_on, digest.state, digest.created_at, digest.due_at, digest.sent_at, digest.reply,
         len(digest.notices.all()), tries,
     )  # fmt: skip
 

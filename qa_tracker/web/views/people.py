@@ -197,6 +197,27 @@ def _password_fields() -> tuple[Field, ...]:
     )
 
 
+def set_address(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
+    """Change somebody's mail address."""
+    at = now()
+    holder = _person(request, uid, at)
+    guards.check_may(request.user, "person.manage", holder.duties_site_id, at)
+    asked = Asked(
+        _("Mail address of %(name)s") % {"name": holder.name},
+        _("Keep the address"),
+        reverse("person", args=[uid]),
+        holder.name,
+        (Field("email", _("Mail address"), "email").starting(holder.email),),
+        lead=_("Mail that waits goes to it, and mail that is sent again."),
+    )
+
+    def act(typed: Typed) -> Done:
+        people.set_address(person=uid, email=typed.text("email", 254), actor=request.user, at=at)
+        return Done(_("The address is kept."), asked.back)
+
+    return ask(request, asked, act)
+
+
 @sensitive_post_parameters(*NEW_PASSWORD)
 def set_password(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
     """Set somebody's password."""
