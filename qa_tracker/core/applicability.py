@@ -71,7 +71,8 @@ def unfit(spec: CriterionSpec, met: Circumstances, baseline: Standing | None) ->
     Judgement or None
         Not assessable: an array without line-to-element correspondence, another medium or method than the limit
         names, another protection class or applied-part type, a baseline that has run out, and a loss of depth
-        against a baseline taken on another test object (depths do not pass between objects).
+        against a baseline taken on another test object, or where only one of the two names its object (depths
+        do not pass between objects).
     """
     if met.array_kind and met.array_kind in spec.not_for_array_kinds:
         return not_assessable(Say.ARRAY_KIND, array_kind=met.array_kind)
@@ -95,10 +96,11 @@ def _unfit_baseline(spec: CriterionSpec, met: Circumstances, baseline: Standing 
         return None
     if baseline.expires_on and met.measured_on and met.measured_on >= baseline.expires_on:
         return not_assessable(Say.EXPIRED_BASELINE, expired_on=baseline.expires_on.isoformat())
-    known = None not in (baseline.test_object_id, met.test_object_id)
-    if known and baseline.test_object_id != met.test_object_id and is_depth(spec):
-        return not_assessable(Say.OTHER_OBJECT, was=baseline.test_object, now=met.test_object)
-    return None
+    objects = (baseline.test_object_id, met.test_object_id)
+    if objects[0] == objects[1] or not is_depth(spec):
+        return None
+    code = Say.OBJECT_NOT_NAMED if None in objects else Say.OTHER_OBJECT
+    return not_assessable(code, was=baseline.test_object, now=met.test_object)
 
 
 def is_depth(spec: CriterionSpec) -> bool:

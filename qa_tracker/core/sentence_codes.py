@@ -66,6 +66,7 @@ class SentenceCode(StrEnum):
     TOO_FEW_SETUPS = "too_few_setups"
     EXPIRED_BASELINE = "expired_baseline"
     OTHER_OBJECT = "other_object"
+    OBJECT_NOT_NAMED = "object_not_named"
     ARRAY_KIND = "array_kind"
     OTHER_MEDIUM = "other_medium"
     OTHER_METHOD = "other_method"
@@ -122,6 +123,7 @@ REQUIRED: dict[SentenceCode, frozenset[str]] = {
     SentenceCode.TOO_FEW_SETUPS: frozenset({"setups", "least"}),
     SentenceCode.EXPIRED_BASELINE: frozenset({"expired_on"}),
     SentenceCode.OTHER_OBJECT: frozenset({"was", "now"}),
+    SentenceCode.OBJECT_NOT_NAMED: frozenset({"was", "now"}),
     SentenceCode.ARRAY_KIND: frozenset({"array_kind"}),
     SentenceCode.OTHER_MEDIUM: frozenset({"medium", "wanted"}),
     SentenceCode.OTHER_METHOD: frozenset({"method", "wanted"}),

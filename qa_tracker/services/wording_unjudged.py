@@ -158,6 +158,20 @@ def _expired_baseline(given: Parameters, says: str) -> str:
     return _("The baseline ran out on %(day)s: %(verdict)s. A physicist can set another.") % told
 
 
+def _object_not_named(given: Parameters, says: str) -> str:
+    if given["was"]:
+        sentence = _(
+            "The baseline was taken on %(was)s and this reading names no test object, and a depth does not pass "
+            "from one test object to another: %(verdict)s. Measure again, and say on which object."
+        )
+    else:
+        sentence = _(
+            "This reading was taken on %(now)s and its baseline names no test object, and a depth does not pass "
+            "from one test object to another: %(verdict)s. A physicist can set a baseline on this object."
+        )
+    return sentence % {"was": given["was"], "now": given["now"], "verdict": says}
+
+
 def _other_object(given: Parameters, says: str) -> str:
     told = {"was": given["was"], "now": given["now"], "verdict": says}
     sentence = _(
@@ -252,6 +266,7 @@ PLAIN: Final[dict[Say, Callable[[Parameters, str], str]]] = {
     Say.TOO_FEW_SETUPS: _too_few_setups,
     Say.EXPIRED_BASELINE: _expired_baseline,
     Say.OTHER_OBJECT: _other_object,
+    Say.OBJECT_NOT_NAMED: _object_not_named,
     Say.ARRAY_KIND: _array_kind,
     Say.OTHER_MEDIUM: _other_medium,
     Say.OTHER_METHOD: _other_method,

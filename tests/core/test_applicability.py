@@ -37,6 +37,10 @@ CASES = {
     "depth on another object": (
         "TG1-PEN", Circumstances(test_object_id=1, test_object="AG hydrogel"), THERE, "other_object",
     ),
+    "depth on an object not named": ("TG1-PEN", Circumstances(), HERE, "object_not_named"),
+    "depth against a baseline on no object": (
+        "TG1-PEN", Circumstances(test_object_id=1, test_object="AG hydrogel"), Standing(), "object_not_named",
+    ),
     "baseline that ran out today": (
         "TG1-PEN", Circumstances(measured_on=DAY), Standing(expires_on=DAY), "expired_baseline",
     ),
@@ -58,7 +62,8 @@ FIT = {
     "any medium": ("DROP", Circumstances(medium="air"), None),
     "leakage by its method": ("62353-EL-I-DIRECT", Circumstances(method="direct", protection_class="I"), None),
     "depth on the same object": ("TG1-PEN", Circumstances(test_object_id=1), HERE),
-    "depth on an object not named": ("TG1-PEN", Circumstances(), HERE),
+    "depth where neither object is named": ("TG1-PEN", Circumstances(), Standing()),
+    "resolution on an object not named": ("TG128-RES", Circumstances(), HERE),
     "resolution on another object": ("TG128-RES", Circumstances(test_object_id=1), THERE),
     "baseline on its last day": (
         "TG1-PEN", Circumstances(measured_on=DAY), Standing(expires_on=DAY + dt.timedelta(days=1)),

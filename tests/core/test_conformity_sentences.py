@@ -72,6 +72,7 @@ CASES = {
 ELSEWHERE = {
     SentenceCode.EXPIRED_BASELINE,
     SentenceCode.OTHER_OBJECT,
+    SentenceCode.OBJECT_NOT_NAMED,
     SentenceCode.ARRAY_KIND,
     SentenceCode.OTHER_MEDIUM,
     SentenceCode.OTHER_METHOD,

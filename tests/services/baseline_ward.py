@@ -41,9 +41,13 @@ def put(ward, *values, on=None, **changed):
     )
 
 
+def usual_object(ward):
+    return TestObject.objects.filter(serial="P-0").first() or phantom(ward, "P-0")
+
+
 def surveyed(ward, on=None, days_ago=0, procedure=ANNUAL, **given):
     """A check of which only some numbers were read, some days ago; on an object of its own where none is said."""
-    on = on or TestObject.objects.filter(serial="P-0").first() or phantom(ward, "P-0")
+    on = on or usual_object(ward)
     check = checks.open_unplanned(device=ward.probe.uid, procedure=procedure, actor=ward.physicist, at=now())
     laid = checks.sheet(check=check.uid, test_object=on.uid, actor=ward.physicist, at=now())
     entries = {

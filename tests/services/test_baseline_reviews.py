@@ -6,7 +6,7 @@ import json
 import uuid
 
 import pytest
-from baseline_ward import ANNUAL, aperture, penetration, put, surveyed
+from baseline_ward import ANNUAL, aperture, penetration, put, surveyed, usual_object
 from django.utils.timezone import now
 
 from qa_tracker.core.errors import DomainError, Forbidden
@@ -108,6 +108,7 @@ def test_baseline_measured_on_the_console_follows_its_probe_elsewhere(ward):
 
 
 def test_reading_is_still_compared_and_its_verdict_says_under_review(ward):
+    put(ward, penetration(ward, "150"), on=usual_object(ward))
     event(ward)
     verdict = surveyed(ward, penetration="143").verdicts.get(measurand__code="penetration")
     assert verdict.verdict == "remedial"

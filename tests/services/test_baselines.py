@@ -31,9 +31,9 @@ def aperture(device):
 
 
 def put(ward, *values, **changed):
-    given = {"reason": "acceptance", "password": builders.PASSWORD, "actor": ward.physicist} | changed
+    given = {"reason": "acceptance", "password": builders.PASSWORD, "actor": ward.physicist}
     return baselines.set_values(
-        device=ward.probe.uid, values=list(values), test_object=None, **given, at=now()
+        device=ward.probe.uid, values=list(values), **{"test_object": None} | given | changed, at=now()
     )
 
 
@@ -118,10 +118,10 @@ def test_only_a_physicist_sets_a_baseline(ward, who):
         put(ward, penetration(ward, "150"), actor=getattr(ward, who))
 
 
-def surveyed(ward, **given):
+def surveyed(ward, on=None, **given):
     """An annual survey of which only some numbers were read."""
     check = checks.open_unplanned(device=ward.probe.uid, procedure=ANNUAL, actor=ward.physicist, at=now())
-    phantom = builders.phantom(ward.physicist, ward.site)
+    phantom = on or builders.phantom(ward.physicist, ward.site)
     laid = checks.sheet(check=check.uid, test_object=phantom.uid, actor=ward.physicist, at=now())
     entries = {item.key: Entry(given[item.spec.code]) for item in laid.items if item.spec.code in given}
     typed = Typed(entries, test_object=phantom.uid, cleaned_before="Wipe", partial_reason="in_use")
@@ -151,9 +151,10 @@ def test_submission_without_such_numbers_gives_no_baseline(ward):
 
 
 def test_later_check_is_judged_by_the_epoch_in_force_and_the_earlier_verdict_stays(ward):
-    put(ward, penetration(ward, "150"))
-    earlier = surveyed(ward, penetration="143").verdicts.get(measurand__code="penetration")
-    (second,) = put(ward, penetration(ward, "145"), reason="new lens")
+    on = builders.phantom(ward.physicist, ward.site)
+    put(ward, penetration(ward, "150"), test_object=on.uid)
+    earlier = surveyed(ward, on, penetration="143").verdicts.get(measurand__code="penetration")
+    (second,) = put(ward, penetration(ward, "145"), test_object=on.uid, reason="new lens")
     item = sheet_item(ward)
     assert (item.baseline.id, item.baseline.epoch) == (second.pk, 2)
     earlier.refresh_from_db()

@@ -290,6 +290,11 @@ UNFIT = {
         "not pass from one test object to another: not assessable. Read both objects once, and set a baseline on "
         "this one too.",
     ),
+    Say.OBJECT_NOT_NAMED: (
+        {"was": "", "now": "AG hydrogel GB-3001"},
+        "This reading was taken on AG hydrogel GB-3001 and its baseline names no test object, and a depth does not "
+        "pass from one test object to another: not assessable. A physicist can set a baseline on this object.",
+    ),
     Say.ARRAY_KIND: (
         {"array_kind": "phased"},
         "On this kind of array (phased) a dark line does not stand for an element, so the limit says nothing: "
