@@ -15,7 +15,7 @@ from contextlib import contextmanager
 from dataclasses import dataclass, field
 from typing import TypeVar
 
-from django.db import models, transaction
+from django.db import connection, models, transaction
 
 from qa_tracker.core.schedule import SiteDays, local_day
 from qa_tracker.core.workflow import CHECK, target
@@ -169,6 +169,14 @@ def past(origin: str) -> Iterator[Past]:
                 uncertainties.in_force(None),
             )
         clocks.start_missing()
+        _gather_statistics()
+
+
+def _gather_statistics() -> None:
+    """Let PostgreSQL look at the tables now: until it has, it plans joins of so many new rows as if there were few."""
+    if connection.vendor == "postgresql":
+        with connection.cursor() as cursor:
+            cursor.execute("ANALYZE")
 
 
 @contextmanager
