@@ -17,7 +17,7 @@ from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records.models import Check, CheckClock, LadderRung, Site
 from qa_tracker.records.writers import insert_rows, put_rows
 
-MOST_KEYS = 500
+MOST_KEYS = 2000
 """Keys named in one statement."""
 
 

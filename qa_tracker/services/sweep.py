@@ -50,6 +50,11 @@ class Swept:
     notices: int = 0
     skipped: int = 0
 
+    def and_also(self, moved: Moved) -> Swept:
+        """The same with what was done at another site."""
+        notices, skipped = self.notices + len(moved.notices), self.skipped + moved.skipped
+        return Swept(self.checks + moved.checks, notices, skipped)
+
 
 @dataclass
 class Ground:
@@ -100,12 +105,15 @@ def sweep(*, at: dt.datetime, as_if: dt.datetime | None = None) -> Swept:
     """
     gap = _gap(at)
     swept = Swept()
-    sites = watched.sites_due(as_if or at)
-    if sites:
+    due = watched.due_by_site(as_if or at)
+    if due:
         ground = Ground(at, as_if, ladders.in_force(), People())
-        found = Site.objects.in_bulk([site_id for site_id in sites if site_id is not None])
-        for site_id in sites:
-            swept = _sweep_whole_site(ground, found.get(site_id) if site_id else None, swept)
+        sites = Site.objects.in_bulk([site_id for site_id in due if site_id is not None])
+        for site_id, check_ids in due.items():
+            site = sites[site_id] if site_id is not None else None
+            for first in range(0, len(check_ids), MOST_A_TRANSACTION):
+                moved = _sweep_site(ground, site, check_ids[first : first + MOST_A_TRANSACTION])
+                swept = swept.and_also(moved)
     Heartbeat.objects.update_or_create(name="sweep", defaults={"beat_at": at, "detail": f"{swept.checks}"})
     if gap is not None:
         SweepGap.objects.filter(pk=gap.pk).update(
@@ -122,22 +130,11 @@ def _gap(at: dt.datetime) -> SweepGap | None:
     return SweepGap.objects.get_or_create(began_at=before, defaults={"ended_at": at})[0]
 
 
-def _sweep_whole_site(ground: Ground, site: Site | None, swept: Swept) -> Swept:
-    """Sweep a site until nothing is due, or all that is left is being changed by others."""
-    while True:
-        moved = _sweep_site(ground, site)
-        notices, skipped = swept.notices + len(moved.notices), swept.skipped + moved.skipped
-        swept = Swept(swept.checks + moved.checks, notices, skipped)
-        if moved.checks < MOST_A_TRANSACTION:
-            return swept
-
-
-def _sweep_site(ground: Ground, site: Site | None) -> Moved:
+def _sweep_site(ground: Ground, site: Site | None, check_ids: list[int]) -> Moved:
     with ledger.sweeping("notices.owed", at=ground.at, as_if=ground.as_if) as act:
         climbs = ground.ladders.of(site.pk if site else None)
         turn = Turn(ground, site, plans.site_days(site), climbs)
-        due = watched.due_at(turn.site_id, turn.moment, MOST_A_TRANSACTION)
-        _move_all(act, turn, due)
+        _move_all(act, turn, watched.read(check_ids, turn.site_id, turn.moment))
         clocks.turn_all(turn.clocks, turn.stopped)
         moved = turn.moved
         act.about(site, site=site)
@@ -155,8 +152,9 @@ def _move_all(act: ledger.Act, turn: Turn, due: list[Watched]) -> None:
     """Move the checks as far as the moment allows; what is to be changed is locked first, or left for now."""
     if not due:
         return
-    turn.told = watched.told_of(turn.site_id, turn.moment, turn.ladder)
-    turn.holds = watched.held_of([one.check_id for one in due], turn.moment)
+    check_ids = [one.check_id for one in due]
+    turn.told = watched.told_of(check_ids, turn.ladder)
+    turn.holds = watched.held_of(check_ids, turn.moment)
     leaving = [one for one in due if _is_leaving(turn, one)]
     rows = watched.locked_rows(Check, [one.check_id for one in leaving])
     ending = {one.plan_id for one in leaving if one.device_state == GONE and one.plan_id is not None}

@@ -25,6 +25,7 @@ class Watched(NamedTuple):
     """An awaited check with what its sweep needs of its plan and device; read as columns, since they are many."""
 
     check_id: int
+    site_id: int | None
     uid: uuid.UUID
     state: str
     level: str
@@ -55,7 +56,7 @@ class Watched(NamedTuple):
 
 
 _COLUMNS = (
-    "check_of_id", "check_of__uid", "check_of__state", "level", "check_of__due_on", "check_of__slot_on",
+    "check_of_id", "check_of__site_id", "check_of__uid", "check_of__state", "level", "check_of__due_on", "check_of__slot_on",
     "check_of__opens_at", "check_of__due_at", "check_of__late_at", "check_of__overdue_at",
     "check_of__device_id", "check_of__device__state", "check_of__procedure_id", "check_of__plan_id",
     "check_of__plan__ended_at", "check_of__plan__basis", "check_of__plan__rule", "check_of__plan__anchor_on",
@@ -64,27 +65,34 @@ _COLUMNS = (
 )  # fmt: skip
 
 
-def sites_due(moment: dt.datetime) -> list[int | None]:
-    """Keys of the sites at which a clock has come; None stands for devices at no site."""
-    found = CheckClock.objects.filter(at__lte=moment).order_by().values_list("check_of__site_id", flat=True)
-    return sorted(found.distinct(), key=lambda site_id: site_id or 0)
+def due_by_site(moment: dt.datetime) -> dict[int | None, list[int]]:
+    """Keys of the checks whose clock has come, by site; None stands for devices at no site.
+
+    Found by the clocks alone, whose number does not grow with the years; everything else is read by these keys.
+    """
+    found: dict[int | None, list[int]] = {}
+    rows = CheckClock.objects.filter(at__lte=moment).order_by("check_of_id")
+    for check_id, site_id in rows.values_list("check_of_id", "check_of__site_id"):
+        found.setdefault(site_id, []).append(check_id)
+    return dict(sorted(found.items(), key=lambda each: each[0] or 0))
 
 
-def due_at(site_id: int | None, moment: dt.datetime, most: int) -> list[Watched]:
-    """The checks of a site whose clock has come, oldest first; what somebody is changing now waits for its turn.
+def read(check_ids: Collection[int], site_id: int | None, moment: dt.datetime) -> list[Watched]:
+    """Read those checks of a site whose clock has come still; what somebody is changing now waits for its turn.
 
     A command locks rows before the ledger's head, a sweep the head before rows: waiting for each other's would be
     waiting for ever, so a sweep never waits for a row.
     """
-    found = CheckClock.objects.filter(_of_site("check_of__", site_id), at__lte=moment)
-    rows = found.order_by("check_of_id").values_list(*_COLUMNS)[:most]
-    watched = [Watched(*row) for row in rows]
-    if not connection.features.has_select_for_update_skip_locked:
-        return watched
-    named = Check.objects.filter(_of_site("", site_id), clock__at__lte=moment).values("id")
-    locked = CheckClock.objects.filter(check_of_id__in=named).select_for_update(skip_locked=True, no_key=True)
-    free = set(locked.values_list("check_of_id", flat=True))
-    return [each for each in watched if each.check_id in free]
+    watched: list[Watched] = []
+    for chunk in _chunks(check_ids):
+        found = CheckClock.objects.filter(check_of_id__in=chunk, at__lte=moment)
+        free = set(chunk)
+        if connection.features.has_select_for_update_skip_locked:
+            locked = found.select_for_update(skip_locked=True, no_key=True)
+            free = set(locked.values_list("check_of_id", flat=True))
+        rows = [Watched(*row) for row in found.order_by("check_of_id").values_list(*_COLUMNS)]
+        watched += [each for each in rows if each.check_id in free and each.site_id == site_id]
+    return watched
 
 
 def locked_rows(model: type[M], keys: Collection[int]) -> dict[int, M]:
@@ -111,15 +119,13 @@ def occurrences_after(watched: Collection[Watched]) -> set[tuple[int, dt.date]]:
     return found
 
 
-def told_of(site_id: int | None, moment: dt.datetime, ladder: Ladder) -> dict[int, dict[int, int]]:
-    """Highest rank of which each person was told, by check, of the checks of a site whose clock has come."""
-    found = Notice.objects.filter(
-        _of_site("check_of__", site_id), check_of__clock__at__lte=moment, level__in=ladder.levels
-    )
+def told_of(check_ids: Collection[int], ladder: Ladder) -> dict[int, dict[int, int]]:
+    """Highest rank of which each person was told, by check."""
     told: dict[int, dict[int, int]] = {}
-    for check_id, person_id, level in found.order_by().values_list("check_of_id", "person_id", "level"):
-        if check_id is not None:
-            ranks = told.setdefault(check_id, {})
+    for chunk in _chunks(check_ids):
+        found = Notice.objects.filter(check_of_id__in=chunk, level__in=ladder.levels)
+        for check_id, person_id, level in found.values_list("check_of_id", "person_id", "level"):
+            ranks = told.setdefault(check_id or 0, {})
             ranks[person_id] = max(ranks.get(person_id, -1), ladder.rank(level))
     return told
 
@@ -177,10 +183,6 @@ class People:
             if grant.site_id in (None, site_id) and grant.holds_on(day)
         ]
         return tuple(dict.fromkeys(each for person_id in holders for each in duties.of(person_id, None)))
-
-
-def _of_site(prefix: str, site_id: int | None) -> models.Q:
-    return models.Q(**{f"{prefix}site_id": site_id})
 
 
 def _chunks(keys: Collection[int]) -> Iterator[list[int]]:
