@@ -16,10 +16,10 @@ from qa_tracker.core.errors import Conflict, DomainError, Invalid, NotFound
 from qa_tracker.core.schedule import local_day, starts_at
 from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records import ledger
-from qa_tracker.records.models import Check, CheckClock, Notice, NoticeHold, Person, TeamMember
+from qa_tracker.records.models import Check, Notice, NoticeHold, Person, TeamMember
 from qa_tracker.records.queries.holds import HoldRow, holds_of
 from qa_tracker.records.queries.library import adopted_edition, electrical_procedures
-from qa_tracker.services import finding
+from qa_tracker.services import clocks, finding
 from qa_tracker.services.guards import check_may, required
 
 __all__ = [
@@ -81,7 +81,7 @@ def end_hold(*, hold: uuid.UUID, reason: str, actor: Person, at: dt.datetime) ->
     reason = required(reason, "hold.reason_missing", "reason")
     with ledger.command("notices.hold_ended", actor=actor, at=at, reason=reason) as act:
         act.change(held, ended_at=at)
-        _look_now(row, at)
+        clocks.look_at(row, at)
         act.about(row, device=row.device, site=row.site)
         act.tell({"hold": str(held.uid), "held": held.kind})
 
@@ -171,15 +171,10 @@ def _hold(
                 check_of=row, person=actor, kind=kind, reason=reason[:300], held_at=at, until_at=until_at
             )
         )
-        _look_now(row, at)
+        clocks.look_at(row, at)
         act.about(row, device=row.device, site=row.site)
         act.tell({"until_at": until_at.isoformat(), "hold": str(hold.uid)})
     return hold
-
-
-def _look_now(row: Check, at: dt.datetime) -> None:
-    """Let the next sweep look at the check, and set its clock by what is held now."""
-    CheckClock.objects.filter(check_of=row, at__gt=at).update(at=at)
 
 
 def _site_id(row: Check, actor: Person) -> int | None:

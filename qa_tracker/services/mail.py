@@ -60,28 +60,46 @@ def deliver(*, digest_id: int, at: dt.datetime) -> bool:
     An unreachable server or a refusal for now is tried again after 1, 5, 15 and 60 minutes, then given up in red;
     a refusal for good at once. A try that was cut off stays in the list as begun and counts as none.
     """
+    return _deliver(digest_id, at) == "sent"
+
+
+def deliver_waiting(*, at: dt.datetime) -> int:
+    """Deliver every digest that waits; return how many the server took. For the second heart and the command.
+
+    Where the server does not answer, the rest waits for the next heart: each would only wait in vain for its turn.
+    """
+    sent = 0
+    for digest_id in waiting_digests():
+        outcome = _deliver(digest_id, at)
+        sent += outcome == "sent"
+        if outcome == "unreachable":
+            break
+    return sent
+
+
+def _deliver(digest_id: int, at: dt.datetime) -> str:
+    """What came of it: the outcome of the try, ``unreachable``, or empty where someone else has the digest."""
     if not claim(digest_id=digest_id):
-        return False
+        return ""
     digest = Digest.objects.select_related("person").get(pk=digest_id)
     attempt = DigestTry.objects.create(digest=digest, at=at, outcome="begun")
     try:
         reply = hand_over(_letter(digest), digest.person.email)
     except NotTaken as error:
-        outcome = "given_up" if error.for_good or _tried_enough(digest) else "put_off"
-        _keep(attempt, outcome, error.reply)
-        if outcome == "put_off":
-            _put_off(digest, error.reply, at)
-        else:
-            _give_up(digest, error.reply, at)
-        return False
+        return _not_taken(digest, attempt, error, at)
     _keep(attempt, "sent", reply)
     Digest.objects.filter(pk=digest_id).update(state="sent", sent_at=at, reply=reply[:300], lease_until=None)
-    return True
+    return "sent"
 
 
-def deliver_waiting(*, at: dt.datetime) -> int:
-    """Deliver every digest that waits; return how many the server took. For the second heart and the command."""
-    return sum(deliver(digest_id=digest_id, at=at) for digest_id in waiting_digests())
+def _not_taken(digest: Digest, attempt: DigestTry, error: NotTaken, at: dt.datetime) -> str:
+    outcome = "given_up" if error.for_good or _tried_enough(digest) else "put_off"
+    _keep(attempt, outcome, error.reply)
+    if outcome == "put_off":
+        _put_off(digest, error.reply, at)
+    else:
+        _give_up(digest, error.reply, at)
+    return "unreachable" if error.unreachable else outcome
 
 
 def _letter(digest: Digest) -> EmailMessage:

@@ -15,11 +15,15 @@ PERMANENT = 500
 
 
 class NotTaken(Exception):
-    """The server did not take a letter; ``for_good`` where it says that trying again is of no use."""
+    """The server did not take a letter.
 
-    def __init__(self, reply: str, *, for_good: bool = False) -> None:
+    ``for_good``: it says that trying again is of no use. ``unreachable``: it did not answer at all, so that no other
+    letter would fare better now.
+    """
+
+    def __init__(self, reply: str, *, for_good: bool = False, unreachable: bool = False) -> None:
         super().__init__(reply)
-        self.reply, self.for_good = reply, for_good
+        self.reply, self.for_good, self.unreachable = reply, for_good, unreachable
 
 
 def hand_over(message: EmailMessage, to: str) -> str:
@@ -36,10 +40,8 @@ def hand_over(message: EmailMessage, to: str) -> str:
         if not isinstance(backend, EmailBackend):
             return f"handed over: {backend.send_messages([message])}"
         return _hand_over(backend, message, to)
-    except smtplib.SMTPResponseException as error:
-        raise NotTaken(_answer(error.smtp_code, error.smtp_error)) from error
-    except (OSError, smtplib.SMTPException) as error:
-        raise NotTaken(str(error) or type(error).__name__) from error
+    except OSError as error:
+        raise NotTaken(_said(error)) from error
     except ValueError as error:
         # A line break or a letter beyond ASCII in the address; the library refuses both before the server can.
         raise NotTaken(f"not sent, the letter can't be written: {error}", for_good=True) from error
@@ -47,12 +49,15 @@ def hand_over(message: EmailMessage, to: str) -> str:
 
 def _hand_over(backend: EmailBackend, message: EmailMessage, to: str) -> str:
     data = _with_crlf(message.message().as_bytes())
-    backend.open()
+    try:
+        backend.open()
+    except OSError as error:  # the mail library's own errors are of this kind too
+        raise NotTaken(_said(error), unreachable=True) from error
     try:
         return _transact(backend.connection, data, to)
     finally:
         # The server has answered already: how it takes the goodbye changes nothing.
-        with contextlib.suppress(OSError, smtplib.SMTPException):
+        with contextlib.suppress(OSError):
             backend.close()
 
 
@@ -75,6 +80,13 @@ def _transact(server: smtplib.SMTP | None, data: bytes, to: str) -> str:
     if code != TAKEN:
         raise NotTaken(_answer(code, reply), for_good=code >= PERMANENT)
     return _answer(code, reply)
+
+
+def _said(error: OSError) -> str:
+    """What an error of the connection or of the mail library says; the server's own words where there are some."""
+    if isinstance(error, smtplib.SMTPResponseException):
+        return _answer(error.smtp_code, error.smtp_error)
+    return str(error) or type(error).__name__
 
 
 def _answer(code: int, reply: bytes | str) -> str:

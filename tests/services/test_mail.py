@@ -136,4 +136,15 @@ def test_unreachable_server_loses_nothing(settings, digest):
     settings.EMAIL_HOST, settings.EMAIL_PORT = "127.0.0.1", 9
     assert not mail.deliver(digest_id=digest.pk, at=now())
     digest.refresh_from_db()
-    assert digest.state == "waiting"
+    assert (digest.state, outcomes(digest)) == ("waiting", ["put_off"])
+
+
+@pytest.mark.parametrize(("port", "tried"), [(9, 1), (None, 2)], ids=["unreachable", "refusing"])
+def test_letters_after_one_wait_for_the_next_heart_only_where_the_server_is_unreachable(
+    server, settings, digest, port, tried
+):
+    other = {"person": digest.person, "created_at": now(), "due_at": now(), "day_on": digest.day_on}
+    Digest.objects.create(**other, key="digest/other", message_id="<other>")
+    server.answer, settings.EMAIL_PORT = "451 4.3.0 later", port or server.port
+    assert mail.deliver_waiting(at=now()) == 0
+    assert DigestTry.objects.count() == tried
