@@ -34,6 +34,7 @@ REMEDIAL = "Label the probe, keep using it, and tell the lead sonographer today.
 SUSPENSION = "Take it out of the room now, hang the red label on it, and phone medical physics on 4410."
 NOMINALS = {"vertical_distance": "100.0", "horizontal_distance": "80.0"}
 ZONE = "Europe/London"
+ROUND_THE_CLOCK = ("Intensive care", "Theatre 3")
 
 
 def lay_ground(world: World) -> None:
@@ -55,7 +56,7 @@ def _sites(world: World) -> None:
         act = world.past.act("site.created", None, world.begun_at)
         site = act.insert(
             Site(
-                code=each.code, name=each.name, time_zone=ZONE,
+                code=each.code, name=each.name, time_zone=ZONE, quiet_from_hour=20, quiet_until_hour=6,
                 remedial_instruction=REMEDIAL, suspension_instruction=SUSPENSION,
             )
         )  # fmt: skip
@@ -112,7 +113,8 @@ def _rooms(world: World, moss: Person) -> None:
         for position, name in enumerate(each.rooms, start=1):
             site = world.sites[each.code]
             act = world.past.act("location.added", moss, world.begun_at)
-            room = act.insert(Location(site=site, name=name, position=position))
+            always = name in ROUND_THE_CLOCK
+            room = act.insert(Location(site=site, name=name, position=position, round_the_clock=always))
             world.rooms[each.code, name] = room
             act.about(room, site=site)
             act.tell({"name": name, "position": position})

@@ -41,7 +41,7 @@ PAGES = {
         "/faults/",
     ),
     "fairweather": ("/register/", "/checks/", "/dossiers/", "/dossiers/verify/", "/ledger/", "/criteria/"),
-    "moss": ("/people/", "/sites/", "/mailbox/", "/tokens/"),
+    "moss": ("/people/", "/sites/", "/mail/", "/mailbox/", "/tokens/"),
 }
 
 
