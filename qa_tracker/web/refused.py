@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Mapping
+from dataclasses import dataclass, replace
 
 from qa_tracker.core.errors import DomainError, SeveralInvalid
 from qa_tracker.services import wording
@@ -10,11 +11,12 @@ from qa_tracker.services import wording
 
 @dataclass(frozen=True)
 class Refusal:
-    """One sentence and the field it belongs to (empty: the whole form)."""
+    """One sentence and the field it belongs to (empty: the whole form), with the field's name where several say it."""
 
     code: str
     field: str
     sentence: str
+    name: str = ""
 
 
 @dataclass(frozen=True)
@@ -33,6 +35,10 @@ class Refused:
     def codes_at(self, field: str) -> set[str]:
         """The codes beside a field."""
         return {each.code for each in self.refusals if each.field == field}
+
+    def named(self, names: Mapping[str, str]) -> Refused:
+        """The same refusals with the names of their fields, as far as they are known."""
+        return Refused(tuple(replace(each, name=names.get(each.field, "")) for each in self.refusals))
 
 
 def of(error: DomainError) -> Refused:

@@ -97,6 +97,13 @@ def test_signing_is_refused_with_every_reason_and_nothing_lost(ward, client, add
     assert "Gel on the lens" in page
 
 
+def test_the_summary_names_each_item_that_is_still_to_be_answered(ward, client, address):
+    page = client.post(f"{address}/draft/", {"revision": "0", "then": "sign"}).content.decode()
+    sheet = builders.checks.sheet(check=ward.check.uid, actor=ward.technician, at=now())
+    missing = next(item for item in sheet.items if item.spec.code == "lens_grade")
+    assert f'<a href="#id_{missing.key}">{missing.spec.name}: This is still to be answered.' in page
+
+
 def test_the_sentence_about_cleaning_stands_in_the_summary_when_it_is_missing(ward, client, address):
     typed = filled(ward) | {"cleaned_by": "", "then": "sign", "revision": "0"}
     page = client.post(f"{address}/draft/", typed)

@@ -123,6 +123,18 @@ def worked_out(judged: Judged) -> tuple[Worked, ...]:
     )
 
 
+def item_names(items: Sequence[Item]) -> dict[str, str]:
+    """What each item is called where it is spoken of apart from its place on the page."""
+    several = len({item.aperture.id for item in items if item.aperture}) > 1
+    names = {}
+    for item in items:
+        aperture = item.aperture.name if item.aperture and several else ""
+        condition = item.condition.name if item.condition else ""
+        where = where_words(aperture, condition, item.repeat, item.spec.repeats)
+        names[item.key] = f"{item.spec.name}, {where}" if where else item.spec.name
+    return names
+
+
 def in_walking_order(items: Sequence[Item]) -> list[Item]:
     """Items regrouped so that a condition is set once and everything under it read."""
     conditions = list(dict.fromkeys(item.condition.id if item.condition else 0 for item in items))

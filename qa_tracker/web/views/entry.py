@@ -30,7 +30,7 @@ from qa_tracker.services.judging import Judged
 from qa_tracker.services.sheets import Sheet
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.forms import entry as inputs
-from qa_tracker.web.presenters.entry import Choice, outcome, sections, worked_out
+from qa_tracker.web.presenters.entry import Choice, item_names, outcome, sections, worked_out
 from qa_tracker.web.refused import Refused
 
 
@@ -203,7 +203,7 @@ def page(
         "works_out": bool(laid.derived),
         "typed": typed,
         "revision": revision,
-        "refused": refused,
+        "refused": refused and refused.named(item_names(laid.items)),
         "named": named,
         "others": _other_lines(others or {}, laid),
         "cautions": cautions.texts(laid.edition.spec.cautions),
