@@ -176,7 +176,9 @@ def _baseline(flow: Flow, baseline: Baseline, content: DeviceDossier) -> None:
 
 def used_criteria(content: DeviceDossier) -> tuple[Criterion, ...]:
     """Give every criterion a reading was judged by, once, by identifier and edition."""
-    found = {r.criterion for check in content.checks for r in check.readings if r.criterion is not None}
+    readings = [reading for check in content.checks for reading in check.readings]
+    decided = {reading.criterion for reading in readings if reading.criterion is not None}
+    found = decided | {criterion for reading in readings for criterion in reading.further}
     return tuple(sorted(found, key=lambda c: (c.identifier, c.edition, c.words, c.source, c.standing)))
 
 

@@ -45,7 +45,8 @@ def draw_check(flow: Flow, check: Check, labels: Labels) -> None:
 
 
 def _heading(flow: Flow, check: Check, labels: Labels) -> None:
-    title = joined((check.procedure, f"{labels['edition']} {check.edition}"), separator=", ")
+    edition = f"{labels['edition']} {check.edition}" if check.edition else ""
+    title = joined((check.procedure, edition), separator=", ")
     width = VERDICT_X - LEFT - 10
     cells = [Cell(title, LEFT, width, HEADING)]
     if check.verdict:

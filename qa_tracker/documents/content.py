@@ -106,7 +106,10 @@ class Criterion:
 
 @dataclass(frozen=True)
 class Reading:
-    """One reading with its verdict (empty: no limit judges it); ``value`` and ``qualifier`` exactly as entered."""
+    """One reading with its verdict (empty: no limit judges it); ``value`` and ``qualifier`` exactly as entered.
+
+    ``further`` holds the other limits that judged it, beside the one that decided.
+    """
 
     label: str
     value: str
@@ -119,6 +122,7 @@ class Reading:
     origin: str = ""
     line: Line = field(default_factory=Line)
     criterion: Criterion | None = None
+    further: tuple[Criterion, ...] = ()
 
 
 @dataclass(frozen=True)

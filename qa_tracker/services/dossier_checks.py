@@ -13,7 +13,7 @@ from qa_tracker.core.judged_line import judged_line
 from qa_tracker.documents import content as frozen
 from qa_tracker.records.queries import library
 from qa_tracker.records.queries.checks import CheckRow
-from qa_tracker.records.queries.library import EditionRow
+from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.records.queries.submissions import (
     ReadingRow,
     SignatureRow,
@@ -119,15 +119,7 @@ def _reading(reading: ReadingRow, names: dict[str, str]) -> frozen.Reading:
     if verdict is not None:
         sentence = " ".join([_sentence(verdict), *map(_further_sentence, verdict.further)])
     if verdict is not None and verdict.criterion is not None:
-        spec = verdict.criterion.spec
-        standing = spec.standing.suspension if verdict.level == "suspension" else spec.standing.remedial
-        criterion = frozen.Criterion(
-            verdict.criterion.code,
-            f"{verdict.criterion.set_code} {verdict.criterion.set_edition}",
-            wording.criterion_words(spec),
-            spec.source,
-            wording.standing_word(standing or spec.standing.suspension or spec.standing.remedial),
-        )
+        criterion = _criterion(verdict.criterion, verdict.level)
         line = _line(reading)
     unit = "" if reading.unit in ("", "1") else wording.unit_symbol(reading.unit)
     return frozen.Reading(
@@ -142,6 +134,24 @@ def _reading(reading: ReadingRow, names: dict[str, str]) -> frozen.Reading:
         origin="",
         line=line,
         criterion=criterion,
+        further=tuple(
+            _criterion(each.criterion, each.level)
+            for each in (verdict.further if verdict else ())
+            if each.criterion is not None
+        ),
+    )
+
+
+def _criterion(row: CriterionRow, level: str) -> frozen.Criterion:
+    """A limit with its source, and the standing of the level that was reached."""
+    spec = row.spec
+    standing = spec.standing.suspension if level == "suspension" else spec.standing.remedial
+    return frozen.Criterion(
+        row.code,
+        f"{row.set_code} {row.set_edition}",
+        wording.criterion_words(spec),
+        spec.source,
+        wording.standing_word(standing or spec.standing.suspension or spec.standing.remedial),
     )
 
 

@@ -129,6 +129,22 @@ def test_dossier_when_nothing_is_on_record_says_so(poppler):
     assert ENGLISH["no_faults"] in text
 
 
+def test_check_when_nothing_was_done_names_no_edition(poppler):
+    missed = replace(CHECKS[-1], edition="", readings=())
+    text = poppler("pdftotext", device_dossier_pdf(dossier(checks=(missed,))))
+    assert "Monthly in-air and visual\n" in text
+    assert "Monthly in-air and visual, edition" not in text
+
+
+def test_limit_when_it_only_judged_beside_another_is_among_those_used(poppler):
+    (reading, *_rest) = CHECKS[0].readings
+    beside = replace(reading.criterion, identifier="PEN-LOCAL", words="loss of 4 mm in a month")
+    told = replace(CHECKS[0], readings=(replace(reading, further=(beside,)),))
+    text = poppler("pdftotext", device_dossier_pdf(dossier(checks=(told,))))
+    assert "loss of 4 mm in a month" in text
+    assert "PEN-LOCAL" in text
+
+
 def test_unsigned_check_when_drawn_says_so(poppler):
     text = poppler("pdftotext", device_dossier_pdf(dossier(checks=(replace(CHECKS[0], signatures=()),))))
     assert "Not signed." in text
