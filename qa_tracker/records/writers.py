@@ -100,17 +100,18 @@ class BatchWriter(HistoryWriter):
 
     def __init__(self) -> None:
         super().__init__()
+        self._has_sequences = connection.vendor == "postgresql"
         self._blocks: dict[type[models.Model], list[int]] = {}
         self._size: dict[type[models.Model], int] = {}
         self._columns: dict[type[models.Model], dict[int, set[str]]] = {}
 
     def _key(self, model: type[models.Model]) -> int:
-        if connection.vendor != "postgresql":
+        if not self._has_sequences:
             return super()._key(model)
-        block = self._blocks.setdefault(model, [])
+        block = self._blocks.get(model)
         if not block:
             size = self._size[model] = min(2 * self._size.get(model, self.FIRST_BLOCK), self.LARGEST_BLOCK)
-            block += reversed(_from_sequence(model, size))
+            block = self._blocks[model] = _from_sequence(model, size)[::-1]
         return block.pop()
 
     def update(self, noun: Noun, columns: dict[str, object]) -> None:
@@ -197,6 +198,13 @@ def insert_rows(
             return
         for statement in connection.ops.sequence_reset_sql(no_style(), [model]):
             cursor.execute(statement)
+
+
+def gather_statistics() -> None:
+    """Let PostgreSQL look at the tables now: until it has, it plans joins of many new rows as if there were few."""
+    if connection.vendor == "postgresql":
+        with connection.cursor() as cursor:
+            cursor.execute("ANALYZE")
 
 
 def new_row(model: type[M], **columns: Any) -> M:

@@ -15,7 +15,7 @@ from contextlib import contextmanager
 from dataclasses import dataclass, field
 from typing import TypeVar
 
-from django.db import connection, models, transaction
+from django.db import models, transaction
 
 from qa_tracker.core.schedule import SiteDays, local_day
 from qa_tracker.core.workflow import CHECK, target
@@ -46,6 +46,7 @@ from qa_tracker.records.queries.baselines import SeriesKey
 from qa_tracker.records.queries.devices import ApertureRow, ConditionRow
 from qa_tracker.records.queries.library import CriterionRow, EditionRow
 from qa_tracker.records.queries.uncertainties import UncertaintyRow
+from qa_tracker.records.writers import gather_statistics
 from qa_tracker.services import clocks, judging, plans, recording
 from qa_tracker.services.baseline_rows import SetUp, setups_of
 from qa_tracker.services.deriving import attributes_of
@@ -169,14 +170,7 @@ def past(origin: str) -> Iterator[Past]:
                 uncertainties.in_force(None),
             )
         clocks.start_missing()
-        _gather_statistics()
-
-
-def _gather_statistics() -> None:
-    """Let PostgreSQL look at the tables now: until it has, it plans joins of so many new rows as if there were few."""
-    if connection.vendor == "postgresql":
-        with connection.cursor() as cursor:
-            cursor.execute("ANALYZE")
+        gather_statistics()
 
 
 @contextmanager
