@@ -19,6 +19,7 @@ from qa_tracker.core.workflow import CHECK, CHECK_AWAITED, DEVICE_USABLE, may_mo
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Check, CheckClock, CheckPlan, Heartbeat, Site, SweepGap
 from qa_tracker.records.queries.notices import last_sweep
+from qa_tracker.records.writers import new_row
 from qa_tracker.services import clocks, ladders, owed, plans, watched
 from qa_tracker.services.watched import NO_HOLDS, Holds, People, Watched
 
@@ -284,7 +285,9 @@ def _climb(act: ledger.Act, turn: Turn, one: Watched) -> None:
     looks = (climbs_at, _gone_at(turn, one), holds.until_at if kept_back else None)
     look_at = min((each for each in looks if each is not None), default=None)
     if look_at is not None:
-        turn.clocks.append(CheckClock(check_of_id=one.check_id, at=look_at, level=kept_back or level))
+        turn.clocks.append(
+            new_row(CheckClock, check_of_id=one.check_id, at=look_at, level=kept_back or level)
+        )
     else:
         turn.stopped.append(one.check_id)
 
