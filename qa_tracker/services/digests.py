@@ -18,6 +18,7 @@ from django.db import transaction
 from qa_tracker.core.mail_hours import MailHours
 from qa_tracker.core.schedule import SiteDays
 from qa_tracker.records.models import Digest, NoticeMail, Person
+from qa_tracker.records.queries.holds import holds_of
 from qa_tracker.records.queries.library import electrical_procedures
 from qa_tracker.records.queries.mail import PendingRow, pending_mail
 from qa_tracker.services import ladders, plans
@@ -28,10 +29,11 @@ NEVER_HELD_BACK = ("suspension", "electrical")
 
 @dataclass
 class Sorting:
-    """What decides how a notice is mailed: the electrical procedures, and every site's ladder and hours."""
+    """What decides how a notice is mailed: electrical procedures, every site's ladder and hours, who snoozed what."""
 
     electrical: frozenset[int]
     ladders: ladders.Ladders
+    snoozed: frozenset[tuple[int, int]]
     hours: dict[int | None, MailHours] = field(default_factory=dict)
 
     def kind(self, row: PendingRow) -> str:
@@ -41,6 +43,10 @@ class Sorting:
         if row.procedure_id in self.electrical and row.level not in WAITS_FOR_THE_DIGEST:
             return "electrical"
         return "ladder" if row.level == self.ladders.of(row.site_id).levels[-1] else ""
+
+    def waits(self, row: PendingRow) -> bool:
+        """Whether its person snoozed the notices of its check, after this one was owed."""
+        return (row.check_id, row.person_id) in self.snoozed and self.kind(row) not in NEVER_HELD_BACK
 
     def hours_of(self, person: Person) -> MailHours:
         """When mail may go to a person: by the site of their duties."""
@@ -56,6 +62,17 @@ def _hours(person: Person) -> MailHours:
     return MailHours(plans.site_days(site), site.digest_hour, site.quiet_from_hour, site.quiet_until_hour)
 
 
+def _snoozed(pending: list[PendingRow], moment: dt.datetime) -> frozenset[tuple[int, int]]:
+    """Check and person of every snooze in force."""
+    held = holds_of({row.check_id for row in pending if row.check_id is not None}, moment)
+    return frozenset(
+        (check_id, hold.person_id)
+        for check_id, rows in held.items()
+        for hold in rows
+        if hold.kind == "snoozed"
+    )
+
+
 def make_digests(*, at: dt.datetime, as_if: dt.datetime | None = None) -> int:
     """Make the mails whose moment has come; return how many.
 
@@ -67,7 +84,7 @@ def make_digests(*, at: dt.datetime, as_if: dt.datetime | None = None) -> int:
     by_person: dict[int, list[PendingRow]] = {}
     for row in pending:
         by_person.setdefault(row.person_id, []).append(row)
-    sorting = Sorting(electrical_procedures(), ladders.in_force())
+    sorting = Sorting(electrical_procedures(), ladders.in_force(), _snoozed(pending, as_if or at))
     people = Person.objects.filter(pk__in=by_person).select_related("duties_site").order_by("pk")
     return sum(_make_for(person, by_person[person.pk], sorting, at, as_if or at) for person in people)
 
@@ -81,7 +98,8 @@ def _make_for(
     day_on = hours.digest_day(moment)
     of_kind: dict[str, list[PendingRow]] = {}
     for row in rows:
-        of_kind.setdefault(sorting.kind(row), []).append(row)
+        if not sorting.waits(row):
+            of_kind.setdefault(sorting.kind(row), []).append(row)
     for kind in NEVER_HELD_BACK:
         going = [row for row in of_kind.pop(kind, []) if open_now or row.round_the_clock]
         made += _at_once(kind, person, going, at, moment.date())

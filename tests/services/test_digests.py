@@ -10,7 +10,7 @@ from notice_ground import WEDNESDAY, make, moment, owe, quiet, round_the_clock
 
 from qa_tracker.records.models import Digest, NoticeMail
 from qa_tracker.records.queries.mail import pending_mail
-from qa_tracker.services import digests, plans
+from qa_tracker.services import digests, holds, plans
 from qa_tracker.services.plans import Recurrence
 from tests import builders
 
@@ -119,6 +119,17 @@ def test_many_at_once_are_one_mail(shared_ward):
         owe(check, shared_ward.technician, "suspension", "physicist")
     assert make(moment(3)) == 1
     assert Digest.objects.get().notices.count() == 2
+
+
+def test_mail_that_waits_when_its_notices_are_snoozed_goes_on_waiting(shared_ward):
+    until_on = dt.datetime.now(builders.LONDON).date() + dt.timedelta(days=3)
+    after = moment(9, until_on)
+    while after.weekday() > 4:
+        after += dt.timedelta(days=1)
+    owe(shared_ward.check, shared_ward.technician, "due")
+    told = {"check": shared_ward.check.uid, "reason": "Away", "until_on": until_on}
+    hold = holds.snooze(**told, actor=shared_ward.technician, at=now())
+    assert [make(hold.until_at - dt.timedelta(days=1, hours=-9)), make(after)] == [0, 1]
 
 
 def test_person_without_a_site_gets_the_digest_by_utc(shared_ward):

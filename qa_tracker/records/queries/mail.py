@@ -23,6 +23,7 @@ class PendingRow:
     notice_uid: uuid.UUID
     level: str
     person_id: int
+    check_id: int | None
     procedure_id: int | None
     site_id: int | None
     round_the_clock: bool
@@ -77,10 +78,11 @@ def pending_mail() -> list[PendingRow]:
     """Mail notices of active people that no digest carries yet, oldest first."""
     found = NoticeMail.objects.filter(digest=None, notice__person__is_active=True).order_by("id")
     columns = found.values_list(
-        "id", "notice__uid", "notice__level", "notice__person_id", "notice__check_of__procedure_id",
+        "id", "notice__uid", "notice__level", "notice__person_id", "notice__check_of_id",
+        "notice__check_of__procedure_id",
         "notice__check_of__site_id", "notice__check_of__device__location__round_the_clock",
     )  # fmt: skip
-    return [PendingRow(*row[:6], round_the_clock=bool(row[6])) for row in columns]
+    return [PendingRow(*row[:7], round_the_clock=bool(row[7])) for row in columns]
 
 
 def tries_of(digest_ids: Collection[int]) -> dict[int, tuple[TryRow, ...]]:
