@@ -20,6 +20,9 @@ used                share of the first level's allowance in percent, one decimal
                     where it is rounded to 100 and is not
 banded_by, quantity the banding quantity, its value, and ``band_start`` and ``band_below`` (empty: open)
 rule, uncertainty   decision rule other than simple; expanded uncertainty U (k = 2)
+uncertainty_reading what U was combined of, beside ``uncertainty_reference`` times ``uncertainty_weight`` (U and weight
+                    of what the reading is compared with); ``uncertainty_whose``: stated for it (``own``), or for the
+                    reading (``measurand``)
 acceptance          allowance - U; ``probability`` of conformity with ``level``, four decimals
 setups, factor      of a limit of own spread: count, exact factor, ``spread`` (``spread_floored`` yes where the
                     resolution's took its place), ``coverage`` and ``confidence`` in percent

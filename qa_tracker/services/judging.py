@@ -17,7 +17,7 @@ from qa_tracker.records.queries.library import CriterionRow
 from qa_tracker.services.deriving import WorkedOut, work_out
 from qa_tracker.services.entries import EMPTY, Entry, doubtful, left_empty, not_asked, read_entry
 from qa_tracker.services.items import Item
-from qa_tracker.services.weighing import MeasuredWith, Weighed, weigh
+from qa_tracker.services.weighing import MeasuredWith, Reference, Weighed, stated_for, weigh
 
 
 @dataclass(frozen=True)
@@ -136,7 +136,7 @@ def _is_told(one: JudgedItem, *, whole: bool) -> bool:
 
 def _judge_derived(made: WorkedOut, asked: Asked) -> JudgedItem:
     """Judge a quantity that was worked out; one that could not be is not assessable by each of its limits."""
-    item, reference = made.item, made.item.nominal or ""
+    item, reference = made.item, Reference(made.item.nominal or "")
     if made.refusal is not None:
         weighed = tuple(Weighed(each, made.refusal, "", "", "simple") for each in item.criteria)
     else:
@@ -188,7 +188,7 @@ def _judge_item(
     weighed: tuple[Weighed, ...] = ()
     in_group_unread = item.spec.one_of is not None and not entry.text and not entry.not_tested
     if not in_group_unread and (item.spec.required or entry.text or entry.not_tested):
-        reference, repeats = reference_of(item, exact), _repeats(item, exact)
+        reference, repeats = reference_of(item, exact, asked.items), _repeats(item, exact)
         weighed = tuple(
             weigh(item, criterion, entry, value, reference, repeats, asked.measured_with)
             for criterion in item.criteria
@@ -219,12 +219,15 @@ def _repeats(item: Item, exact: Mapping[str, Exact | None]) -> tuple[Decimal, ..
     return tuple(value.decimal for value in values if value is not None)
 
 
-def reference_of(item: Item, exact: Mapping[str, Exact | None]) -> str:
-    """What the reading is compared with, as text: nominal, or the other reading of a ratio."""
-    if item.spec.reference_from is not None:
-        other = exact.get(item.key.replace(item.spec.code, item.spec.reference_from, 1))
-        return decimals.plain(other.decimal) if other else ""
-    return item.nominal or ""
+def reference_of(item: Item, exact: Mapping[str, Exact | None], items: Sequence[Item]) -> Reference:
+    """What the reading is compared with: a nominal value, or the other reading of a ratio, with what is stated of it."""
+    if item.spec.reference_from is None:
+        return Reference(item.nominal or "")
+    key = item.key.replace(item.spec.code, item.spec.reference_from, 1)
+    value, other = exact.get(key), next((one for one in items if one.key == key), None)
+    if value is None or other is None:
+        return Reference(is_reading=True)
+    return Reference(decimals.plain(value.decimal), True, stated_for(other, _repeats(other, exact)))
 
 
 def shown_sha256(check_uid: str, edition_sha256: str, facts: Mapping[str, str | None], judged: Judged) -> str:

@@ -7,11 +7,12 @@ import uuid
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from decimal import Decimal
-from functools import lru_cache
+from functools import lru_cache, partial
 
 from qa_tracker.core import conformity, decimals
 from qa_tracker.core.applicability import METHOD_OF_ORIGIN, Standing, unfit
-from qa_tracker.core.criteria import Criterion
+from qa_tracker.core.combined_uncertainty import Departing, combined_at_levels, told
+from qa_tracker.core.criteria import Criterion, Level
 from qa_tracker.core.decimals import Exact
 from qa_tracker.core.judgement import Judgement
 from qa_tracker.core.own_spread import OwnSpread
@@ -50,6 +51,25 @@ def measured_with(
 
 
 @dataclass(frozen=True)
+class Reference:
+    """What a reading is compared with beside its baseline: a nominal value, or another reading of the check.
+
+    Parameters
+    ----------
+    value
+        As text; empty where there is none.
+    is_reading
+        Whether it was read. A nominal value is exact: what its certificate says is part of what is stated.
+    uncertainty
+        The expanded uncertainty (k = 2) stated for the other reading; empty where none is.
+    """
+
+    value: str = ""
+    is_reading: bool = False
+    uncertainty: str = ""
+
+
+@dataclass(frozen=True)
 class Weighed:
     """What one limit says of a reading, with all it was judged by."""
 
@@ -70,7 +90,7 @@ def weigh(
     criterion: CriterionRow,
     entry: Entry,
     value: Exact | None,
-    reference: str,
+    reference: Reference,
     repeats: Sequence[Decimal],
     under: MeasuredWith,
 ) -> Weighed:
@@ -78,42 +98,96 @@ def weigh(
 
     Parameters
     ----------
-    reference
-        Nominal value, or the other reading of a ratio; empty where there is none.
     repeats
         The readings of this measurand in this check, at the same aperture and condition.
     """
-    stated = _stated(item, repeats)
+    stated = stated_for(item, repeats)
     rule = rule_for(criterion, item.uncertainty, stated)
     judgement = _refusal(item, criterion, entry, under)
     if judgement is None:
-        judgement = _verdict_on(
-            criterion.uid,
-            criterion.spec.criterion,
-            value=decimals.plain(value.decimal) if value else (entry.text or None),
-            kind=item.spec.kind,
-            qualifier=entry.qualifier,
-            nominal=reference or None,
-            baseline=decimals.plain(item.baseline.value) if item.baseline else None,
-            baseline_qualifier=item.baseline.qualifier if item.baseline else "=",
-            reference=reference or None,
-            quantity=item.quantity or None,
-            uncertainty=stated or None,
-            rule=rule,
-            unit=item.spec.unit if item.spec.kind in NUMBERS else None,
-            criterion_unit=criterion.spec.unit if item.spec.kind in NUMBERS else None,
-            spread=spread_of(item.baseline, item.spec.resolution),
-            never_below_zero=item.spec.never_below_zero,
-        )
+        judgement = _judged(item, criterion, entry, value, reference, stated, rule)
     flags = baseline_flags(item.baseline, criterion, under) | unguarded(criterion, rule, judgement)
     if flags:
         judgement = replace(judgement, parameters=judgement.parameters | flags)
-    used = stated if judgement.departure is not None else ""
-    return Weighed(criterion, judgement, reference, used, rule)
+    used = judgement.parameters.get("uncertainty", "")
+    return Weighed(criterion, judgement, reference.value, used, rule)
 
 
-def _stated(item: Item, repeats: Sequence[Decimal]) -> str:
-    """The expanded uncertainty of this reading as text; empty where none is stated."""
+def _judged(
+    item: Item,
+    criterion: CriterionRow,
+    entry: Entry,
+    value: Exact | None,
+    reference: Reference,
+    stated: str,
+    rule: Rule,
+) -> Judgement:
+    """Ask the kernel with the uncertainty of the departure, which may differ from level to level.
+
+    The highest level is asked first, with its own. Where it is not the one that decides, it is clear of the reading by
+    that, and the next is asked with its own. So one number is kept that gives the verdict again.
+    """
+    numeric = item.spec.kind in NUMBERS
+    ask = partial(
+        _verdict_on,
+        criterion.uid,
+        criterion.spec.criterion,
+        value=decimals.plain(value.decimal) if value else (entry.text or None),
+        kind=item.spec.kind,
+        qualifier=entry.qualifier,
+        nominal=reference.value or None,
+        baseline=decimals.plain(item.baseline.value) if item.baseline else None,
+        baseline_qualifier=item.baseline.qualifier if item.baseline else "=",
+        reference=reference.value or None,
+        quantity=item.quantity or None,
+        rule=rule,
+        unit=item.spec.unit if numeric else None,
+        criterion_unit=criterion.spec.unit if numeric else None,
+        spread=spread_of(item.baseline, item.spec.resolution),
+        never_below_zero=item.spec.never_below_zero,
+    )
+    own = reference.is_reading and bool(reference.uncertainty) and not _on_baseline(criterion)
+    of_reference = reference.uncertainty if own else stated
+    judgement = None
+    for level, weight, size in _combined(item, criterion, value, reference, (stated, of_reference)):
+        judgement = ask(uncertainty=decimals.plain(size))
+        if "uncertainty" in judgement.parameters:
+            combined = told(stated, of_reference, weight, own=own)
+            judgement = replace(judgement, parameters=judgement.parameters | combined)
+        if judgement.level == level:
+            break
+    return judgement or ask(uncertainty=stated or None)
+
+
+def _combined(
+    item: Item,
+    criterion: CriterionRow,
+    value: Exact | None,
+    reference: Reference,
+    uncertainties: tuple[str, str],
+) -> tuple[tuple[Level, Decimal, Decimal], ...]:
+    """What is combined at each level; nothing where nothing is stated or what it is compared with is exact.
+
+    A baseline is as uncertain as one reading, also where it is the mean of several: a statement does not say which
+    part of it repeats would average out.
+    """
+    given = criterion.spec.criterion
+    flat = given.at(Decimal(item.quantity)) if given.bands and item.quantity else given
+    if _on_baseline(criterion):
+        other = item.baseline.value if item.baseline else None
+    else:
+        other = Decimal(reference.value) if reference.is_reading and reference.value else None
+    if not uncertainties[0] or flat is None or value is None or other is None:
+        return ()
+    return combined_at_levels(flat, Departing(value.decimal, other, *map(Decimal, uncertainties)))
+
+
+def _on_baseline(criterion: CriterionRow) -> bool:
+    return criterion.spec.criterion.basis == "baseline"
+
+
+def stated_for(item: Item, repeats: Sequence[Decimal]) -> str:
+    """The expanded uncertainty of a reading itself as text; empty where none is stated."""
     row = item.uncertainty
     if row is None or item.spec.kind not in NUMBERS:
         return ""

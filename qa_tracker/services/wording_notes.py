@@ -28,7 +28,14 @@ MISMATCHES: Final = {
 
 def notes(given: Mapping[str, str]) -> list[str]:
     """Every addition that a verdict's parameters call for, in the order they are read."""
-    return [*_arithmetic(given), *_own_spread(given), *_no_share(given), *_guard(given), *_mismatches(given)]
+    return [
+        *_arithmetic(given),
+        *_own_spread(given),
+        *_combined(given),
+        *_no_share(given),
+        *_guard(given),
+        *_mismatches(given),
+    ]
 
 
 def _arithmetic(given: Mapping[str, str]) -> list[str]:
@@ -58,6 +65,31 @@ def _own_spread(given: Mapping[str, str]) -> list[str]:
         sentence % told,
         _("The set-ups scatter less than the resolution; the resolution's share counts."),
     ]
+
+
+OTHERS: Final = {
+    ("baseline", "measurand"): N_("that of the baseline, %(other)s (a reading of the same kind)"),
+    ("other", "own"): N_("that of the other reading, %(other)s"),
+    ("other", "measurand"): N_(
+        "that of the other reading, %(other)s (none is stated for it, so the reading's is taken)"
+    ),
+}
+
+
+def _combined(given: Mapping[str, str]) -> list[str]:
+    """What the uncertainty is made of, where what the reading is compared with was measured too."""
+    if "uncertainty_reading" not in given:
+        return []
+    unit, weight = given.get("unit", ""), given["uncertainty_weight"]
+    basis = "baseline" if given["basis"] == "baseline" else "other"
+    other = _(OTHERS[basis, given["uncertainty_whose"]]) % {
+        "other": amount(given["uncertainty_reference"], unit)
+    }
+    if weight != "1":
+        other = _("%(weight)s times %(other)s") % {"weight": weight, "other": other}
+    told = {"reading": amount(given["uncertainty_reading"], unit), "other": other}
+    sentence = _("The uncertainty combines that of the reading, %(reading)s, and %(other)s, as uncorrelated.")
+    return [sentence % told]
 
 
 def _no_share(given: Mapping[str, str]) -> list[str]:

@@ -9,6 +9,7 @@ import pytest
 from qa_tracker.core import (
     allowances,
     baselines,
+    combined_uncertainty,
     comparison,
     conformity,
     criteria,
@@ -33,6 +34,7 @@ from qa_tracker.core import (
 MODULES = (
     allowances,
     baselines,
+    combined_uncertainty,
     comparison,
     conformity,
     criteria,
