@@ -28,7 +28,7 @@ from qa_tracker.records.models import (
     ScannerFacts,
     Site,
 )
-from qa_tracker.services import software
+from qa_tracker.services import clocks, software
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.guards import check_may, required
 
@@ -222,7 +222,7 @@ def _told(identity: Identity, place: Place) -> dict[str, object]:
 def move(*, device: uuid.UUID, place: Place, reason: str, actor: Person, at: dt.datetime) -> None:
     """End a device's placement and begin the next. Writes Placement twice and Device; leaf ``device.placed``.
 
-    What is still to be done on the device is from then on the new site's to do. Refused: role at either end, the
+    What is still to be done on the device is from then on the new site's to do, on the same days by its clocks. Refused: role at either end, the
     place it already has, a room or scanner of another site.
     """
     row = find_device(actor, device, at)
@@ -235,8 +235,10 @@ def move(*, device: uuid.UUID, place: Place, reason: str, actor: Person, at: dt.
         raise Conflict("device.already_there", field="site")
     with ledger.command("device.placed", actor=actor, at=at, reason=reason) as act:
         place_device(act, row, open_placement, place, reason)
-        for check in Check.objects.filter(device=row, state__in=CHECK_AWAITED).exclude(site=place.site):
-            act.change(check, site=place.site)
+        awaited = Check.objects.filter(device=row, state__in=CHECK_AWAITED).exclude(site=place.site)
+        for check in awaited.select_related("site"):
+            act.change(check, site=place.site, **clocks.same_days_at(check, place.site))
+            clocks.look_at(check, at)
 
 
 def place_device(

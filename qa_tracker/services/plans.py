@@ -106,12 +106,22 @@ def end(*, plan: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> None
     device = find_device(actor, row.device.uid, at)
     check_may(actor, "plan.make", device.site_id or actor.duties_site_id, at)
     with ledger.command("plan.ended", actor=actor, at=at, reason=reason) as act:
-        act.change(row, ended_at=at)
-        for check in Check.objects.filter(plan=row, state__in=("scheduled", "started")):
-            act.change(check, state="excused", excuse=reason[:300])
-            clocks.stop(check)
+        _end(act, row, reason)
         act.about(row, device=device, site=device.site)
         act.tell({"ended": True})
+
+
+def end_with_device(act: ledger.Act, device: Device, reason: str) -> None:
+    """End every plan of a device that leaves the group's hands, with the command that disposes of it."""
+    for row in CheckPlan.objects.filter(device=device, ended_at=None).order_by("id"):
+        _end(act, row, reason)
+
+
+def _end(act: ledger.Act, row: CheckPlan, reason: str) -> None:
+    act.change(row, ended_at=act.at)
+    for check in Check.objects.filter(plan=row, state__in=("scheduled", "started")):
+        act.change(check, state="excused", excuse=reason[:300])
+        clocks.stop(check)
 
 
 def site_days(site: Site | None) -> schedule.SiteDays:

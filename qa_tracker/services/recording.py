@@ -292,6 +292,8 @@ def second_signature(
     """The rows of a countersignature or of sending back."""
     _sign(act, submission, person, role, meaning, remark)
     act.change(check, state=state)
+    if state == "sent_back" and act.origin == "live":
+        clocks.start_again(check, act.at)
     act.about(check, device=check.device, site=check.site)
     act.tell(
         {

@@ -14,7 +14,7 @@ from qa_tracker.records import ledger
 from qa_tracker.records.ids import uuid7
 from qa_tracker.records.models import Check, Device, Fault, Person, Signature
 from qa_tracker.records.models.base import Noun
-from qa_tracker.services import faults
+from qa_tracker.services import faults, plans
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.guards import check_may, check_password, required, role_for
 
@@ -193,7 +193,7 @@ VERBS = {
 def move_on(*, device: uuid.UUID, verb: str, note: str, actor: Person, at: dt.datetime) -> None:
     """Move a device by one of the other verbs of the table; leaf ``device.moved_on``.
 
-    Disposing of a device closes its faults with the same reason. Refused: role, a verb the state does not
+    Disposing of a device closes its faults and ends its plans with the same reason. Refused: role, a verb the state does not
     allow, sending out without saying why.
     """
     row = find_device(actor, device, at)
@@ -205,4 +205,5 @@ def move_on(*, device: uuid.UUID, verb: str, note: str, actor: Person, at: dt.da
         if verb == "dispose":
             found = Fault.objects.filter(device=row).exclude(state="closed").select_related("device")
             faults.close_by_disposal(act, found, note)
+            plans.end_with_device(act, row, note)
         set_state(act, row, verb, note)

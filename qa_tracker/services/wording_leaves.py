@@ -33,6 +33,7 @@ SENTENCES: Final = {
     "check.countersigned": N_("%(actor)s countersigned a check of %(device)s"),
     "check.sent_back": N_("%(actor)s sent a check of %(device)s back: %(reason)s"),
     "check.not_tested": N_("%(actor)s could not test %(device)s: %(not_tested)s"),
+    "check.due_moved": N_("%(actor)s moved a due day of %(device)s to %(due)s: %(reason)s"),
     "check.excused": N_("%(actor)s excused the check of %(device)s due on %(due)s: %(reason)s"),
     "device.registered": N_("%(actor)s registered the %(kind)s %(maker)s %(model)s %(serial)s"),
     "device.placed": N_("%(actor)s moved %(device)s: %(reason)s"),
@@ -226,12 +227,13 @@ def _quiet(new: Mapping[str, Any]) -> str:
 
 def _moved(new: Mapping[str, Any]) -> str:
     """What a sweep did, in numbers; nothing of what it didn't."""
-    counts = {name: len(new.get(name) or ()) for name in ("notices", "missed", "excused", "opened")}
+    counts = {name: len(new.get(name) or ()) for name in ("notices", "missed", "excused", "opened", "ended")}
     words = {
         "notices": ngettext("%(n)d notice owed", "%(n)d notices owed", counts["notices"]),
         "missed": ngettext("%(n)d check missed", "%(n)d checks missed", counts["missed"]),
         "excused": ngettext("%(n)d check excused", "%(n)d checks excused", counts["excused"]),
         "opened": ngettext("%(n)d check opened", "%(n)d checks opened", counts["opened"]),
+        "ended": ngettext("%(n)d plan ended", "%(n)d plans ended", counts["ended"]),
     }
     told = [words[name] % {"n": count} for name, count in counts.items() if count]
     return listed_all(told) if told else _("nothing to tell")
