@@ -26,6 +26,7 @@ check.enter_user           yes  yes        yes  yes      yes       no      no
 check.enter                no   yes        yes  yes      yes       no      no
 check.countersign          no   no         no   no       yes       no      no
 check.excuse               no   no         yes  no       yes       no      no
+check.move_due             no   no         yes  no       yes       no      no
 check.accept_out_of_window no   no         no   no       yes       no      no
 check.acknowledge          no   no         yes  no       yes       no      no
 device.register            no   no         yes  yes      yes       no      no

@@ -251,7 +251,7 @@ def _open_following(act: ledger.Act, row: Check, plan: CheckPlan, done_on: dt.da
     if reason:
         outside.re_anchor(act, plan, done_on, reason)
     else:
-        plans.open_next(act, plan, after_on=row.due_on, done_on=done_on)
+        plans.open_next(act, plan, after_on=row.slot_on or row.due_on, done_on=done_on)
 
 
 def countersign(

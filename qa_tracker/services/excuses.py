@@ -22,7 +22,7 @@ def excuse(*, check: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> 
         act.change(row, state=state, excuse=reason[:300])
         clocks.stop(row)
         if row.plan is not None:
-            plans.open_next(act, row.plan, after_on=row.due_on, done_on=row.due_on)
+            plans.open_next(act, row.plan, after_on=row.slot_on or row.due_on, done_on=row.due_on)
         act.about(row, device=row.device, site=row.site)
         act.tell({"state": state, "due": row.due_on.isoformat() if row.due_on else None})
 

@@ -114,7 +114,7 @@ def _close(act: ledger.Act, other: Check, by: Check, own: Judged, measured_at: d
     clocks.stop(other)
     if other.plan is not None and other.plan.ended_at is None:
         done_on = local_day(other, measured_at)
-        plans.open_next(act, other.plan, after_on=other.due_on, done_on=done_on)
+        plans.open_next(act, other.plan, after_on=other.slot_on or other.due_on, done_on=done_on)
     other.drafts.all().delete()
 
 

@@ -64,6 +64,7 @@ PERMITTED: Final = {
     "check.enter": N_("enter checks of this procedure"),
     "check.countersign": N_("countersign checks"),
     "check.excuse": N_("excuse checks"),
+    "check.move_due": N_("move due days"),
     "check.accept_out_of_window": N_("accept a check outside its window"),
     "check.acknowledge": N_("acknowledge checks of others"),
     "device.register": N_("register devices"),

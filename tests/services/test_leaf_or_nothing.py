@@ -20,6 +20,7 @@ from django.apps import apps
 from django.db import connection
 from django.utils.timezone import now
 from editor_leaves import DRAFTS, EDITOR
+from life_leaves import ASKED_OF_LIFE, LIFE
 from notice_leaves import ASKED_OF_HOLDS, HOLDS
 
 import qa_tracker.services
@@ -198,6 +199,7 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
     **CRITERIA,
     **EDITOR,
     **HOLDS,
+    **LIFE,
     "uncertainties.state": lambda w: {
         "statement": Statement("reverberation_depth", "standard", "0.3", source="Repeats of March"),
         "site": w.site, "actor": w.physicist,
@@ -282,6 +284,7 @@ WITHOUT_A_LEAF = {
     **PROPOSALS,
     **DRAFTS,
     **ASKED_OF_HOLDS,
+    **ASKED_OF_LIFE,
     "checks.sheet": "reads",
     "checks.preview": "reads",
     "checks.check_may_enter": "asks",

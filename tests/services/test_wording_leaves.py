@@ -81,6 +81,10 @@ TABLE = [
     ("check.sent_back", {}, "Read it again.", f"{HD} sent a check of {TERN} back: Read it again."),
     ("check.not_tested", {"reason": "in_use"}, "in_use", f"{HD} could not test {TERN}: in use."),
     (
+        "check.due_moved", {"due": "2025-03-05", "slot": "2025-03-01"}, "Theatre",
+        f"{HD} moved a due day of {TERN} to 5 March 2025: Theatre.",
+    ),
+    (
         "check.excused", {"state": "excused", "due": "2025-03-05"}, "On loan",
         f"{HD} excused the check of {TERN} due on 5 March 2025: On loan.",
     ),
