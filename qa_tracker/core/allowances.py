@@ -14,6 +14,8 @@ from qa_tracker.core.criteria import Criterion, Limit
 from qa_tracker.core.decimals import from_scaled, places_of, scaled_at
 
 GovernedBy = Literal["absolute", "percent"]
+LEAST_STEPS = 10
+"""Steps of its resolution that a reading has at least, for a ratio to it to mean something: common practice, no source."""
 
 
 @dataclass(frozen=True)
@@ -57,6 +59,21 @@ def without_shares(criterion: Criterion) -> Criterion:
     """
     kept = {level: Limit(limit.absolute) for level, limit in criterion.levels() if limit.absolute is not None}
     return replace(criterion, remedial=kept.get("remedial"), suspension=kept.get("suspension"))
+
+
+def least_reference(resolution: str) -> Decimal:
+    """Return the least other reading of a ratio: ``LEAST_STEPS`` steps of its resolution.
+
+    One step is then a tenth of it at most. Common practice, no source.
+
+    Examples
+    --------
+    >>> least_reference("0.5")
+    Decimal('5.0')
+    """
+    step = Decimal(resolution)
+    places = places_of(step)
+    return from_scaled(LEAST_STEPS * scaled_at(step, places), places)
 
 
 def share_of(percent: Decimal, reference: Decimal) -> Decimal:

@@ -44,6 +44,7 @@ class _Question:
     criterion_unit: str | None
     spread: OwnSpread | None
     never_below_zero: bool
+    least_reference: Decimal | None
 
 
 def judge(
@@ -63,6 +64,7 @@ def judge(
     criterion_unit: str | None = None,
     spread: OwnSpread | None = None,
     never_below_zero: bool = False,
+    least_reference: Decimal | str | None = None,
 ) -> Judgement:
     """Judge one reading.
 
@@ -99,6 +101,8 @@ def judge(
         Of the set-ups the baseline is the mean of, for a limit of the device's own spread.
     never_below_zero
         Of the quantity: a reading or reference below zero then has a stray sign, and is not assessable.
+    least_reference
+        Of a ratio, in the reading's unit: to a smaller other reading it is not assessable.
 
     Returns
     -------
@@ -140,6 +144,7 @@ def judge(
         criterion_unit=criterion_unit,
         spread=spread,
         never_below_zero=never_below_zero,
+        least_reference=_decimal(least_reference, "least_reference") if criterion.basis == "ratio" else None,
     )
     return _judge_number(criterion, question)
 
@@ -206,6 +211,8 @@ def _judge_number(criterion: Criterion, question: _Question) -> Judgement:
 def _explained(compared: Comparison, question: _Question) -> Judgement:
     """Compare; where no share of the reference can be taken, by the absolute parts, which clear nothing."""
     reference = compared.reference
+    if (small := _too_small(reference, question)) is not None:
+        return small
     bounded = compared.reference_qualifier != "="
     if reference is None or bounded or not _has_no_size(compared.criterion, reference):
         return explain(compared, question.rule)
@@ -215,6 +222,14 @@ def _explained(compared: Comparison, question: _Question) -> Judgement:
         told = {"basis": left.basis, "reference": plain(reference)}
         return not_assessable(Say.ZERO_REFERENCE, **told)
     return replace(judgement, parameters=judgement.parameters | {"no_share": "yes"})
+
+
+def _too_small(reference: Decimal | None, question: _Question) -> Judgement | None:
+    """Refuse a ratio to a reading above zero that is too small to take a share of."""
+    least = question.least_reference
+    if reference is None or least is None or not 0 < reference < least:
+        return None
+    return not_assessable(Say.SMALL_REFERENCE, reference=plain(reference))
 
 
 def _at_band(criterion: Criterion, question: _Question) -> Criterion | Judgement:
@@ -302,6 +317,8 @@ def _context(criterion: Criterion, question: _Question) -> dict[str, str]:
     written = {"unit": question.unit or question.criterion_unit or ""}
     if question.rule != "simple":
         written["rule"] = question.rule
+    if question.least_reference is not None:
+        written["least_reference"] = plain(question.least_reference)
     band = next(
         (band for band in criterion.bands if question.quantity is not None and band.holds(question.quantity)),
         None,

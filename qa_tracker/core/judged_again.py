@@ -58,6 +58,8 @@ class Kept(NamedTuple):
         Of the baseline's set-ups.
     never_below_zero
         Of the quantity.
+    least_reference
+        Of a ratio: to a smaller other reading it is not assessable.
     """
 
     kind: str
@@ -72,6 +74,7 @@ class Kept(NamedTuple):
     rule: Rule = "simple"
     spread: OwnSpread | None = None
     never_below_zero: bool = False
+    least_reference: Whole | None = None
 
 
 @lru_cache(maxsize=4096)
@@ -159,7 +162,7 @@ class _Flats:
             return NOT_ASSESSABLE
         if row.qualifier == "not_seen":
             return NOT_ASSESSABLE if flat.direction == "either" else PROVEN_CODE[flat.levels()[-1][0]]
-        if not _has_reference(flat, row) or _is_below_zero(flat, row):
+        if not _has_reference(flat, row) or _is_below_zero(flat, row) or _is_too_small(flat, row):
             return NOT_ASSESSABLE
         settled = self._spread(flat, row.spread) if flat.of_own_spread else flat
         if settled is None:
@@ -203,6 +206,13 @@ def _is_below_zero(flat: Criterion, row: Kept) -> bool:
         number is not None and (number[0] < 0 or (qualifier == "<" and not number[0]))
         for number, qualifier in numbers
     )
+
+
+def _is_too_small(flat: Criterion, row: Kept) -> bool:
+    """Whether a ratio is to a reading too small to take a share of."""
+    if flat.basis != "ratio" or row.reference is None or row.least_reference is None:
+        return False
+    return from_scaled(*row.reference) < from_scaled(*row.least_reference)
 
 
 def _against_bound(flat: Criterion, row: Kept) -> int:

@@ -27,6 +27,7 @@ acceptance          allowance - U; ``probability`` of conformity with ``level``,
 setups, factor      of a limit of own spread: count, exact factor, ``spread`` (``spread_floored`` yes where the
                     resolution's took its place), ``coverage`` and ``confidence`` in percent
 no_share            ``yes`` where the reference is zero, so that only what is absolute was compared
+least_reference     of a ratio: below this, ten steps of the other reading's resolution, it is not assessable
 no_guard            ``yes`` where a guard band is the rule and no uncertainty is stated
 arithmetic          of a derived quantity: its formula with the numbers put in
 =================== ====================================================================================
@@ -59,6 +60,7 @@ class SentenceCode(StrEnum):
     BASELINE_NOT_SEEN = "baseline_not_seen"
     NO_REFERENCE = "no_reference"
     ZERO_REFERENCE = "zero_reference"
+    SMALL_REFERENCE = "small_reference"
     BELOW_ZERO = "below_zero"
     NO_BAND_QUANTITY = "no_band_quantity"
     OUTSIDE_BANDS = "outside_bands"
@@ -117,6 +119,7 @@ REQUIRED: dict[SentenceCode, frozenset[str]] = {
     SentenceCode.BASELINE_NOT_SEEN: frozenset(),
     SentenceCode.NO_REFERENCE: frozenset(),
     SentenceCode.ZERO_REFERENCE: frozenset({"basis", "reference", "unit"}),
+    SentenceCode.SMALL_REFERENCE: frozenset({"reference", "least_reference", "unit"}),
     SentenceCode.NO_BAND_QUANTITY: frozenset({"banded_by"}),
     SentenceCode.OUTSIDE_BANDS: frozenset({"banded_by", "quantity"}),
     SentenceCode.NOT_SEEN_UNDECIDED: frozenset(),

@@ -8,6 +8,7 @@ from dataclasses import dataclass, field, replace
 from decimal import Decimal
 
 from qa_tracker.core import conformity, decimals
+from qa_tracker.core.allowances import least_reference
 from qa_tracker.core.canonical import canonical
 from qa_tracker.core.conformity import Judgement
 from qa_tracker.core.decimals import Exact
@@ -227,7 +228,9 @@ def reference_of(item: Item, exact: Mapping[str, Exact | None], items: Sequence[
     value, other = exact.get(key), next((one for one in items if one.key == key), None)
     if value is None or other is None:
         return Reference(is_reading=True)
-    return Reference(decimals.plain(value.decimal), True, stated_for(other, _repeats(other, exact)))
+    stated = stated_for(other, _repeats(other, exact))
+    least = decimals.plain(least_reference(other.spec.resolution))
+    return Reference(decimals.plain(value.decimal), True, stated, least)
 
 
 def shown_sha256(check_uid: str, edition_sha256: str, facts: Mapping[str, str | None], judged: Judged) -> str:

@@ -65,6 +65,7 @@ class Again:
             row.rule,  # type: ignore[arg-type]  # a word of the kernel's; another is refused there
             self._spreads.get((row.baseline_id or 0, measurand.resolution)) if own else None,
             measurand.never_below_zero,
+            whole(self.known.least_reference(row.edition_id, measurand)),
         )
 
     def _measurand(self, row: SaidRow) -> MeasurandSpec | None:

@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 from decimal import Decimal
 
 from qa_tracker.core import conformity, decimals
+from qa_tracker.core.allowances import least_reference
 from qa_tracker.core.applicability import METHOD_OF_ORIGIN, Circumstances, Standing, unfit
 from qa_tracker.core.judgement import Judgement
 from qa_tracker.core.library_specs import CriterionSpec, MeasurandSpec
@@ -63,6 +64,12 @@ class Known:
             self.measurands[edition_id] = {one.code: one for one in spec.measurands}
         return self.measurands[edition_id].get(code)
 
+    def least_reference(self, edition_id: int, measurand: MeasurandSpec) -> str:
+        """Below what another reading is too small for a ratio to it; empty where there is no other."""
+        named = measurand.reference_from
+        other = self.measurand(edition_id, named) if named else None
+        return decimals.plain(least_reference(other.resolution)) if other else ""
+
 
 def recheck_verdicts() -> VerdictFinding:
     """Re-derive every stored verdict, and what further limits said. Reads only."""
@@ -91,8 +98,8 @@ def _agrees(said: Verdict | FurtherVerdict, verdict: Verdict, spec: CriterionSpe
     measurand = known.measurand(verdict.submission.edition_id, verdict.measurand.code)
     if measurand is None:
         return False
-    found = judged_by(spec, said, verdict, measurand, known)
     kept = json.loads(said.parameters)
+    found = judged_by(spec, said, verdict, measurand, known, kept.get("least_reference", ""))
     same = all(kept.get(name) == value for name, value in found.parameters.items())
     return same and (found.verdict, found.level or "", str(found.code)) == (
         said.verdict,
@@ -107,10 +114,16 @@ def judged_by(
     verdict: Verdict,
     measurand: MeasurandSpec,
     known: Known,
+    least: str,
 ) -> Judgement:
-    """What a limit says of a stored reading, by what was kept beside it; it need not be the limit that judged it."""
+    """What a limit says of a stored reading, by what was kept beside it; it need not be the limit that judged it.
+
+    ``least`` is the least other reading of a ratio, as kept or as it is now; empty for a verdict from before that rule.
+    """
     met = _circumstances(verdict, measurand, known)
-    return unfit(spec, met, _standing(said.baseline)) or _judged(said, verdict.reading, measurand, spec)
+    return unfit(spec, met, _standing(said.baseline)) or _judged(
+        said, verdict.reading, measurand, spec, least
+    )
 
 
 def _circumstances(verdict: Verdict, measurand: MeasurandSpec, known: Known) -> Circumstances:
@@ -138,7 +151,11 @@ def _standing(baseline: Baseline | None) -> Standing | None:
 
 
 def _judged(
-    said: Verdict | FurtherVerdict, reading: Reading | None, measurand: MeasurandSpec, spec: CriterionSpec
+    said: Verdict | FurtherVerdict,
+    reading: Reading | None,
+    measurand: MeasurandSpec,
+    spec: CriterionSpec,
+    least: str,
 ) -> Judgement:
     numeric, baseline = measurand.kind in NUMBERS, said.baseline
     return conformity.judge(
@@ -157,6 +174,7 @@ def _judged(
         criterion_unit=spec.unit if numeric else None,
         spread=_spread(baseline, measurand) if spec.criterion.of_own_spread else None,
         never_below_zero=measurand.never_below_zero,
+        least_reference=least or None,
     )
 
 

@@ -107,7 +107,8 @@ def _row(
     if reading is None or measurand is None:
         return None
     kept = json.loads(said.parameters)
-    now = _now(judged_by(new.spec, said, verdict, measurand, known), new, kept)
+    least = known.least_reference(verdict.submission.edition_id, measurand)
+    now = _now(judged_by(new.spec, said, verdict, measurand, known, least), new, kept)
     device, site = check.device, check.site
     return SaidAgain(
         check.uid,

@@ -62,11 +62,14 @@ class Reference:
         Whether it was read. A nominal value is exact: what its certificate says is part of what is stated.
     uncertainty
         The expanded uncertainty (k = 2) stated for the other reading; empty where none is.
+    least
+        Below this a ratio to the other reading is not assessable; empty where there is none.
     """
 
     value: str = ""
     is_reading: bool = False
     uncertainty: str = ""
+    least: str = ""
 
 
 @dataclass(frozen=True)
@@ -145,6 +148,7 @@ def _judged(
         criterion_unit=criterion.spec.unit if numeric else None,
         spread=spread_of(item.baseline, item.spec.resolution),
         never_below_zero=item.spec.never_below_zero,
+        least_reference=reference.least or None,
     )
     own = reference.is_reading and bool(reference.uncertainty) and not _on_baseline(criterion)
     of_reference = reference.uncertainty if own else stated

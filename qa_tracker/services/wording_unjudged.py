@@ -97,6 +97,20 @@ def _zero_reference(given: Parameters, says: str) -> str:
     return capital(_("%(name)s is %(amount)s, of which no share can be taken: %(verdict)s.") % told)
 
 
+def _small_reference(given: Parameters, says: str) -> str:
+    told = {
+        "amount": amount(given["reference"], given["unit"]),
+        "least": amount(given["least_reference"], given["unit"]),
+        "verdict": says,
+    }
+    sentence = _(
+        "The other reading is %(amount)s, below %(least)s, which is ten steps of its resolution; a share of so little "
+        "says nothing (common practice, no source): %(verdict)s. Look at how the other reading was taken and read "
+        "both again, and go by the limits that stand on no ratio."
+    )
+    return sentence % told
+
+
 def _below_zero(given: Parameters, says: str) -> str:
     told = {
         "what": _(NUMBERS.get(given["what"], given["what"])),
@@ -257,6 +271,7 @@ PLAIN: Final[dict[Say, Callable[[Parameters, str], str]]] = {
     Say.BASELINE_NOT_SEEN: _baseline_not_seen,
     Say.NO_REFERENCE: _no_reference,
     Say.ZERO_REFERENCE: _zero_reference,
+    Say.SMALL_REFERENCE: _small_reference,
     Say.BELOW_ZERO: _below_zero,
     Say.NO_BAND_QUANTITY: _no_band_quantity,
     Say.OUTSIDE_BANDS: _outside_bands,

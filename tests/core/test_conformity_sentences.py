@@ -60,6 +60,7 @@ CASES = {
     SentenceCode.BASELINE_NOT_SEEN: _case(LOSS, "100", baseline_qualifier="not_seen"),
     SentenceCode.NO_REFERENCE: _case(SHARE, "62"),
     SentenceCode.ZERO_REFERENCE: _case(SHARE, "62", reference="0"),
+    SentenceCode.SMALL_REFERENCE: _case(SHARE, "62", reference="9", least_reference="10"),
     SentenceCode.BELOW_ZERO: _case(LOSS, "-3", baseline="152", never_below_zero=True),
     SentenceCode.NO_BAND_QUANTITY: _case(BANDED, "4"),
     SentenceCode.OUTSIDE_BANDS: _case(BANDED, "4", quantity="7"),

@@ -50,6 +50,7 @@ readings = some.builds(
     rule=some.sampled_from(["simple", "guarded", "zones"]),
     spread=some.none() | spreads,
     never_below_zero=some.booleans(),
+    least_reference=some.none() | numbers,
 )
 
 
@@ -73,6 +74,7 @@ def one_by_one(criterion, row):
         rule=row.rule,
         spread=row.spread,
         never_below_zero=row.never_below_zero,
+        least_reference=decimal(row.least_reference),
     )
 
 

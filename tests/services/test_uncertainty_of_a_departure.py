@@ -169,7 +169,7 @@ def test_verdict_from_before_is_derived_again_by_the_uncertainty_it_kept(ward):
     known, spec = rechecking.Known(), library_spec(verdict)
     measurand = known.measurand(verdict.submission.edition_id, verdict.measurand.code)
     verdict.parameters = json.dumps(old)
-    found = rechecking.judged_by(spec, verdict, verdict, measurand, known)
+    found = rechecking.judged_by(spec, verdict, verdict, measurand, known, kept["least_reference"])
     assert (found.verdict, found.parameters["uncertainty"]) == ("conforming", "3")
 
 

@@ -275,6 +275,12 @@ def test_verdict_reads(code, criterion, given, sentence):
 
 
 UNFIT = {
+    Say.SMALL_REFERENCE: (
+        {"reference": "9", "least_reference": "10", "unit": "uA"},
+        "The other reading is 9 µA, below 10 µA, which is ten steps of its resolution; a share of so little says "
+        "nothing (common practice, no source): not assessable. Look at how the other reading was taken and read both "
+        "again, and go by the limits that stand on no ratio.",
+    ),
     Say.TOO_FEW_SETUPS: (
         {"setups": "3", "least": "10"},
         "The limit is built from the device's own baseline, which rests on 3 independent set-ups where 10 are "
