@@ -98,7 +98,8 @@ def mermaid_diagram(workflow: Workflow) -> str:
 
 
 # An unplanned check begins as started. A missed occurrence is never erased: nothing leads out of missed. "satisfy"
-# closes an occurrence by another check that covers it; "withdraw" takes a countersignature back.
+# closes an occurrence by another check that covers it; "withdraw" takes a countersignature back. Excusing a check
+# that was sent back excuses the doing again: what was done stays on record.
 CHECK: Final = Workflow(
     noun="check",
     initial=("scheduled", "started"),
@@ -112,7 +113,7 @@ CHECK: Final = Workflow(
         Rule("withdraw", ("countersigned",), "submitted"),
         Rule("send_back", ("submitted",), "sent_back"),
         Rule("miss", ("scheduled", "started"), "missed"),
-        Rule("excuse", ("scheduled", "started"), "excused"),
+        Rule("excuse", ("scheduled", "started", "sent_back"), "excused"),
         Rule(
             "void",
             ("scheduled", "started", "submitted", "countersigned", "sent_back", "excused"),

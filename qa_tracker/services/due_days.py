@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from qa_tracker.core import schedule
 from qa_tracker.core.errors import Conflict, DomainError, Forbidden, Invalid
 from qa_tracker.records import ledger
-from qa_tracker.records.models import Check, CheckPlan, Person
+from qa_tracker.records.models import Check, Person
 from qa_tracker.services import clocks, finding, plans
 from qa_tracker.services.guards import check_may, required
 
@@ -90,8 +90,8 @@ def check_day(check: Check, room: Room, to_on: dt.date, at: dt.datetime) -> None
 
 def following_of(check: Check, room: Room) -> dt.date | None:
     """The due day of the occurrence after this one, where the calendar gives it already."""
-    plan = CheckPlan.objects.select_related("device__site").get(pk=check.plan_id)
-    if plan.basis != "calendar" or plan.ended_at is not None:
+    plan = check.plan
+    if plan is None or plan.basis != "calendar" or plan.ended_at is not None:
         return None
     return plans.due_after(plan, room.slot_on).due_on
 

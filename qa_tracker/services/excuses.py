@@ -17,11 +17,13 @@ def excuse(*, check: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> 
     row = finding.check(actor, check, at)
     check_may(actor, "check.excuse", row.site_id or actor.duties_site_id, at)
     reason = required(reason, "check.excuse_missing", "reason")
+    was_done = row.state == "sent_back"
     state = target(CHECK, row.state, "excuse")
     with ledger.command("check.excused", actor=actor, at=at, reason=reason) as act:
         act.change(row, state=state, excuse=reason[:300])
         clocks.stop(row)
-        if row.plan is not None:
+        # What was sent back has opened the next occurrence already.
+        if row.plan is not None and not was_done:
             plans.open_next(act, row.plan, after_on=row.slot_on or row.due_on, done_on=row.due_on)
         act.about(row, device=row.device, site=row.site)
         act.tell({"state": state, "due": row.due_on.isoformat() if row.due_on else None})

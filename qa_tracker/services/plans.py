@@ -8,6 +8,7 @@ from dataclasses import dataclass
 
 from qa_tracker.core import schedule
 from qa_tracker.core.errors import Conflict, Invalid, NotFound
+from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Check, CheckPlan, Device, Person, Procedure, Site
 from qa_tracker.records.queries.library import adopted_edition
@@ -99,7 +100,10 @@ def add_plan(
 
 
 def end(*, plan: uuid.UUID, reason: str, actor: Person, at: dt.datetime) -> None:
-    """End a plan; its awaited occurrence is excused with the reason. Leaf ``plan.ended``."""
+    """End a plan; what it awaits is excused with the reason, also the doing again of what was sent back.
+
+    Leaf ``plan.ended``.
+    """
     row = CheckPlan.objects.filter(uid=plan, ended_at=None).select_related("device").first()
     if row is None:
         raise NotFound("plan.unknown")
@@ -119,7 +123,7 @@ def end_with_device(act: ledger.Act, device: Device, reason: str) -> None:
 
 def _end(act: ledger.Act, row: CheckPlan, reason: str) -> None:
     act.change(row, ended_at=act.at)
-    for check in Check.objects.filter(plan=row, state__in=("scheduled", "started")):
+    for check in Check.objects.filter(plan=row, state__in=CHECK_AWAITED):
         act.change(check, state="excused", excuse=reason[:300])
         clocks.stop(check)
 
@@ -169,7 +173,7 @@ def open_next(
     return open_on(act, plan, due_after(plan, after_on, done_on, days))
 
 
-def open_on(act: ledger.Act, plan: CheckPlan, due: schedule.Due) -> Check:
+def open_on(act: ledger.Act, plan: CheckPlan, due: schedule.Due, slot_on: dt.date | None = None) -> Check:
     """Insert the row of an occurrence; its clock is set, in a history at the end."""
     check = act.insert(
         Check(
@@ -179,6 +183,7 @@ def open_on(act: ledger.Act, plan: CheckPlan, due: schedule.Due) -> Check:
             site=plan.device.site,
             state="scheduled",
             due_on=due.due_on,
+            slot_on=slot_on,
             opens_at=due.opens_at,
             due_at=due.due_at,
             late_at=due.late_at,

@@ -14,7 +14,8 @@ from qa_tracker.records import ledger
 from qa_tracker.records.ids import uuid7
 from qa_tracker.records.models import Check, Device, Fault, Person, Signature
 from qa_tracker.records.models.base import Noun
-from qa_tracker.services import faults, plans
+from qa_tracker.records.queries.out_of_use import out_of_use
+from qa_tracker.services import faults, first_occurrences, plans
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.guards import check_may, check_password, required, role_for
 
@@ -89,7 +90,7 @@ def restore(
 ) -> None:
     """Restore a device to use, signed. Writes Device, Signature, and closes the faults the proof answers.
 
-    Leaf ``device.restored``. Refused: role, wrong password, state, a device never accepted, an open suspension
+    Leaf ``device.restored``; its plans go on with their first occurrence. Refused: role, wrong password, state, a device never accepted, an open suspension
     fault without a proving check, a proving check that is not of this device, not submitted, without a reading,
     measured before the fault was opened, or itself beyond the suspension level.
     """
@@ -103,7 +104,9 @@ def restore(
     proof = _proof(row, proving_check)
     role = role_for(actor, "device.restore", row.site_id, at)
     with ledger.command("device.restored", actor=actor, at=at, reason=remark) as act:
+        out = out_of_use(row.id)
         restore_device(act, row, actor, role, remark, proof)
+        first_occurrences.begin_again(act, row, out, proof)
 
 
 def restore_device(
@@ -166,7 +169,15 @@ def accept(*, device: uuid.UUID, remark: str, password: str, actor: Person, at: 
     target(DEVICE, row.state, "accept")
     role = role_for(actor, "device.accept", row.site_id, at)
     with ledger.command("device.accepted", actor=actor, at=at, reason=remark) as act:
+        out, proof = out_of_use(row.id), _done_since(row)
         accept_device(act, row, actor, role, remark)
+        first_occurrences.begin_again(act, row, out, proof)
+
+
+def _done_since(device: Device) -> Check | None:
+    """The newest check done while the device awaited acceptance: it proves what it reads."""
+    done = Check.objects.filter(device=device, state__in=CHECK_DONE, submitted_at__gte=device.state_since)
+    return done.exclude(verdict="suspension").order_by("-submitted_at", "-id").first()
 
 
 def accept_device(act: ledger.Act, device: Device, person: Person, role: str, remark: str) -> None:

@@ -28,7 +28,7 @@ EXPECTED = {
         "started": "submit>submitted satisfy>submitted miss>missed excuse>excused void>void",
         "submitted": "amend>submitted countersign>countersigned send_back>sent_back void>void",
         "countersigned": "amend>submitted withdraw>submitted void>void",
-        "sent_back": "submit>submitted void>void",
+        "sent_back": "submit>submitted excuse>excused void>void",
         "missed": "",
         "excused": "void>void",
         "void": "",
