@@ -128,7 +128,8 @@ def _judged(
     """Ask the kernel with the uncertainty of the departure, which may differ from level to level.
 
     The highest level is asked first, with its own. Where it is not the one that decides, it is clear of the reading by
-    that, and the next is asked with its own. So one number is kept that gives the verdict again.
+    that, and the next is asked with its own, unless the higher would then decide after all. So one number is kept that
+    gives the verdict again.
     """
     numeric = item.spec.kind in NUMBERS
     ask = partial(
@@ -154,10 +155,13 @@ def _judged(
     of_reference = reference.uncertainty if own else stated
     judgement = None
     for level, weight, size in _combined(item, criterion, value, reference, (stated, of_reference)):
-        judgement = ask(uncertainty=decimals.plain(size))
-        if "uncertainty" in judgement.parameters:
+        found = ask(uncertainty=decimals.plain(size))
+        if judgement is not None and found.level not in (None, level):
+            break
+        judgement = found
+        if "uncertainty" in found.parameters:
             combined = told(stated, of_reference, weight, own=own)
-            judgement = replace(judgement, parameters=judgement.parameters | combined)
+            judgement = replace(found, parameters=found.parameters | combined)
         if judgement.level == level:
             break
     return judgement or ask(uncertainty=stated or None)

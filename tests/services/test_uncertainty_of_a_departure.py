@@ -58,11 +58,13 @@ def opened(ward, baseline="58"):
     return checks.open_unplanned(device=device.uid, procedure=TOE, actor=ward.technician, at=now())
 
 
-def said(ward, probe, chassis):
+def said(ward, probe, chassis, baseline="58"):
     """What each limit says of a probe's leakage beside a chassis reading, by code."""
     given = {"toe_probe_leakage": probe, "toe_chassis_leakage": chassis}
     typed = Typed({f"{code}.0.0.1": Entry(text) for code, text in given.items()})
-    seen = checks.preview(check=opened(ward).uid, typed=typed, whole=False, actor=ward.technician, at=now())
+    seen = checks.preview(
+        check=opened(ward, baseline).uid, typed=typed, whole=False, actor=ward.technician, at=now()
+    )
     found = next(one for one in seen.judged.items if one.item.spec.code == "toe_probe_leakage")
     return {each.criterion.code: each for each in (found.weighed, *found.further)}
 
@@ -128,14 +130,32 @@ TWO = STEP | {
 OF_100 = [("56", "conforming", "3.499"), ("57", "remedial", "3.499"), ("77", "suspension", "3.842")]
 
 
+def adopted(ward, limit):
+    document = LOCAL | {"set": "two", "criteria": [limit]}
+    row = library.publish_criteria(document=document, actor=ward.physicist, at=now())
+    library.adopt_criteria(criteria_set=row, site=None, remark="", actor=ward.physicist, at=now())
+
+
 @pytest.mark.parametrize(("probe", "verdict", "combined"), OF_100)
 def test_each_level_of_a_ratio_has_its_own_uncertainty(ward, probe, verdict, combined):
-    row = library.publish_criteria(
-        document=LOCAL | {"set": "two", "criteria": [TWO]}, actor=ward.physicist, at=now()
-    )
-    library.adopt_criteria(criteria_set=row, site=None, remark="", actor=ward.physicist, at=now())
+    adopted(ward, TWO)
     found = said(ward, probe, "100")["TOE-TWO"]
     assert (found.judgement.verdict, found.uncertainty) == (verdict, combined)
+
+
+LOSS = TWO | {
+    "criterion": {
+        "basis": "baseline", "direction": "below", "remedial": {"percent": "10"}, "suspension": {"percent": "20"},
+    },
+}  # fmt: skip
+
+
+@pytest.mark.parametrize(("probe", "verdict"), [("164", "remedial"), ("163", "suspension")])
+def test_lower_level_of_a_loss_never_judges_the_higher_by_its_own_uncertainty(ward, probe, verdict):
+    # By hand, baseline 200: U is 3 * sqrt(1.64) = 3.8419 at 20 % and 3 * sqrt(1.81) = 4.0361 at 10 %. A loss of 36 is
+    # below 40 - 3.842 = 36.158, so not of the suspension level, though it is above 40 - 4.037 = 35.963.
+    adopted(ward, LOSS)
+    assert said(ward, probe, "400", "200")["TOE-TWO"].judgement.verdict == verdict
 
 
 def submitted(ward):
