@@ -42,6 +42,7 @@ procedure.adopt            no   no         no   no       yes       no      no
 criteria.adopt             no   no         no   no       yes       no      no
 baseline.set               no   no         no   no       yes       no      no
 plan.make                  no   no         yes  no       yes       no      no
+ladder.set                 no   no         yes  no       yes       no      no
 fault.open                 yes  yes        yes  yes      yes       no      no
 fault.act                  no   yes        yes  yes      yes       no      no
 fault.close                no   no         no   yes      yes       no      no

@@ -145,7 +145,7 @@ def _sweep_site(ground: Ground, site: Site | None, check_ids: list[int]) -> Move
             "excused": moved.excused,
             "opened": moved.opened,
         }
-        act.tell(told | ({"ended": moved.ended} if moved.ended else {}))
+        act.tell(told | ({"plans_ended": moved.ended} if moved.ended else {}))
     return moved
 
 

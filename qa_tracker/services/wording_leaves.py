@@ -84,6 +84,8 @@ SENTENCES: Final = {
     "location.added": N_("%(actor)s added the room %(name)s"),
     "site.hours_set": N_("%(actor)s set the hours of a site's mail: from %(digest_hour)s:00%(quiet)s"),
     "location.hours_set": N_("%(actor)s recorded the hours of the room %(name)s: %(clock)s"),
+    "ladder.set": N_("%(actor)s set who is told at which level for %(site)s: %(reason)s"),
+    "ladder.dropped": N_("%(actor)s went back to the common ladder for %(site)s: %(reason)s"),
     "holidays.added": N_("%(actor)s added days off (%(days)s)"),
     "pool.created": N_("%(actor)s made the pool %(name)s of %(sites)s"),
     "dossier.frozen": N_("%(actor)s set a dossier of %(device)s, its content frozen, to be drawn"),
@@ -227,13 +229,15 @@ def _quiet(new: Mapping[str, Any]) -> str:
 
 def _moved(new: Mapping[str, Any]) -> str:
     """What a sweep did, in numbers; nothing of what it didn't."""
-    counts = {name: len(new.get(name) or ()) for name in ("notices", "missed", "excused", "opened", "ended")}
+    counts = {
+        name: len(new.get(name) or ()) for name in ("notices", "missed", "excused", "opened", "plans_ended")
+    }
     words = {
         "notices": ngettext("%(n)d notice owed", "%(n)d notices owed", counts["notices"]),
         "missed": ngettext("%(n)d check missed", "%(n)d checks missed", counts["missed"]),
         "excused": ngettext("%(n)d check excused", "%(n)d checks excused", counts["excused"]),
         "opened": ngettext("%(n)d check opened", "%(n)d checks opened", counts["opened"]),
-        "ended": ngettext("%(n)d plan ended", "%(n)d plans ended", counts["ended"]),
+        "plans_ended": ngettext("%(n)d plan ended", "%(n)d plans ended", counts["plans_ended"]),
     }
     told = [words[name] % {"n": count} for name, count in counts.items() if count]
     return listed_all(told) if told else _("nothing to tell")

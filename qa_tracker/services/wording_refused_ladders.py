@@ -7,6 +7,13 @@ from typing import Final
 from django.utils.translation import gettext_noop as N_
 
 LADDERS: Final = {
+    "ladder.reason_missing": N_(
+        "Say why the ladder changes: people will ask why they are told, or no longer are."
+    ),
+    "ladder.same": N_("This is the ladder there is already. Change a level, or leave it as it stands."),
+    "ladder.none_of_its_own": N_(
+        "There is no ladder of its own to give up: the common one is in force here already."
+    ),
     "ladder.empty": N_("A ladder that tells nobody is none. Name who is told at one level at least."),
     "ladder.told_twice": N_("Someone is named twice at a level. Name each recipient of a level once."),
     "ladder.unknown_recipient": N_(

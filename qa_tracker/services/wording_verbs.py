@@ -80,6 +80,7 @@ PERMITTED: Final = {
     "criteria.adopt": N_("publish or adopt criteria"),
     "baseline.set": N_("set baselines"),
     "plan.make": N_("make or end plans"),
+    "ladder.set": N_("set who is told at which level"),
     "fault.open": N_("open faults"),
     "fault.act": N_("record actions on faults"),
     "fault.close": N_("close faults"),

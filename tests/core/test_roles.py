@@ -33,7 +33,7 @@ MAY = {
     "lead": {
         *("see", "check.enter_user", "check.enter", "check.excuse", "check.acknowledge", "check.move_due"),
         *("device.register", "device.edit"),
-        *("device.place", "device.quarantine", "condition.set", "object.register", "plan.make"),
+        *("device.place", "device.quarantine", "condition.set", "object.register", "plan.make", "ladder.set"),
         *("fault.open", "fault.act", "dossier.issue", "dossier.read", "ledger.read", "token.issue"),
     },
     "engineer": {
@@ -47,7 +47,7 @@ MAY = {
         *("check.accept_out_of_window", "check.acknowledge", "check.move_due"),
         *("device.register", "device.edit", "device.place", "device.accept"),
         *("device.quarantine", "device.restore", "device.repair", "condition.set", "object.register"),
-        *("procedure.adopt", "criteria.adopt", "baseline.set", "plan.make", "fault.open", "fault.act"),
+        *("procedure.adopt", "criteria.adopt", "baseline.set", "plan.make", "ladder.set", "fault.open", "fault.act"),
         *("fault.close", "dossier.issue", "dossier.read", "ledger.read", "token.issue"),
     },
     "auditor": {"see", "dossier.issue", "dossier.read", "ledger.read", "token.issue"},
@@ -72,7 +72,7 @@ def test_cell_says_what_the_role_may_do_for_each_verb(verb, role):
 
 def test_table_has_every_verb_that_the_roles_are_given_and_no_other():
     assert set(VERBS) == set().union(*MAY.values())
-    assert len(VERBS) == 32
+    assert len(VERBS) == 33
 
 
 @pytest.mark.parametrize("verb", CHANGES_A_RECORD)

@@ -9,10 +9,10 @@ from typing import Any
 
 from django.utils.timezone import now
 
-from qa_tracker.core.ladder import Owed
+from qa_tracker.core.ladder import Owed, Rung
 from qa_tracker.records import ledger
 from qa_tracker.records.models import Digest
-from qa_tracker.services import digests, holds, owed
+from qa_tracker.services import digests, holds, ladders, owed
 from qa_tracker.services.devices import Place
 from tests import builders
 from tests.builders import Ward
@@ -45,9 +45,20 @@ def given_up(ward: Ward) -> int:
     return made.pk
 
 
+def with_a_ladder(ward: Ward) -> Given:
+    """The group with a ladder of its own, and why it goes back."""
+    ladders.set_ladder(site=None, rungs=RUNGS, reason="Nights", actor=ward.physicist, at=now())
+    return {"site": None, "reason": "As it was", "actor": ward.physicist}
+
+
+RUNGS = (Rung("due", "lead"), Rung("t1", "physicist", 3))
 HOURS = {"digest_hour": 8, "quiet_from_hour": 20, "quiet_until_hour": 7}
 
 HOLDS: dict[str, Callable[[Ward], Given]] = {
+    "ladders.set_ladder": lambda w: {
+        "site": w.site, "rungs": RUNGS, "reason": "Nights are covered", "actor": w.physicist,
+    },
+    "ladders.drop_ladder": with_a_ladder,
     "holds.acknowledge": lambda w: {**holding(w), "actor": w.physicist},
     "holds.snooze": lambda w: {**holding(w), "actor": w.technician},
     "holds.end_hold": lambda w: {**held(w), "actor": w.physicist},
@@ -63,6 +74,7 @@ HOLDS: dict[str, Callable[[Ward], Given]] = {
     },
 }  # fmt: skip
 ASKED_OF_HOLDS = {
+    "ladders.may_set": "asks",
     "holds.may_acknowledge": "asks",
     "holds.may_snooze": "asks",
     "digests.make_digests": "the state of a mail is no record; its notices are",

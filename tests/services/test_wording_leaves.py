@@ -233,6 +233,14 @@ TABLE = [
         f"{HD} set the hours of a site's mail: from 7:00, quiet from 20:00 to 6:00.",
     ),
     (
+        "ladder.set", {"site": "AG", "rungs": ["due/lead"]}, "Nights are covered",
+        f"{HD} set who is told at which level for AG: Nights are covered.",
+    ),
+    (
+        "ladder.dropped", {"site": None, "rungs": ["due/lead"]}, "As everywhere",
+        f"{HD} went back to the common ladder for the whole group: As everywhere.",
+    ),
+    (
         "location.hours_set", {"name": "Theatre 3", "round_the_clock": True}, "",
         f"{HD} recorded the hours of the room Theatre 3: round the clock.",
     ),
