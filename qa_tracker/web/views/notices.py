@@ -14,7 +14,8 @@ from qa_tracker.web.presenters.notices import told_of_other
 def show(request: HttpRequest) -> HttpResponse:
     """The notices of the person, newest first; looking at them marks them as seen."""
     at = now()
-    zones = {site.code: site.time_zone for site in sites.list_sites(guards.scope(request.user, at))}
+    held = sites.list_sites(guards.scope(request.user, at))
+    zones = {site.code: site.time_zone for site in held}
     unseen = notices.unseen_count(request.user.pk)
     rows = [
         {
@@ -27,4 +28,4 @@ def show(request: HttpRequest) -> HttpResponse:
     ]
     owed.mark_seen(actor=request.user, at=at)
     may_see_mail = guards.may_somewhere(request.user, "mail.see", at)
-    return render(request, "notices.html", {"rows": rows, "may_see_mail": may_see_mail})
+    return render(request, "notices.html", {"rows": rows, "may_see_mail": may_see_mail, "sites": held})
