@@ -9,6 +9,7 @@ from qa_tracker.api import (
     errors,
     evidence,
     faults,
+    ladders,
     library,
     notices,
     places,
@@ -30,5 +31,6 @@ api = JsonApi(
     auth=BearerToken(),
 )
 errors.install(api)
-for noun in (places, devices, library, baselines, checks, signing, faults, evidence, notices):
+NOUNS = (places, devices, library, baselines, checks, signing, faults, evidence, notices, ladders)
+for noun in NOUNS:
     api.add_router("", noun.router)

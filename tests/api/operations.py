@@ -9,8 +9,9 @@ from datetime import timedelta
 
 from django.utils.timezone import now
 
+from qa_tracker.core.ladder import Rung
 from qa_tracker.records.models import CriteriaSet, Edition
-from qa_tracker.services import baselines, devices, holds
+from qa_tracker.services import baselines, devices, holds, ladders
 from qa_tracker.services.baselines import Value
 from tests import builders
 from tests.api.world import ROLES, World
@@ -135,6 +136,22 @@ def held(world: World) -> uuid.UUID:
     return holds.acknowledge(check=world.waiting.uid, **holding(world), actor=world.ward.physicist, at=now()).uid
 
 
+def site(world: World) -> uuid.UUID:
+    return world.ward.site.uid
+
+
+def ladder(world: World) -> dict:
+    return {"rungs": [{"level": "t1", "recipient": "lead", "after_days": 3}], "reason": "Nights are covered"}
+
+
+def with_a_ladder(world: World) -> uuid.UUID:
+    """The site with a ladder of its own."""
+    rungs = [Rung("due", "lead")]
+    given = {"rungs": rungs, "reason": "Nights", "actor": world.ward.physicist}
+    ladders.set_ladder(site=world.ward.site, **given, at=now())
+    return world.ward.site.uid
+
+
 CALLS = {
     "listSites": Call(ALL, done=200),
     "listPools": Call(ALL, done=200),
@@ -196,4 +213,7 @@ CALLS = {
     "acknowledgeCheck": Call(PLANNING, waiting, holding),
     "snoozeCheck": Call(WARD, waiting, holding),
     "endHold": Call(PLANNING, held, lambda world: {"reason": "Back"}, 200),
+    "showLadder": Call(ALL, site, done=200),
+    "setLadder": Call(PLANNING, site, ladder, 200),
+    "dropLadder": Call(PLANNING, with_a_ladder, lambda world: {"reason": "As everywhere"}, 200),
 }
