@@ -29,6 +29,7 @@ class CriterionOut(Schema):
 class VerdictOut(Schema):
     """A verdict with its sentence, the code and parameters the sentence is made of, and the arithmetic.
 
+    `probability` is that of conformity with the level that decided, empty where no uncertainty is known.
     ``further`` holds what other limits of the same measurand say; of them all the worst decides.
     """
 
@@ -46,6 +47,7 @@ class VerdictOut(Schema):
     instruction: str
     uncertainty: str
     rule: str
+    probability: str
     further: list[VerdictOut]
 
 
@@ -76,7 +78,10 @@ class BandOut(Schema):
 
 
 class ItemOut(Schema):
-    """One thing a check asks: what, where, in which unit and steps, and what it is compared with."""
+    """One thing a check asks: what, where, in which unit and steps, and what it is compared with.
+
+    Each of `criteria` judges it and the worst decides; `criterion` is the first of them.
+    """
 
     key: str
     measurand: str
@@ -95,6 +100,7 @@ class ItemOut(Schema):
     nominal: str | None
     baseline: InForceOut | None
     criterion: CriterionOut | None
+    criteria: list[CriterionOut]
     plausible: BandOut | None
     last: str | None
     last_at: Moment | None
@@ -183,10 +189,14 @@ class JudgedItemOut(Schema):
 
 
 class JudgedOut(Schema):
-    """A check judged without being written; `shown_sha256` is what a signature on it is bound to."""
+    """A check judged without being written; `shown_sha256` is what a signature on it is bound to.
+
+    `decided_by` is the key of the item that made the verdict, empty where nothing was judged.
+    """
 
     verdict: str
     level: str
+    decided_by: str
     suggests_quarantine: bool
     meaning: str
     items: list[JudgedItemOut]
@@ -215,6 +225,7 @@ def verdict_of_row(row: VerdictRow | None) -> dict[str, object] | None:
         "sentence": verdict_sentence(row.code, row.parameters, row.verdict, row.level),
         "criterion": criterion_out(row.criterion),
         "source": source_line(row.criterion, row.level) if row.criterion else "",
+        "probability": row.parameters.get("probability", ""),
         "further": [verdict_of_row(each) for each in row.further],
     }
 
@@ -244,6 +255,7 @@ def _said(weighed: Weighed, instruction: str, further: list[dict[str, object]]) 
         "instruction": instruction,
         "uncertainty": weighed.uncertainty,
         "rule": weighed.rule,
+        "probability": judgement.parameters.get("probability", ""),
         "further": further,
     }
 
@@ -272,6 +284,7 @@ def item_out(item: Item) -> dict[str, object]:
         "nominal": item.nominal,
         "baseline": item.baseline,
         "criterion": criterion_out(item.criterion),
+        "criteria": [criterion_out(each) for each in item.criteria],
         "plausible": spec.plausible,
         "last": last.entered if last else None,
         "last_at": last.measured_at if last else None,

@@ -5,6 +5,7 @@ from __future__ import annotations
 from qa_tracker.api import (
     baselines,
     checks,
+    compared,
     devices,
     errors,
     evidence,
@@ -14,6 +15,7 @@ from qa_tracker.api import (
     notices,
     places,
     signing,
+    uncertainties,
 )
 from qa_tracker.api.authentication import BearerToken
 from qa_tracker.api.openapi import JsonApi
@@ -31,6 +33,9 @@ api = JsonApi(
     auth=BearerToken(),
 )
 errors.install(api)
-NOUNS = (places, devices, library, baselines, checks, signing, faults, evidence, notices, ladders)
+NOUNS = (
+    places, devices, library, compared, uncertainties, baselines, checks, signing, faults, evidence, notices,
+    ladders,
+)  # fmt: skip
 for noun in NOUNS:
     api.add_router("", noun.router)

@@ -37,6 +37,7 @@ def judge(request: ApiRequest, uid: uuid.UUID, body: JudgeIn) -> dict[str, Any]:
     return {
         "verdict": seen.judged.verdict,
         "level": seen.judged.level,
+        "decided_by": seen.judged.worst.item.key if seen.judged.worst else "",
         "suggests_quarantine": seen.judged.suggests_quarantine(),
         "meaning": "performed",
         "items": [judged_item_out(one) for one in seen.judged.items],

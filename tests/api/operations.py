@@ -11,7 +11,7 @@ from django.utils.timezone import now
 
 from qa_tracker.core.ladder import Rung
 from qa_tracker.records.models import CriteriaSet, Edition
-from qa_tracker.services import baselines, devices, holds, ladders
+from qa_tracker.services import baselines, devices, holds, ladders, uncertainties
 from qa_tracker.services.baselines import Value
 from tests import builders
 from tests.api.world import ROLES, World
@@ -28,12 +28,13 @@ RANDOM = uuid.UUID("018f0000-0000-7000-8000-000000000007")
 
 @dataclass(frozen=True)
 class Call:
-    """``of`` gives the thing in the address, ``body`` what is sent; ``done`` is the status of success."""
+    """``of`` gives the thing in the address, ``query`` what follows it, ``body`` what is sent; ``done`` is the status of success."""
 
     roles: frozenset[str]
     of: Callable[[World], uuid.UUID] | None = None
     body: Callable[[World], dict] | None = None
     done: int = 201
+    query: Callable[[World], str] | None = None
 
 
 def probe(world: World) -> uuid.UUID:
@@ -133,7 +134,9 @@ def holding(world: World) -> dict:
 
 
 def held(world: World) -> uuid.UUID:
-    return holds.acknowledge(check=world.waiting.uid, **holding(world), actor=world.ward.physicist, at=now()).uid
+    return holds.acknowledge(
+        check=world.waiting.uid, **holding(world), actor=world.ward.physicist, at=now()
+    ).uid
 
 
 def site(world: World) -> uuid.UUID:
@@ -150,6 +153,27 @@ def with_a_ladder(world: World) -> uuid.UUID:
     given = {"rungs": rungs, "reason": "Nights", "actor": world.ward.physicist}
     ladders.set_ladder(site=world.ward.site, **given, at=now())
     return world.ward.site.uid
+
+
+def statement(world: World) -> dict:
+    stated = {"kind": "standard", "entered": "0.5", "source": "Repeats of ten set-ups"}
+    return stated | {"measurand": "reverberation_depth", "site": world.ward.site.uid}
+
+
+def stated(world: World) -> uuid.UUID:
+    given = {name: value for name, value in statement(world).items() if name != "site"}
+    return uncertainties.state(
+        statement=uncertainties.Statement(**given), site=world.ward.site, actor=world.ward.physicist, at=now()
+    ).uid
+
+
+def some_set(world: World) -> str:
+    return f"criteria_set={CriteriaSet.objects.first().uid}"
+
+
+def two_sets(world: World) -> str:
+    old, new = CriteriaSet.objects.order_by("id")[:2]
+    return f"old={old.uid}&new={new.uid}"
 
 
 CALLS = {
@@ -175,6 +199,11 @@ CALLS = {
     "listCriteriaSets": Call(ALL, done=200),
     "adoptProcedure": Call(PHYSICIST, body=edition),
     "adoptCriteria": Call(PHYSICIST, body=criteria),
+    "askWhatIf": Call(ALL, done=200, query=some_set),
+    "compareCriteriaSets": Call(ALL, done=200, query=two_sets),
+    "listUncertainties": Call(ALL, done=200),
+    "stateUncertainty": Call(PHYSICIST, body=statement),
+    "endUncertainty": Call(PHYSICIST, stated, lambda world: {"reason": "Measured anew"}, 200),
     "setBaselines": Call(PHYSICIST, spare, baseline),
     "previewBaselines": Call(PHYSICIST, spare, unsigned, 200),
     "previewSetUps": Call(PHYSICIST, spare, set_ups, 200),

@@ -28,7 +28,8 @@ def call(world, caller, name, uid=None):
     uid = uid or (wanted.of(world) if wanted.of else None)
     with transaction.atomic():
         body = wanted.body(world) if wanted.body else None
-        answer = caller.raw(method, path.format(uid=uid), body)
+        asked = f"?{wanted.query(world)}" if wanted.query else ""
+        answer = caller.raw(method, path.format(uid=uid) + asked, body)
         transaction.set_rollback(True)
     assert answer.status_code in declared, (name, answer.status_code, answer.content.decode())
     return answer
