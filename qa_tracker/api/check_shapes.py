@@ -13,7 +13,7 @@ from qa_tracker.api.schemas import Given, Mark, Moment, Secret, Sha256, Short, W
 
 
 class CheckOut(Schema):
-    """A check as a duty."""
+    """A check as a duty; `slot_on` is the plan's own day where the due day was moved by hand."""
 
     uid: uuid.UUID
     device_uid: uuid.UUID
@@ -28,6 +28,7 @@ class CheckOut(Schema):
     responsible: str
     state: str
     due_on: dt.date | None
+    slot_on: dt.date | None
     opens_at: Moment | None
     due_at: Moment | None
     late_at: Moment | None

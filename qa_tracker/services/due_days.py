@@ -35,25 +35,35 @@ def move(*, check: uuid.UUID, to_on: dt.date, reason: str, actor: Person, at: dt
     row = finding.check(actor, check, at)
     check_may(actor, "check.move_due", row.site_id or actor.duties_site_id, at)
     reason = required(reason, "due_day.reason_missing", "reason")
-    room = room_of(row)
-    check_day(row, room, to_on, at)
+    found = room_of(row)
+    check_day(row, found, to_on, at)
     with ledger.command("check.due_moved", actor=actor, at=at, reason=reason) as act:
         before = row.due_on
-        move_to(act, row, room, to_on)
+        move_to(act, row, found, to_on)
         act.about(row, device=row.device, site=row.site)
-        act.tell({"due": to_on.isoformat(), "slot": room.slot_on.isoformat()}, {"due": f"{before}"})
+        act.tell({"due": to_on.isoformat(), "slot": found.slot_on.isoformat()}, {"due": f"{before}"})
+
+
+def room(*, check: uuid.UUID, actor: Person, at: dt.datetime) -> Room:
+    """The days a check's due day may be moved to. Reads only.
+
+    Refused: role, a check without a plan or no longer awaited, a window that is over.
+    """
+    row = finding.check(actor, check, at)
+    check_may(actor, "check.move_due", row.site_id or actor.duties_site_id, at)
+    found = room_of(row)
+    if found.last_on < schedule.local_day(at, zone_of(row)):
+        raise Conflict("due_day.window_over", last_on=found.last_on)
+    return found
 
 
 def may_move(check: uuid.UUID, *, actor: Person, at: dt.datetime) -> DomainError | None:
     """The refusal the actor would meet whatever the day, or None."""
-    row = finding.check(actor, check, at)
     try:
-        check_may(actor, "check.move_due", row.site_id or actor.duties_site_id, at)
-        room = room_of(row)
+        room(check=check, actor=actor, at=at)
     except (Forbidden, Conflict) as refusal:
         return refusal
-    over = room.last_on < schedule.local_day(at, zone_of(row))
-    return Conflict("due_day.window_over", last_on=room.last_on) if over else None
+    return None
 
 
 def room_of(check: Check) -> Room:
@@ -73,32 +83,32 @@ def zone_of(check: Check) -> str:
     return check.site.time_zone if check.site else "UTC"
 
 
-def check_day(check: Check, room: Room, to_on: dt.date, at: dt.datetime) -> None:
+def check_day(check: Check, found: Room, to_on: dt.date, at: dt.datetime) -> None:
     """Refuse a day the check can't be moved to."""
-    if not room.first_on <= to_on <= room.last_on:
-        raise Invalid("due_day.outside", field="to_on", first_on=room.first_on, last_on=room.last_on)
+    if not found.first_on <= to_on <= found.last_on:
+        raise Invalid("due_day.outside", field="to_on", first_on=found.first_on, last_on=found.last_on)
     if to_on < schedule.local_day(at, zone_of(check)):
         raise Invalid("due_day.past", field="to_on")
     if to_on == check.due_on:
         raise Invalid("due_day.same", field="to_on", due_on=to_on)
     if Check.objects.filter(plan_id=check.plan_id, due_on=to_on).exclude(id=check.id).exists():
         raise Conflict("due_day.taken", field="to_on", due_on=to_on)
-    following_on = following_of(check, room)
+    following_on = following_of(check, found)
     if following_on is not None and to_on >= following_on:
         raise Conflict("due_day.following", field="to_on", due_on=following_on)
 
 
-def following_of(check: Check, room: Room) -> dt.date | None:
+def following_of(check: Check, found: Room) -> dt.date | None:
     """The due day of the occurrence after this one, where the calendar gives it already."""
     plan = check.plan
     if plan is None or plan.basis != "calendar" or plan.ended_at is not None:
         return None
-    return plans.due_after(plan, room.slot_on).due_on
+    return plans.due_after(plan, found.slot_on).due_on
 
 
-def move_to(act: ledger.Act, check: Check, room: Room, to_on: dt.date) -> None:
+def move_to(act: ledger.Act, check: Check, found: Room, to_on: dt.date) -> None:
     """The columns of a moved due day, with its clock set anew; notices that were told are not told again."""
     due_at, late_at = schedule.local_day_bounds(to_on, zone_of(check))
-    slot_on = None if to_on == room.slot_on else room.slot_on
+    slot_on = None if to_on == found.slot_on else found.slot_on
     act.change(check, due_on=to_on, slot_on=slot_on, due_at=due_at, late_at=late_at)
     clocks.start_again(check, act.at)

@@ -4,12 +4,15 @@ from __future__ import annotations
 
 from django.urls import path
 
-from qa_tracker.web.views import attempts, checks, due, entry, holds, notices, signing
+from qa_tracker.web.views import attempts, checks, compliance, due, due_days, entry, holds, notices, signing
 
 urlpatterns = [
     path("", due.show, name="due"),
     path("notices/", notices.show, name="notices"),
     path("checks/", checks.index, name="checks"),
+    path("checks/compliance/", compliance.show, name="compliance"),
+    path("checks/compliance/list/", compliance.behind, name="compliance-list"),
+    path("checks/compliance.csv", compliance.download, name="compliance-csv"),
     path("checks/<uuid:uid>/", checks.show, name="check"),
     path("checks/<uuid:uid>/enter/", entry.enter, name="check-enter"),
     path("checks/<uuid:uid>/draft/", entry.draft, name="check-draft"),
@@ -18,6 +21,7 @@ urlpatterns = [
     path("checks/<uuid:uid>/send-back/", checks.send_back, name="check-send-back"),
     path("checks/<uuid:uid>/not-tested/", attempts.not_tested, name="check-not-tested"),
     path("checks/<uuid:uid>/excuse/", attempts.excuse, name="check-excuse"),
+    path("checks/<uuid:uid>/move/", due_days.move, name="check-move"),
     path("checks/<uuid:uid>/acknowledge/", holds.acknowledge, name="check-acknowledge"),
     path("checks/<uuid:uid>/snooze/", holds.snooze, name="check-snooze"),
     path("checks/<uuid:uid>/holds/<uuid:hold>/end/", holds.end, name="hold-end"),

@@ -37,4 +37,5 @@ LIFE: dict[str, Callable[[Ward], Given]] = {
 
 ASKED_OF_LIFE = {
     "due_days.may_move": "asks",
+    "due_days.room": "reads",
 }

@@ -40,6 +40,7 @@ class CheckRow:
     responsible: str
     state: str
     due_on: dt.date | None
+    slot_on: dt.date | None
     opens_at: dt.datetime | None
     due_at: dt.datetime | None
     late_at: dt.datetime | None
@@ -65,7 +66,7 @@ def _row(check: Check) -> CheckRow:
         check.site_id, check.site.code if check.site else "",
         room.name if room else "", room.position if room else 0,
         plan.responsible_id if plan else None, plan.responsible.name if plan else "",
-        check.state, check.due_on, check.opens_at, check.due_at, check.late_at, check.overdue_at,
+        check.state, check.due_on, check.slot_on, check.opens_at, check.due_at, check.late_at, check.overdue_at,
         plan.grace_days if plan else 0,
         check.verdict, check.verdict_level, check.submitted_at, check.excuse,
         other.uid if other else None, other.procedure.title if other else "", other.state if other else "",

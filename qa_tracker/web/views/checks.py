@@ -19,12 +19,12 @@ from qa_tracker.core.errors import DomainError, NotFound
 from qa_tracker.core.schedule import local_day
 from qa_tracker.core.workflow import CHECK_AWAITED
 from qa_tracker.records.queries import checks as queries
-from qa_tracker.records.queries import devices, library, notices, sites, submissions
+from qa_tracker.records.queries import devices, due_moves, library, notices, sites, submissions
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.library import EditionRow
 from qa_tracker.records.queries.scope import Scope
 from qa_tracker.records.queries.submissions import SubmissionRow
-from qa_tracker.services import checks, excuses, guards, wording
+from qa_tracker.services import checks, due_days, excuses, guards, wording
 from qa_tracker.web import refused as refusals
 from qa_tracker.web.presenters.check import shown_submission, to_countersign
 from qa_tracker.web.presenters.due import zone_at
@@ -78,6 +78,9 @@ def _page(
         "may_enter": row.state in CHECK_AWAITED and bool(enterable(request.user, [row], at)),
         "may_excuse": row.state in ("scheduled", "started")
         and excuses.may_excuse(row.site_id, actor=request.user, at=at),
+        "moves": due_moves.due_moves(row.uid),
+        "may_move": row.state in ("scheduled", "started")
+        and due_days.may_move(row.uid, actor=request.user, at=at) is None,
         "next": _next_here(request, scope, row, at) if "signed" in request.GET else None,
     }
     return render(request, "check.html", context | _second(request, row, done, at), status=status)
