@@ -7,6 +7,8 @@ from django.utils.timezone import now
 
 from qa_tracker.records.queries.checks import checks_of_device
 from qa_tracker.services import checks
+from qa_tracker.services.checks import Typed
+from qa_tracker.services.entries import Entry
 from tests import builders
 
 
@@ -21,11 +23,18 @@ def unplanned(ward):
     )
 
 
+def with_one_unread(ward, check):
+    """A check that satisfies no other, since it leaves out what that one requires."""
+    entries = builders.answers(check, ward.technician)
+    key = next(key for key in entries if key.startswith("lens_grade"))
+    return Typed(entries | {key: Entry(not_tested="in_use")}, cleaned_before="Wipe, Ifeoma, 12:10")
+
+
 @pytest.mark.parametrize("planned_last", [True, False])
 def test_check_done_last_is_the_newest_whether_it_was_planned_or_not(ward, planned_last):
     both = [ward.check, unplanned(ward)]
     for check in both[::-1] if planned_last else both:
-        builders.submitted(check, ward.technician)
+        builders.submitted(check, ward.technician, with_one_unread(ward, check))
     newest = both[0 if planned_last else 1]
     assert checks_of_device(ward.probe.id, until=now(), most=1)[0].id == newest.id
 
