@@ -3,12 +3,10 @@
 from __future__ import annotations
 
 import datetime as dt
-import json
 import uuid
 from dataclasses import dataclass
 
-from qa_tracker.records.models import Person
-from qa_tracker.records.models.ledger import Leaf
+from qa_tracker.records.queries.ledger import leaves_about
 
 
 @dataclass(frozen=True)
@@ -24,12 +22,9 @@ class DueMove:
 
 def due_moves(check_uid: uuid.UUID) -> list[DueMove]:
     """The moves of a check's due day, oldest first."""
-    leaves = list(Leaf.objects.filter(subject_uid=check_uid, kind="check.due_moved").order_by("seq"))
-    people = dict(Person.objects.filter(uid__in={x.actor_uid for x in leaves}).values_list("uid", "name"))
     moves = []
-    for leaf in leaves:
-        said = json.loads(leaf.content)
-        days = (dt.date.fromisoformat(said[each]["due"]) for each in ("old", "new"))
-        by = people.get(leaf.actor_uid, "") if leaf.actor_uid else ""
-        moves.append(DueMove(*days, by, leaf.at, str(said.get("reason") or "")))
+    for leaf in leaves_about(check_uid, "check.due_moved"):
+        said = leaf.said
+        from_on, to_on = (dt.date.fromisoformat(said[each]["due"]) for each in ("old", "new"))
+        moves.append(DueMove(from_on, to_on, leaf.actor, leaf.at, str(said.get("reason") or "")))
     return moves

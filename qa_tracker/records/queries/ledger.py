@@ -86,6 +86,13 @@ def list_leaves(
     return [_row(leaf, people, labels) for leaf in leaves]
 
 
+def leaves_about(subject_uid: uuid.UUID, kind: str) -> list[LeafRow]:
+    """The leaves of one kind about one thing, oldest first."""
+    leaves = list(Leaf.objects.filter(subject_uid=subject_uid, kind=kind).order_by("seq"))
+    people = dict(Person.objects.filter(uid__in={x.actor_uid for x in leaves}).values_list("uid", "name"))
+    return [_row(leaf, people, {}) for leaf in leaves]
+
+
 def every_leaf(first: int = 0) -> Iterator[LeafRow]:
     """Every leaf in order, streamed."""
     for leaf in Leaf.objects.filter(seq__gte=first).order_by("seq").iterator(chunk_size=2000):
