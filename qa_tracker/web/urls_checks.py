@@ -4,10 +4,22 @@ from __future__ import annotations
 
 from django.urls import path
 
-from qa_tracker.web.views import attempts, checks, compliance, due, due_days, entry, holds, notices, signing
+from qa_tracker.web.views import (
+    attempts,
+    checks,
+    compliance,
+    due,
+    due_days,
+    entry,
+    holds,
+    notices,
+    signing,
+    year_ahead,
+)
 
 urlpatterns = [
     path("", due.show, name="due"),
+    path("year-ahead/", year_ahead.show, name="year-ahead"),
     path("notices/", notices.show, name="notices"),
     path("checks/", checks.index, name="checks"),
     path("checks/compliance/", compliance.show, name="compliance"),
