@@ -15,6 +15,7 @@ os.environ.setdefault("DJANGO_SETTINGS_MODULE", "config.settings")
 
 from celery import Celery, signals
 from django.conf import settings
+from kombu import Exchange, Queue
 
 from config.parent import die_with_parent
 from qa_tracker.tasks.beat import EVERY_MINUTE, SWEEP
@@ -24,6 +25,8 @@ TIME_LIMIT_S = 200
 SOFT_TIME_LIMIT_S = 180
 VISIBILITY_TIMEOUT_S = int(os.environ.get("LEADLINE_VISIBILITY_TIMEOUT", "300"))
 SOFT_SHUTDOWN_S = 5.0
+# A line of its own, so that a sweep never stands behind a thousand mails: a worker takes from the two in turn.
+LINES = ("celery", "sweep")
 TASK_MODULES = ("qa_tracker.tasks.sweep", "qa_tracker.tasks.mail", "qa_tracker.tasks.dossiers")
 
 app = Celery("leadline")
@@ -50,10 +53,14 @@ app.conf.update(
     task_time_limit=TIME_LIMIT_S,
     task_soft_time_limit=SOFT_TIME_LIMIT_S,
     task_create_missing_queues=True,
+    task_queues=[Queue(line, Exchange(line), routing_key=line) for line in LINES],
+    task_routes={SWEEP: {"queue": "sweep", "routing_key": "sweep"}},
     worker_pool="prefork",
     worker_prefetch_multiplier=1,
     worker_soft_shutdown_timeout=SOFT_SHUTDOWN_S,
-    worker_cancel_long_running_tasks_on_connection_loss=True,
+    # What loses the broker goes on: cut off, a mail that the server took would be sent again. Its message comes back,
+    # and finds the claim.
+    worker_cancel_long_running_tasks_on_connection_loss=False,
     worker_max_tasks_per_child=1000,
     worker_send_task_events=False,
     timezone="UTC",

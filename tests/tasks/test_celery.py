@@ -5,6 +5,7 @@ from __future__ import annotations
 import pytest
 
 from config.celery import LEASE_S, app
+from qa_tracker.tasks.beat import SWEEP
 
 
 @pytest.mark.parametrize(
@@ -32,6 +33,17 @@ def test_timetable_has_one_line_when_read() -> None:
 @pytest.mark.parametrize("name", ["task_acks_late", "task_reject_on_worker_lost", "enable_utc"])
 def test_task_is_kept_until_done_when_configured(name: str) -> None:
     assert app.conf[name] is True
+
+
+def test_sweep_has_a_line_of_its_own_when_mails_wait() -> None:
+    lines = {queue.name: (queue.exchange.name, queue.routing_key) for queue in app.conf.task_queues}
+
+    assert lines == {"celery": ("celery", "celery"), "sweep": ("sweep", "sweep")}
+    assert app.conf.task_routes[SWEEP]["queue"] == "sweep"
+
+
+def test_task_goes_on_when_the_broker_is_lost() -> None:
+    assert app.conf.worker_cancel_long_running_tasks_on_connection_loss is False
 
 
 def test_application_takes_json_only_and_keeps_no_results_when_configured() -> None:

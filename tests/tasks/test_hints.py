@@ -43,7 +43,7 @@ def test_hint_waits_in_line_with_its_identifiers_when_the_broker_runs(
     assert send_hint(SWEEP, 41, "0190-a")
 
     with redis.Redis(unix_socket_path=str(broker[0])) as client:
-        message = json.loads(client.lindex("celery", 0))
+        message = json.loads(client.lindex("sweep", 0))
     assert message["headers"]["task"] == SWEEP
     assert message["headers"]["argsrepr"] == "(41, '0190-a')"
     assert message["content-type"] == "application/json"
