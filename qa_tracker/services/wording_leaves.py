@@ -77,6 +77,8 @@ SENTENCES: Final = {
     "person.address_set": N_("%(actor)s changed a mail address"),
     "role.granted": N_("%(actor)s gave the role of %(role)s for %(site)s, from %(from)s"),
     "role.ended": N_("%(actor)s ended a role on %(until)s"),
+    "leave.taken": N_("%(actor)s recorded a leave from %(from)s to %(until)s, with a deputy"),
+    "leave.cancelled": N_("%(actor)s cancelled a leave"),
     "token.issued": N_("%(actor)s issued the token “%(label)s”"),
     "token.revoked": N_("%(actor)s ended a token"),
     "site.created": N_("%(actor)s made the site %(code)s, %(name)s"),

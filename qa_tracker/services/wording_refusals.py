@@ -15,6 +15,7 @@ from qa_tracker.services.wording_findings import REFUSED
 from qa_tracker.services.wording_refused_acoustics import ACOUSTICS
 from qa_tracker.services.wording_refused_baselines import BASELINES
 from qa_tracker.services.wording_refused_due_days import DUE_DAYS
+from qa_tracker.services.wording_refused_duties import DUTIES
 from qa_tracker.services.wording_refused_editor import EDITOR
 from qa_tracker.services.wording_refused_entry import ENTRY
 from qa_tracker.services.wording_refused_formulas import FORMULAS
@@ -57,6 +58,7 @@ SENTENCES: Final[Mapping[str, str]] = (
     | BASELINES
     | EDITOR
     | NOTICES
+    | DUTIES
     | LADDERS
     | DUE_DAYS
 )

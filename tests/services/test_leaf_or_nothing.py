@@ -19,6 +19,7 @@ from criteria_leaves import CRITERIA
 from django.apps import apps
 from django.db import connection
 from django.utils.timezone import now
+from duty_leaves import ASKED_OF_DUTIES, DUTIES
 from editor_leaves import DRAFTS, EDITOR
 from life_leaves import ASKED_OF_LIFE, LIFE
 from notice_leaves import ASKED_OF_HOLDS, HOLDS
@@ -199,6 +200,7 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
     **CRITERIA,
     **EDITOR,
     **HOLDS,
+    **DUTIES,
     **LIFE,
     "uncertainties.state": lambda w: {
         "statement": Statement("reverberation_depth", "standard", "0.3", source="Repeats of March"),
@@ -284,6 +286,7 @@ WITHOUT_A_LEAF = {
     **PROPOSALS,
     **DRAFTS,
     **ASKED_OF_HOLDS,
+    **ASKED_OF_DUTIES,
     **ASKED_OF_LIFE,
     "checks.sheet": "reads",
     "checks.preview": "reads",

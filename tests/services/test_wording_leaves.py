@@ -229,6 +229,11 @@ TABLE = [
         f"{HD} ended a hold of the notices of {TERN}: Probe is back.",
     ),
     (
+        "leave.taken", {"from": "2025-03-14", "until": "2025-03-20"}, "Summer",
+        f"{HD} recorded a leave from 14 March 2025 to 20 March 2025, with a deputy.",
+    ),
+    ("leave.cancelled", {}, "", f"{HD} cancelled a leave."),
+    (
         "site.hours_set", {"digest_hour": 7, "quiet_from_hour": 20, "quiet_until_hour": 6}, "",
         f"{HD} set the hours of a site's mail: from 7:00, quiet from 20:00 to 6:00.",
     ),
