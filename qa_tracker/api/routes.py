@@ -14,6 +14,7 @@ from qa_tracker.api import (
     library,
     notices,
     places,
+    planning,
     signing,
     uncertainties,
 )
@@ -34,7 +35,7 @@ api = JsonApi(
 )
 errors.install(api)
 NOUNS = (
-    places, devices, library, compared, uncertainties, baselines, checks, signing, faults, evidence, notices,
+    places, devices, library, compared, uncertainties, baselines, checks, signing, faults, evidence, planning, notices,
     ladders,
 )  # fmt: skip
 for noun in NOUNS:

@@ -133,6 +133,10 @@ def holding(world: World) -> dict:
     return {"reason": "Away", "until_on": now().date() + timedelta(days=4)}
 
 
+def due_move(world: World) -> dict:
+    return {"to_on": world.waiting.due_on + timedelta(days=2), "reason": "Theatre list is full"}
+
+
 def held(world: World) -> uuid.UUID:
     return holds.acknowledge(
         check=world.waiting.uid, **holding(world), actor=world.ward.physicist, at=now()
@@ -236,6 +240,9 @@ CALLS = {
     "downloadDossier": Call(ALL, lambda world: world.dossier.uid, done=409),
     "listLeaves": Call(ALL, done=200),
     "listCheckpoints": Call(ALL, done=200),
+    "showCompliance": Call(ALL, done=200),
+    "showYearAhead": Call(ALL, done=200),
+    "moveDueDay": Call(PLANNING, waiting, due_move, 200),
     "listNotices": Call(ALL, done=200),
     "listNoticesOfCheck": Call(ALL, check, done=200),
     "listHolds": Call(ALL, check, done=200),
