@@ -28,7 +28,7 @@ from qa_tracker.records.models import (
     ScannerFacts,
     Site,
 )
-from qa_tracker.services import clocks, software
+from qa_tracker.services import clocks, plans, software
 from qa_tracker.services.finding import device as find_device
 from qa_tracker.services.guards import check_may, required
 
@@ -219,7 +219,15 @@ def _told(identity: Identity, place: Place) -> dict[str, object]:
     }
 
 
-def move(*, device: uuid.UUID, place: Place, reason: str, actor: Person, at: dt.datetime) -> None:
+def move(
+    *,
+    device: uuid.UUID,
+    place: Place,
+    reason: str,
+    responsible: Person | None = None,
+    actor: Person,
+    at: dt.datetime,
+) -> None:
     """End a device's placement and begin the next. Writes Placement twice and Device; leaf ``device.placed``.
 
     What is still to be done on the device is from then on the new site's to do, on the same days by its clocks. Refused: role at either end, the
@@ -235,6 +243,7 @@ def move(*, device: uuid.UUID, place: Place, reason: str, actor: Person, at: dt.
         raise Conflict("device.already_there", field="site")
     with ledger.command("device.placed", actor=actor, at=at, reason=reason) as act:
         place_device(act, row, open_placement, place, reason)
+        plans.hand_over(act, row, place.site, responsible, actor)
         awaited = Check.objects.filter(device=row, state__in=CHECK_AWAITED).exclude(site=place.site)
         for check in awaited.select_related("site"):
             act.change(check, site=place.site, **clocks.same_days_at(check, place.site))

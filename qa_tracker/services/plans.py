@@ -128,6 +128,29 @@ def _end(act: ledger.Act, row: CheckPlan, reason: str) -> None:
         clocks.stop(check)
 
 
+def hand_over(
+    act: ledger.Act, device: Device, site: Site | None, instead: Person | None, actor: Person
+) -> None:
+    """Give a moved device's plans to someone who may enter checks at its new site, where those responsible may not.
+
+    Left open, it is the one who moves the device. Refused: whoever is named may not enter there either
+    (``plan.responsible_may_not_enter``), or nobody is named and the actor may not (``plan.responsible_stays``).
+    """
+    found = CheckPlan.objects.filter(device=device, ended_at=None, responsible__isnull=False)
+    for plan in found.select_related("responsible").order_by("id"):
+        if plan.responsible is None or _may_enter_at(plan.responsible, site, act.at):
+            continue
+        if not _may_enter_at(instead or actor, site, act.at):
+            if instead is not None:
+                raise Invalid("plan.responsible_may_not_enter", field="responsible")
+            raise Invalid("plan.responsible_stays", field="responsible", name=plan.responsible.name)
+        act.change(plan, responsible=instead or actor)
+
+
+def _may_enter_at(person: Person, site: Site | None, at: dt.datetime) -> bool:
+    return may(person, "check.enter_user", site.id if site else person.duties_site_id, at)
+
+
 def site_days(site: Site | None) -> schedule.SiteDays:
     """When a site works; a pooled device goes by UTC with the usual weekend."""
     if site is None:

@@ -22,6 +22,10 @@ DUE_DAYS: Final = {
     "due_day.past": N_("That day has passed. Choose today or a later day inside the window."),
     "due_day.same": N_("It is due on %(due_on)s already; nothing was changed."),
     "due_day.taken": N_("This plan has a check due on %(due_on)s already. Choose another day."),
+    "plan.responsible_stays": N_(
+        "At the new site neither %(name)s nor you may enter checks, so nobody would do what is planned there. Choose who is "
+        "responsible from then on."
+    ),
     "due_day.none_chosen": N_("Choose at least one of the checks that could be moved."),
     "due_day.following": N_(
         "The next check of this plan is due on %(due_on)s, so this one has to be due before. Choose an earlier day."

@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import json
 import uuid
+from typing import Any
 
 from django.http import HttpRequest, HttpResponse
 from django.urls import reverse
@@ -13,10 +14,10 @@ from django.utils.translation import gettext as _
 
 from qa_tracker.core.errors import NotFound
 from qa_tracker.core.workflow import CHECK_DONE
-from qa_tracker.records.queries import checks, devices, faults
+from qa_tracker.records.queries import checks, devices, faults, people
 from qa_tracker.records.queries.checks import CheckRow
 from qa_tracker.records.queries.devices import ConditionRow, DeviceRow
-from qa_tracker.services import cautions, guards, states, wording
+from qa_tracker.services import cautions, finding, guards, states, wording
 from qa_tracker.services import devices as registering
 from qa_tracker.web import sight
 from qa_tracker.web.forms.asking import Asked, Done, ask
@@ -82,6 +83,16 @@ def move(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
         (
             place_field(guards.scope(request.user, at), row.kind),
             Field("reason", _("Why"), "area", required=False),
+            Field(
+                "responsible",
+                _("Responsible there for what is planned"),
+                "select",
+                _(
+                    "Only where those responsible now may not enter checks at the new site; left open, it is you."
+                ),
+                (("", _("as now")), *_people(request, at)),
+                required=False,
+            ),
         ),
         lead=_("It is now at %(place)s.") % {"place": where_words(row)},
         notes=(_("The site it leaves keeps sight of it up to the move. Its whole history goes with it."),),
@@ -89,12 +100,30 @@ def move(request: HttpRequest, uid: uuid.UUID) -> HttpResponse:
 
     def act(typed: Typed) -> Done:
         place = chosen_place(request, typed, at)
-        registering.move(device=uid, place=place, reason=reason(typed), actor=request.user, at=at)
+        registering.move(
+            device=uid,
+            place=place,
+            reason=reason(typed),
+            responsible=_named(typed),
+            actor=request.user,
+            at=at,
+        )
         seen = devices.find_device(guards.scope(request.user, at), uid)
         says = _("%(device)s is moved.") % {"device": row.label}
         return Done(says, back_to(row) if seen else reverse("register"))
 
     return ask(request, asked, act)
+
+
+def _people(request: HttpRequest, at: dt.datetime) -> list[tuple[str, str]]:
+    """Active people in sight, to choose one from."""
+    seen = people.list_people(guards.scope(request.user, at))
+    return [(str(each.uid), each.name) for each in seen if each.active]
+
+
+def _named(typed: Typed) -> Any:
+    uid = typed.choice_or_none("responsible")
+    return finding.person(uid) if uid else None
 
 
 def where_words(row: DeviceRow) -> str:
