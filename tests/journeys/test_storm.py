@@ -18,7 +18,8 @@ from qa_tracker.services import mail, upkeep
 from tests.journeys.storm import PERIOD_S, Storm, Weather, catching
 from tests.journeys.storm_plan import lay_ground, plan_crossings
 
-pytestmark = pytest.mark.journey
+# One storm at a time: two at once would take the processor from each other.
+pytestmark = [pytest.mark.journey, pytest.mark.xdist_group("storm")]
 REPEATS_PER_KILL = 0.2
 MOST_SWEEPS_LATE = 2
 SEED = int(os.environ.get("LEADLINE_STORM_SEED") or random.SystemRandom().randrange(10**6))
