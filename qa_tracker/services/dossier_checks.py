@@ -49,7 +49,7 @@ def check_told(writer: Writer, row: CheckRow, made: list[SubmissionRow]) -> froz
     """One check: its latest submission, with the signatures of all of them."""
     due_on = row.due_on.isoformat() if row.due_on else ""
     if not made:
-        sentence = _satisfied(writer, row) if row.satisfied_by else row.excuse
+        sentence = _satisfied(writer, row) if row.satisfied_by else wording.excuse_words(row.excuse)
         state = wording.check_state_word(row.state)
         return frozen.Check(row.procedure, "", state, due_on, verdict=row.verdict, sentence=sentence)
     latest = made[-1]

@@ -6,7 +6,7 @@ This is the door; the siblings ``wording_*`` hold the words by what they speak o
 from __future__ import annotations
 
 from qa_tracker.services.wording_criteria import criterion_words, source_line, standing_word
-from qa_tracker.services.wording_due import due_words, recurrence_words
+from qa_tracker.services.wording_due import due_words, excuse_words, recurrence_words
 from qa_tracker.services.wording_findings import problem_sentence, seal_sentence
 from qa_tracker.services.wording_health import health_sentence
 from qa_tracker.services.wording_leaves import leaf_sentence
@@ -42,6 +42,7 @@ __all__ = [
     "device_state_word",
     "dossier_state_word",
     "due_words",
+    "excuse_words",
     "fault_state_word",
     "health_sentence",
     "hold_word",

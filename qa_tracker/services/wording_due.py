@@ -11,9 +11,9 @@ from django.utils.translation import gettext_noop as N_
 from django.utils.translation import ngettext
 
 from qa_tracker.core.schedule import in_words, local_day, parse_rule
-from qa_tracker.core.workflow import CHECK_AWAITED
+from qa_tracker.core.workflow import CHECK_AWAITED, DEVICE
 from qa_tracker.records.queries.checks import CheckRow
-from qa_tracker.services.wording_words import check_state_word, day_words, listed_all
+from qa_tracker.services.wording_words import check_state_word, day_words, device_state_word, listed_all
 
 MOMENT: Final = dt.timedelta(microseconds=1)
 BASES: Final = {"calendar": N_("by the calendar"), "last_actual": N_("counted from the last check")}
@@ -30,6 +30,20 @@ ORDINALS: Final = {
     -4: N_("the last %(day)s but three"),
     -5: N_("the last %(day)s but four"),
 }
+
+
+def excuse_words(excuse: str) -> str:
+    """Why a check was excused: a person's own words, or the state its device was in, with the days where known."""
+    state, _comma, days = excuse.partition(", ")
+    if state not in DEVICE.states:
+        return excuse
+    word = device_state_word(state)
+    try:
+        first, last = (dt.date.fromisoformat(text) for text in days.split(" to "))
+    except ValueError:
+        return _("the device was %(state)s") % {"state": word}
+    told = {"state": word, "first": day_words(first, last), "last": day_words(last)}
+    return _("the device was %(state)s, %(first)s to %(last)s") % told
 
 
 def due_words(check: CheckRow, at: dt.datetime, zone: str) -> str:

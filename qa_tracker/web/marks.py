@@ -153,6 +153,12 @@ def local_day(moment: dt.datetime | None, zone: str) -> str:
 
 
 @register.filter
+def excuse(text: str) -> str:
+    """Why a check was excused, in words."""
+    return wording.excuse_words(text)
+
+
+@register.filter
 def day(value: dt.date | None) -> str:
     """A day in words."""
     return formats.date_format(value, "j F Y") if value else ""

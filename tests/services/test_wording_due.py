@@ -10,7 +10,7 @@ import pytest
 from qa_tracker.core.schedule import SiteDays, Window, due_for
 from qa_tracker.core.workflow import CHECK
 from qa_tracker.records.queries.checks import CheckRow
-from qa_tracker.services.wording import check_state_word, due_words, recurrence_words
+from qa_tracker.services.wording import check_state_word, due_words, excuse_words, recurrence_words
 
 LONDON = "Europe/London"
 BLANK = dict.fromkeys(CheckRow.__dataclass_fields__, "") | {
@@ -128,3 +128,20 @@ RULES = [
 @pytest.mark.parametrize(("rule", "basis", "words"), RULES, ids=[row[0] for row in RULES])
 def test_recurrence_reads(rule, basis, words):
     assert recurrence_words(rule, basis) == words
+
+
+@pytest.mark.parametrize(
+    ("kept", "said"),
+    [
+        ("ward closed, again", "ward closed, again"),
+        ("", ""),
+        ("quarantined", "the device was quarantined"),
+        ("at_repair, 2027-03-01 to 2027-03-20", "the device was at repair, 1 March to 20 March 2027"),
+        (
+            "on_loan_out, 2026-12-28 to 2027-01-04",
+            "the device was lent out, 28 December 2026 to 4 January 2027",
+        ),
+    ],
+)
+def test_excuse_is_said_in_words_where_it_was_the_devices_state(kept, said):
+    assert excuse_words(kept) == said
