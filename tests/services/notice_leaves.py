@@ -82,4 +82,5 @@ ASKED_OF_HOLDS = {
     "mail.deliver_waiting": "the state of a mail is no record",
     "start.note_start": "a heartbeat is no record",
     "start.begin": "a heartbeat is no record",
+    "beats.first_to_hint": "a heartbeat is no record",
 }
