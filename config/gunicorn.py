@@ -5,10 +5,26 @@ from __future__ import annotations
 import os
 
 from gunicorn.arbiter import Arbiter
+from gunicorn.config import Config
+from gunicorn.glogging import Logger
 from gunicorn.workers.base import Worker
 
+from config.logging import QuietFormatter
 from config.parent import die_with_parent
 
+
+class QuietLogger(Logger):
+    """Writes neither in the access log nor in the error log what follows ``/calendar/``."""
+
+    def setup(self, cfg: Config) -> None:
+        """Give every handler a formatter that cuts."""
+        super().setup(cfg)
+        for handler in (*self.error_log.handlers, *self.access_log.handlers):
+            told = handler.formatter
+            handler.setFormatter(QuietFormatter(told._fmt if told else None, told.datefmt if told else None))
+
+
+logger_class = QuietLogger
 wsgi_app = "config.wsgi"
 worker_class = "gthread"
 threads = 8

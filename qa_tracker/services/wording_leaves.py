@@ -81,6 +81,8 @@ SENTENCES: Final = {
     "leave.cancelled": N_("%(actor)s cancelled a leave"),
     "token.issued": N_("%(actor)s issued the token “%(label)s”"),
     "token.revoked": N_("%(actor)s ended a token"),
+    "feed.issued": N_("%(actor)s issued the address of their calendar"),
+    "feed.revoked": N_("%(actor)s ended the address of their calendar"),
     "site.created": N_("%(actor)s made the site %(code)s, %(name)s"),
     "site.instructed": N_("%(actor)s set what a site tells people to do on a verdict"),
     "location.added": N_("%(actor)s added the room %(name)s"),

@@ -18,6 +18,7 @@ from qa_tracker.services.wording_refused_due_days import DUE_DAYS
 from qa_tracker.services.wording_refused_duties import DUTIES
 from qa_tracker.services.wording_refused_editor import EDITOR
 from qa_tracker.services.wording_refused_entry import ENTRY
+from qa_tracker.services.wording_refused_feeds import FEEDS
 from qa_tracker.services.wording_refused_formulas import FORMULAS
 from qa_tracker.services.wording_refused_ladders import LADDERS
 from qa_tracker.services.wording_refused_lines import LINES
@@ -61,6 +62,7 @@ SENTENCES: Final[Mapping[str, str]] = (
     | DUTIES
     | LADDERS
     | DUE_DAYS
+    | FEEDS
 )
 STATES: Final = {
     "check": CHECK_STATES,

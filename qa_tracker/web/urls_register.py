@@ -5,6 +5,7 @@ from __future__ import annotations
 from django.urls import path
 
 from qa_tracker.web.views import (
+    calendar,
     criteria,
     device,
     device_actions,
@@ -88,6 +89,9 @@ urlpatterns = [
     path("leave/", leave.index, name="leave"),
     path("leave/<uuid:leave>/cancel/", leave.cancel, name="leave-cancel"),
     path("password/", people.own_password, name="password"),
+    path("calendar/", calendar.index, name="calendar"),
+    path("calendar/end/", calendar.revoke, name="calendar-revoke"),
+    path("calendar/<str:token>.ics", calendar.feed, name="calendar-feed"),
     path("tokens/", tokens.index, name="tokens"),
     path("tokens/<int:token_id>/end/", tokens.revoke, name="token-revoke"),
     path("sites/", sites.index, name="sites"),

@@ -13,6 +13,7 @@ from django.urls import URLPattern, URLResolver, get_resolver, reverse
 OPEN = {
     "sign-in": "where one signs in",
     "first-administrator": "nobody has an account yet; refused once somebody has",
+    "calendar-feed": "a calendar program can't sign in; a secret in the address says whose it is, any other is not there",
     "health": "asked by what watches over the program; it names no record",
 }
 OPEN_IN_API = {

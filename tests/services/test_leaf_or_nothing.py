@@ -21,6 +21,7 @@ from django.db import connection
 from django.utils.timezone import now
 from duty_leaves import ASKED_OF_DUTIES, DUTIES
 from editor_leaves import DRAFTS, EDITOR
+from feed_leaves import FEEDS
 from life_leaves import ASKED_OF_LIFE, LIFE
 from notice_leaves import ASKED_OF_HOLDS, HOLDS
 
@@ -202,6 +203,7 @@ TABLE: dict[str, Callable[[Ward], Given]] = {
     **HOLDS,
     **DUTIES,
     **LIFE,
+    **FEEDS,
     "uncertainties.state": lambda w: {
         "statement": Statement("reverberation_depth", "standard", "0.3", source="Repeats of March"),
         "site": w.site, "actor": w.physicist,

@@ -191,6 +191,8 @@ TABLE = [
     ("role.ended", {"until": "2025-03-01"}, "", f"{HD} ended a role on 1 March 2025."),
     ("token.issued", {"label": "export", "sha256": ""}, "", f"{HD} issued the token “export”."),
     ("token.revoked", {"sha256": ""}, "", f"{HD} ended a token."),
+    ("feed.issued", {"sha256": "", "replaced": False}, "", f"{HD} issued the address of their calendar."),
+    ("feed.revoked", {"sha256": ""}, "", f"{HD} ended the address of their calendar."),
     (
         "site.created", {"code": "AG", "name": "Aldermoor General", "time_zone": "Europe/London"}, "",
         f"{HD} made the site AG, Aldermoor General.",
