@@ -9,8 +9,8 @@ from django.utils.timezone import now
 from icalendar import Calendar
 
 from qa_tracker.core.errors import NotFound
-from qa_tracker.records.models import FeedToken
-from qa_tracker.services import due_days, feed_content, feeds
+from qa_tracker.records.models import FeedToken, RoleGrant
+from qa_tracker.services import due_days, feed_content, feeds, people
 from tests import builders
 
 pytestmark = pytest.mark.django_db
@@ -81,3 +81,12 @@ def test_feed_names_nothing_of_a_site_out_of_sight(ward):
     other = builders.site(ward.admin, "KB", "Kestrel Bay")
     stranger = builders.person(ward.admin, "stranger", "technician", other)
     assert events(stranger) == []
+
+
+def test_feed_is_empty_when_the_site_went_out_of_sight(ward):
+    grant = RoleGrant.objects.get(person=ward.technician)
+    gone_on = now().date() - dt.timedelta(days=1)
+    assert events(ward.technician)
+    people.end_role(grant=grant.uid, until_on=gone_on, reason="Left", actor=ward.admin, at=now())
+    assert ward.check.plan.responsible == ward.technician
+    assert events(ward.technician) == []
