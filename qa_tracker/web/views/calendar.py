@@ -27,9 +27,7 @@ def index(request: HttpRequest) -> HttpResponse:
         token = feeds.issue(actor=request.user, at=now())
         address = BASE_URL + reverse("calendar-feed", args=[token])
     context = {"address": address, "issued_at": feeds.issued_at(request.user)}
-    response = render(request, "calendar.html", context)
-    response["Referrer-Policy"] = "same-origin" if not address else "no-referrer"
-    return response
+    return render(request, "calendar.html", context)
 
 
 @require_POST
