@@ -22,12 +22,14 @@ class MailServer:
     def __init__(self, port: int) -> None:
         self.port = port
         self.accepted: list[EmailMessage] = []
+        self.addressees: list[str] = []
         self.answer = "250 2.0.0 kept as 7F3A"
         self.to_addressee = "250 2.1.5 known"
         self.holding = self.dropping = False
         self.held = self.seen = 0
 
     async def handle_RCPT(self, _server, _session, envelope, address, _options):
+        self.addressees.append(address)
         if self.to_addressee.startswith("250"):
             envelope.rcpt_tos.append(address)
         return self.to_addressee

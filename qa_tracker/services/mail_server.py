@@ -70,7 +70,7 @@ def _transact(server: smtplib.SMTP | None, data: bytes, to: str) -> str:
     if code != TAKEN:
         # The sender is refused: true of every letter, and mended by the administrator, so it is tried again.
         raise NotTaken(_answer(code, reply))
-    code, reply = server.rcpt(to)
+    code, reply = server.rcpt(_envelope(to))
     if code not in (TAKEN, FORWARDED):
         raise NotTaken(_answer(code, reply), for_good=code >= PERMANENT)
     try:
@@ -80,6 +80,12 @@ def _transact(server: smtplib.SMTP | None, data: bytes, to: str) -> str:
     if code != TAKEN:
         raise NotTaken(_answer(code, reply), for_good=code >= PERMANENT)
     return _answer(code, reply)
+
+
+def _envelope(address: str) -> str:
+    """The address as the server takes it: a domain beyond ASCII in its IDNA form."""
+    local, _at, domain = address.rpartition("@")
+    return f"{local}@{domain.encode('idna').decode('ascii')}"
 
 
 def _said(error: OSError) -> str:

@@ -106,6 +106,12 @@ def test_address_that_can_not_be_written_is_given_up_and_sends_nothing(server, d
     assert (refused.value.for_good, server.seen) == (True, 0)
 
 
+def test_domain_beyond_ascii_is_written_in_its_idna_form(server, digest):
+    digest.person.email = "castellane@bräunung.invalid"
+    assert hand_over(mail._letter(digest), digest.person.email).startswith("250")
+    assert server.addressees == ["castellane@xn--brunung-6wa.invalid"]
+
+
 def test_try_that_was_cut_off_is_kept_and_counts_as_none(server, digest):
     for _kill in range(6):
         assert mail.claim(digest_id=digest.pk)
