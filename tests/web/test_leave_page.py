@@ -54,3 +54,10 @@ def test_refusals_stand_beside_their_fields_with_what_was_typed(ward):
     assert answer.status_code == 422
     assert "Nobody stands in for themself." in answer.content.decode()
     assert "Summer" in answer.content.decode()
+
+
+def test_physicist_of_the_whole_group_is_offered_deputies_of_each_site(ward):
+    page = builders.signed_in(ward.physicist).get(reverse("leave")).content.decode()
+    chosen = page[page.index('name="deputy"') :]
+    assert str(ward.technician.uid) in chosen
+    assert str(ward.admin.uid) not in chosen

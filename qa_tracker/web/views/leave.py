@@ -56,7 +56,10 @@ def _answers_for(request: HttpRequest, person: PersonRow, at: dt.datetime) -> bo
 
 
 def _asked(request: HttpRequest, theirs: list[PersonRow], at: dt.datetime) -> Asked:
-    deputies = who_may_answer(guards.scope(request.user, at), request.user.duties_site_id, at.date())
+    scope = guards.scope(request.user, at)
+    places = {each.duties_site_id for each in theirs}
+    able = {one.id: one for place in places for one in who_may_answer(scope, place, at.date())}
+    deputies = sorted(able.values(), key=lambda one: one.name.casefold())
     whose = Field(
         "person", _("Who is away"), "select", options=_named(theirs), values=(str(request.user.uid),)
     )
