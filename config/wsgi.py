@@ -12,6 +12,6 @@ application = get_wsgi_application()
 
 from django.utils.timezone import now  # noqa: E402  models need Django set up first
 
-from qa_tracker.services.start import begin  # noqa: E402
+from qa_tracker.services.start import begin  # noqa: E402  the same
 
 begin(at=now())

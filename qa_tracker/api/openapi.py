@@ -50,6 +50,6 @@ def _outside_sign_in(view: View) -> View:
         return answer
 
     # Django reads both from the function itself, which has no such attributes by its type.
-    answered.csrf_exempt = True  # type: ignore[attr-defined]
-    answered.login_required = False  # type: ignore[attr-defined]
+    answered.csrf_exempt = True  # type: ignore[attr-defined]  # bearer tokens, no cookies
+    answered.login_required = False  # type: ignore[attr-defined]  # the middleware asks for it
     return answered

@@ -13,7 +13,7 @@ QUERY, REPLY = "application/timestamp-query", "application/timestamp-reply"
 LARGEST_REPLY = 1_000_000
 
 
-class Authority(TimeStamper):  # type: ignore[misc, unused-ignore]
+class Authority(TimeStamper):  # type: ignore[misc, unused-ignore]  # the library is untyped
     """Asks one authority; anything but a whole reply raises TimestampRequestError, an OSError."""
 
     def __init__(self, url: str, timeout_s: float = 10.0) -> None:

@@ -142,7 +142,7 @@ class Past:
         ]
 
     def _rows(self, model: type[M]) -> list[M]:
-        rows: dict[int, M] = self.batch.writer.new.get(model, {})  # type: ignore[assignment]
+        rows: dict[int, M] = self.batch.writer.new.get(model, {})  # type: ignore[assignment]  # by its own model
         return list(rows.values())
 
     def days_of(self, site: Site | None) -> SiteDays:

@@ -253,7 +253,7 @@ def _verdict_on(
 
     Numbers are asked as texts, since 146 and 146.0 are equal and yet not the same sentence.
     """
-    return conformity.judge(criterion, **question)  # type: ignore[arg-type]
+    return conformity.judge(criterion, **question)  # type: ignore[arg-type]  # each key is a parameter of it
 
 
 def baseline_flags(base: BaselineRow | None, criterion: CriterionRow, under: MeasuredWith) -> dict[str, str]:

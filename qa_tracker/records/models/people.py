@@ -15,7 +15,7 @@ class Person(Noun, AbstractBaseUser):
     """Someone who signs in. ``name_salt`` makes the ledger's commitment to the name."""
 
     password = None  # type: ignore[assignment]  # kept in Credential, which no leaf covers
-    last_login = None  # type: ignore[assignment]
+    last_login = None  # type: ignore[assignment]  # the same
 
     username = models.CharField(max_length=60, unique=True)
     name = models.CharField(max_length=300)
